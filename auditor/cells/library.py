@@ -1,0 +1,134 @@
+"""What every cell does: the noun of this room.
+
+A cell is known only from a description (Liberty, the gate primitives of the language, a cell table), never from
+its name. Functions are postfix programs, so that one text serves every algebra: bit-parallel simulation, three
+values, decision diagrams; and no depth of parentheses can exhaust a stack.
+"""
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from typing import Generic, Literal, Protocol, TypeVar
+
+from auditor.notation import SourcePlace
+
+V = TypeVar("V")
+
+
+class Algebra(Protocol, Generic[V]):
+    """The values over which a function is evaluated."""
+
+    def constant(self, bit: int) -> V:
+        """Return the value of the literal 0 or 1."""
+
+    def invert(self, a: V) -> V:
+        """Return NOT a."""
+
+    def conjoin(self, a: V, b: V) -> V:
+        """Return a AND b."""
+
+    def disjoin(self, a: V, b: V) -> V:
+        """Return a OR b."""
+
+    def add(self, a: V, b: V) -> V:
+        """Return a XOR b."""
+
+
+@dataclass(frozen=True, slots=True)
+class Function:
+    """A Boolean function in postfix form.
+
+    ``program`` holds the operators ``! & | ^``, the literals ``0 1`` and, for an operand, ``$`` and its index in
+    ``inputs``: A & !B is inputs ("A", "B"), program ("$0", "$1", "!", "&").
+    """
+
+    inputs: tuple[str, ...]
+    program: tuple[str, ...]
+
+    def evaluate(self, values: tuple[V, ...] | list[V], algebra: Algebra[V]) -> V:
+        """Return the function of ``values``, which stand in the order of ``inputs``."""
+        stack: list[V] = []
+        for word in self.program:
+            if word[0] == "$":
+                stack.append(values[int(word[1:])])
+            elif word == "!":
+                stack.append(algebra.invert(stack.pop()))
+            elif word in "01":
+                stack.append(algebra.constant(int(word)))
+            else:
+                b, a = stack.pop(), stack.pop()
+                operate = {"&": algebra.conjoin, "|": algebra.disjoin, "^": algebra.add}[word]
+                stack.append(operate(a, b))
+        return stack.pop()
+
+
+@dataclass(frozen=True, slots=True)
+class Pin:
+    """A pin of a cell.
+
+    ``function``     of an output: over input pins and state variables; None where it is not described
+    ``three_state``  the output is Z where this is 1
+    ``capacitance_ff``  of an input, in fF; ``limit_ff`` the largest load of an output, in fF; None if not given
+    """
+
+    name: str
+    direction: Literal["input", "output", "inout", "internal", "power"]
+    function: Function | None = None
+    three_state: Function | None = None
+    capacitance_ff: float | None = None
+    limit_ff: float | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Storage:
+    """One stored bit of a cell.
+
+    ``variable``     the state variable in the polarity stored at Q: the one that follows the data un-inverted
+    ``kind``         a flip-flop takes ``data`` at the rising edge of ``clock``; a latch follows it while ``clock`` is 1
+    ``data``         over pins and ``variable`` itself (an enable or a scan multiplexer is part of it)
+    ``clear``, ``preset``  asynchronous conditions, active at 1, that force ``variable`` to 0 and to 1
+    ``both``         the value of ``variable`` while both are active: "0", "1", or "" where it is not defined
+
+    Inverted storage and inverted state variables of the description are already resolved: every function here
+    and in the pins speaks of ``variable`` alone.
+    """
+
+    variable: str
+    kind: Literal["flip-flop", "latch"]
+    clock: Function
+    data: Function
+    clear: Function | None = None
+    preset: Function | None = None
+    both: Literal["0", "1", ""] = ""
+
+
+@dataclass(frozen=True, slots=True)
+class Cell:
+    """A library cell: its pins by name, its stored bits, its area in the library's unit.
+
+    ``not_understood`` says in words why the behaviour could not be taken from the description, or is empty. Such a
+    cell counts as unknown inside the cone and as a load outside it.
+    """
+
+    name: str
+    pins: Mapping[str, Pin]
+    storage: tuple[Storage, ...] = ()
+    area: float | None = None
+    place: SourcePlace | None = None
+    not_understood: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class CellLibrary:
+    """All cells known to an audit, by name; ``notes`` are sentences for the report's assumptions."""
+
+    cells: Mapping[str, Cell]
+    notes: tuple[str, ...] = ()
+
+    def primitive(self, name: str, inputs: int) -> Cell:
+        """Return the gate primitive ``name`` with ``inputs`` inputs, pins ``out``, ``in0``, ``in1`` ...
+
+        Raises ``KeyError`` for a name that is not a gate primitive with a direction from inputs to one output.
+        """
+        from auditor.cells.primitives import primitive_cell  # noqa: PLC0415 - the verb builds on this noun
+
+        return primitive_cell(name, inputs)

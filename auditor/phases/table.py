@@ -1,0 +1,138 @@
+"""Where every channel stands on its cycle: the noun of this room.
+
+Channels are numbered as ``LinearMachine.observed``. A lead is counted in cycles of the register's clock.
+"""
+
+from dataclasses import dataclass
+from typing import Literal, TypeAlias
+
+from auditor.notation import Polynomial, Vector
+
+LeadKind: TypeAlias = Literal["exact", "from", "modulo", "none", "undecided"]
+
+
+@dataclass(frozen=True, slots=True)
+class Infinite:
+    """The separation of streams that never coincide."""
+
+    def __str__(self) -> str:
+        return "infinite"
+
+
+Separation: TypeAlias = int | Infinite | None  # None: undecided
+
+
+@dataclass(frozen=True, slots=True)
+class Neighbour:
+    """The nearest channel of the same class and how far it is; ``complement`` where the streams are complements."""
+
+    channel: int
+    separation: int
+    complement: bool
+
+
+@dataclass(frozen=True, slots=True)
+class Phase:
+    """The phase of one channel against its class reference.
+
+    ``group``       index into the classes, None for a channel without one (constant, refused)
+    ``lead``        0 <= lead < modulus, None where there is none or it is undecided
+    ``kind``        exact: known modulo the class modulus and true from cycle 0 on; from: true from ``valid_from`` on;
+                    modulo: known only modulo ``lead_modulus``, a proper divisor; none: see ``no_lead_because``; undecided
+    ``inverted``    the channel is the complement of the shifted reference; None without a lead
+    ``valid_from``  the cycle from which y_i(t) = y_ref(t + lead) + inverted holds for every state at cycle 0
+    """
+
+    group: int | None
+    lead: int | None
+    kind: LeadKind
+    lead_modulus: int | None
+    inverted: bool | None
+    valid_from: int
+    no_lead_because: str = ""
+    nearest: Neighbour | None = None
+
+    def lag(self, modulus: int) -> int | None:
+        """Return -lead modulo the class modulus."""
+        return None if self.lead is None else -self.lead % modulus
+
+
+@dataclass(frozen=True, slots=True)
+class Closest:
+    """The two channels of a class that are nearest to each other, in ascending order."""
+
+    channels: tuple[int, int]
+    cycles: int
+    complement: bool
+
+
+@dataclass(frozen=True, slots=True)
+class PhaseClass:
+    """Channels whose streams are shifts or complements of each other.
+
+    ``modulus`` is the period of the stream, None where the order is undecided; ``minimum`` is None for a class of one
+    channel or while undecided.
+    """
+
+    reference: int
+    modulus: int | None
+    channels: tuple[int, ...]
+    minimum: Closest | None
+
+
+@dataclass(frozen=True, slots=True)
+class Factor:
+    """An irreducible factor of a characteristic polynomial; ``primitive`` None where 2^n - 1 is not factored."""
+
+    polynomial: Polynomial
+    multiplicity: int
+    primitive: bool | None
+
+
+@dataclass(frozen=True, slots=True)
+class ResetFacts:
+    """Where a register starts: ``state`` over the register's own elements, ``unknown`` those without a reset.
+
+    ``stuck``   the reset state is a lock-up state; ``period`` of the orbit from it; both None while bits are unknown.
+    """
+
+    state: Vector
+    unknown: tuple[int, ...]
+    stuck: bool | None
+    period: int | None
+
+
+@dataclass(frozen=True, slots=True)
+class RegisterFacts:
+    """One feedback register; vectors are over its own elements, bit k = ``elements[k]``.
+
+    ``period``  of the affine map on its cycling part; None where an order is undecided
+    ``lock_up_states``  ascending, at most 16 of ``lock_up_count``
+    """
+
+    elements: tuple[int, ...]
+    cycling_degree: int
+    characteristic_polynomial: Polynomial
+    connection_polynomial: Polynomial
+    factors: tuple[Factor, ...]
+    period: int | None
+    maximum_period: int
+    primitive: bool | None
+    lock_up_count: int
+    lock_up_states: tuple[Vector, ...]
+    reset: ResetFacts | None
+
+
+@dataclass(frozen=True, slots=True)
+class PhaseTable:
+    """The registers, the classes, and one phase a channel.
+
+    ``certified_at_least``  every separation inside a class is at least this; None where all leads are known
+    ``close_pairs``   pairs within the certified window, found without logarithms: (i, j, cycles, complement)
+    """
+
+    registers: tuple[RegisterFacts, ...]
+    classes: tuple[PhaseClass, ...]
+    phases: tuple[Phase, ...]
+    certified_at_least: int | None
+    close_pairs: tuple[tuple[int, int, int, bool], ...] = ()

@@ -1,0 +1,49 @@
+"""All that one audit found, as the writers get it: the noun of this room."""
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+from typing import Literal, NamedTuple, TypeAlias
+
+from auditor.cells.library import CellLibrary
+from auditor.cone.cone import Cone
+from auditor.machine.machine import Extraction
+from auditor.phases.table import PhaseTable
+from auditor.plan import Plan
+from auditor.risks.finding import Finding
+
+Verdict: TypeAlias = Literal["pass", "fail", "undecided"]
+
+
+class InputFile(NamedTuple):
+    """One file the audit read: ``role`` is netlist, cells or plan; ``sha256`` of the bytes as stored."""
+
+    path: str
+    role: str
+    sha256: str
+
+
+class ReplayFacts(NamedTuple):
+    """The second opinion: random states, cycles each, and disagreements (0, or there is no report)."""
+
+    states: int
+    cycles: int
+    mismatches: int
+
+
+@dataclass(frozen=True, slots=True)
+class AuditFacts:
+    """One audit. ``phases`` and ``replay`` are None where the machine was refused."""
+
+    plan: Plan
+    inputs: tuple[InputFile, ...]
+    mode: Mapping[str, int]
+    library: CellLibrary
+    cone: Cone
+    extraction: Extraction
+    phases: PhaseTable | None
+    replay: ReplayFacts | None
+    findings: tuple[Finding, ...]
+    assumed: tuple[str, ...]
+    undecided: tuple[str, ...]
+    verdict: Verdict
+    environment: Mapping[str, str]
