@@ -41,7 +41,7 @@ class Limits:
 
 @dataclass(frozen=True, slots=True)
 class Plan:
-    """All that an audit is given. Paths are as they will be opened; ``shown`` how reports name them.
+    """All that an audit is given. Paths are as they will be opened.
 
     ``mode``      net or port → 0 or 1        ``channels``  names, vectors or patterns; empty: all output ports
     ``chain_length``  scan cells of every chain, or None where not stated

@@ -55,7 +55,7 @@ class StorageElement:
 
 @dataclass(frozen=True, slots=True)
 class Channel:
-    """A serial stream that feeds one scan chain: its name, and the wire that carries it or the constant it is tied to."""
+    """A serial stream that feeds one scan chain: its name, and the wire that carries it or its constant."""
 
     name: str
     wire: int
@@ -99,9 +99,9 @@ class Cone:
 
     ``gates``, ``clock_gates``  in topological order, sources first; the clock gates run from the root to the clock pins
     ``elements``     in the natural order of their names; element k is bit k of every state vector
-    ``free_inputs``  wires that nothing in the cone determines: input ports left open by the mode, by natural order of names
+    ``free_inputs``  wires that nothing in the cone determines: input ports left open by the mode, in natural order
     ``constants``    net → 0 or 1: the mode, ties, and what follows from them
-    ``clock``        the net at the root of every clock pin; ``clock_edge`` is the root's edge at step 0: "rising" or "falling"
+    ``clock``        the net at the root of every clock pin; ``clock_edge`` is its edge at step 0: "rising" or "falling"
     ``graph``        nodes are wires; an edge runs from every input of a gate or next state to its output, with the
                      attribute ``instance``; an edge into stored bits has ``storage=True``
     ``feedback``     the feedback registers as tuples of element numbers: the strongly connected parts of the storage

@@ -52,7 +52,7 @@ Expression: TypeAlias = str | Select | Constant | Concatenation | Operation
 
 
 class Connection(NamedTuple):
-    """What one pin of an instance is tied to: ``pin`` is None where connected by position, ``value`` None where open."""
+    """What one pin of an instance is tied to: ``pin`` None where connected by position, ``value`` None where open."""
 
     pin: str | None
     value: Expression | None

@@ -1,0 +1,1 @@
+"""Audits existing BIST pattern generators from their gate-level netlists."""
