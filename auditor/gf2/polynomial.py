@@ -75,7 +75,7 @@ def remainder(a: Polynomial, b: Polynomial) -> Polynomial:
 
 
 def gcd(a: Polynomial, b: Polynomial) -> Polynomial:
-    """Return the greatest common divisor; gcd(0, 0) is 0."""
+    """Return the greatest common divisor, 0 if both are 0."""
     while b:
         a, b = b, remainder(a, b)
     return a
