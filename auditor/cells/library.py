@@ -6,7 +6,7 @@ values, decision diagrams; and no depth of parentheses can exhaust a stack.
 """
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import Generic, Literal, Protocol, TypeVar
 
 from auditor.notation import SourcePlace
@@ -33,6 +33,15 @@ class Algebra(Protocol, Generic[V]):
         """Return a XOR b."""
 
 
+_INVERT, _CONJOIN, _DISJOIN, _ADD, _CONSTANT_0, _CONSTANT_1 = -1, -2, -3, -4, -5, -6
+_STEPS = {"!": _INVERT, "&": _CONJOIN, "|": _DISJOIN, "^": _ADD, "0": _CONSTANT_0, "1": _CONSTANT_1}
+
+
+def _step(word: str) -> int:
+    """Return a word of a program as a number: the index of an operand, or a negative code."""
+    return int(word[1:]) if word[0] == "$" else _STEPS[word]
+
+
 @dataclass(frozen=True, slots=True)
 class Function:
     """A Boolean function in postfix form.
@@ -43,22 +52,31 @@ class Function:
 
     inputs: tuple[str, ...]
     program: tuple[str, ...]
+    # The program as numbers, made when it is first evaluated.
+    _steps: tuple[int, ...] = field(default=(), init=False, repr=False, compare=False)
 
     def evaluate(self, values: tuple[V, ...] | list[V], algebra: Algebra[V]) -> V:
         """Return the function of ``values``, which stand in the order of ``inputs``."""
+        if not self._steps:
+            object.__setattr__(self, "_steps", tuple(map(_step, self.program)))
         stack: list[V] = []
-        for word in self.program:
-            if word[0] == "$":
-                stack.append(values[int(word[1:])])
-            elif word == "!":
-                stack.append(algebra.invert(stack.pop()))
-            elif word in "01":
-                stack.append(algebra.constant(int(word)))
+        push, pop = stack.append, stack.pop
+        for step in self._steps:
+            if step >= 0:
+                push(values[step])
+            elif step == _INVERT:
+                push(algebra.invert(pop()))
+            elif step <= _CONSTANT_0:
+                push(algebra.constant(_CONSTANT_0 - step))
             else:
-                b, a = stack.pop(), stack.pop()
-                operate = {"&": algebra.conjoin, "|": algebra.disjoin, "^": algebra.add}[word]
-                stack.append(operate(a, b))
-        return stack.pop()
+                b, a = pop(), pop()
+                if step == _CONJOIN:
+                    push(algebra.conjoin(a, b))
+                elif step == _DISJOIN:
+                    push(algebra.disjoin(a, b))
+                else:
+                    push(algebra.add(a, b))
+        return pop()
 
 
 @dataclass(frozen=True, slots=True)
