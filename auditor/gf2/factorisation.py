@@ -11,7 +11,6 @@ from auditor.gf2.polynomial import (
     derivative,
     divide,
     gcd,
-    multiply,
     multiply_modulo,
     remainder,
     square,
