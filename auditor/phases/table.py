@@ -71,13 +71,19 @@ class PhaseClass:
     """Channels whose streams are shifts or complements of each other.
 
     ``modulus`` is the period of the stream, None where the order is undecided; ``minimum`` is None for a class of one
-    channel or while undecided.
+    channel or while undecided. ``half_turn``: the stream is its own complement shifted by half the modulus.
     """
 
     reference: int
     modulus: int | None
     channels: tuple[int, ...]
     minimum: Closest | None
+    half_turn: bool = False
+
+    @property
+    def turn(self) -> int | None:
+        """The modulus of distances: a shift by it gives the stream again or its complement."""
+        return self.modulus // 2 if self.modulus and self.half_turn else self.modulus
 
 
 @dataclass(frozen=True, slots=True)
@@ -128,7 +134,9 @@ class PhaseTable:
     """The registers, the classes, and one phase a channel.
 
     ``certified_at_least``  every separation inside a class is at least this; None where all leads are known
-    ``close_pairs``   pairs within the certified window, found without logarithms: (i, j, cycles, complement)
+    ``close_pairs``   all pairs closer than ``window`` whose leads needed more than a bounded search, ascending:
+                      (i, j, cycles, complement), channel i leads channel j by so many cycles
+    ``window``        None where all leads are known
     """
 
     registers: tuple[RegisterFacts, ...]
@@ -136,3 +144,8 @@ class PhaseTable:
     phases: tuple[Phase, ...]
     certified_at_least: int | None
     close_pairs: tuple[tuple[int, int, int, bool], ...] = ()
+    window: int | None = None
+
+    def decides(self, bound: int) -> bool:
+        """Whether every pair closer than the bound is known."""
+        return self.window is None or bound <= self.window
