@@ -32,6 +32,7 @@ class Gate:
 class StorageElement:
     """One stored bit inside the cone.
 
+    ``bit``       which of the cell's stored bits it is, from 0
     ``wire``      the number under which gates read the stored bit, as at Q
     ``data``      next state over the wires ``inputs`` (its own wire among them where it can hold)
     ``step``      the half-cycle step at which it takes its data: 0 or 2 for a flip-flop, 1 or 3 for a latch
@@ -43,6 +44,7 @@ class StorageElement:
     name: str
     cell: str
     instance: int
+    bit: int
     wire: int
     data: Function
     inputs: tuple[int, ...]

@@ -1,0 +1,131 @@
+"""From a netlist and a mode to the cone of the channels: the main verb of this room."""
+
+from collections.abc import Mapping, Sequence
+
+from auditor.cells.library import CellLibrary
+from auditor.cone.asynchronous import Asynchronous
+from auditor.cone.clock import ClockTree
+from auditor.cone.cone import Channel, Cone, Gate, Obstacle
+from auditor.cone.constants import TIES, check_forced, resolve_mode, spread
+from auditor.cone.graph import cone_graph, feedback_parts, gates_in_order
+from auditor.cone.loads import find_loads
+from auditor.cone.names import find_channels
+from auditor.cone.storage import clock_all, element_of, name_of
+from auditor.cone.trouble import ConeTroubles
+from auditor.cone.walk import Stored, Walk
+from auditor.cone.wiring import Wiring, connect
+from auditor.errors import TroubleList, fail
+from auditor.netlist.netlist import Netlist
+from auditor.notation import natural_order
+
+
+def extract_cone(netlist: Netlist, library: CellLibrary, mode: Mapping[str, int], channels: Sequence[str] = ()) -> Cone:
+    """Return the cone of the channels under the mode (net or port name → 0 or 1).
+
+    Raises ``InputError`` with everything that keeps the cone from being closed: unknown names, contradictory
+    constants, unknown cells, nets without driver or with several, loops without storage, clocks left open, two
+    clocks, no storage.
+    """
+    names = TroubleList()
+    forced_values = resolve_mode(netlist, mode, names)
+    wanted = find_channels(netlist, channels, names)
+    wiring = connect(netlist, library)
+    ports = frozenset(net for port in netlist.ports if port.direction != "output" for net in port.nets)
+    forced = check_forced(wiring, forced_values, ports, names)
+    names.raise_any()
+    if not wanted:
+        raise fail(f"{netlist.top} has no output ports", "give --channels the nets that feed the scan chains")
+    known = {**TIES, **forced_values}
+    spread(wiring, known, list(known))
+    walk, assumed, obstacles = _close(wiring, known, ports, [net for _, net in wanted])
+    return _assemble(wiring, walk, wanted, assumed, obstacles, tuple(forced))
+
+
+def _close(
+    wiring: Wiring, known: dict[int, int], ports: frozenset[int], channels: list[int]
+) -> tuple[Walk, dict[int, int], dict[int, tuple[str, str]]]:
+    """Walk until the mode, the assumed asynchronous ports and what follows from both no longer change.
+
+    Returns the walk, the assumed ports, and per stored wire why its asynchronous pins stand in the way.
+    """
+    asynchronous = Asynchronous(wiring, ports)
+    assumed: dict[int, int] = {}
+    while True:
+        walk = Walk(wiring, known, ports, ConeTroubles(wiring))
+        walk.from_channels(channels)
+        fresh = dict(walk.settled)
+        obstacles = {}
+        for stored in walk.met():
+            inactive, because, cure = asynchronous.inactive(stored, {**known, **fresh})
+            assumed.update(inactive)
+            fresh.update(inactive)
+            if because:
+                obstacles[stored.wire] = (because, cure)
+        if not fresh:
+            break
+        known.update(fresh)
+        spread(wiring, known, list(fresh))
+    for stored in walk.met():
+        walk.resets[stored.wire] = asynchronous.reset_value(stored, known)
+    return walk, assumed, obstacles
+
+
+def _assemble(
+    wiring: Wiring,
+    walk: Walk,
+    wanted: list[tuple[str, int]],
+    assumed: dict[int, int],
+    obstacles: dict[int, tuple[str, str]],
+    forced: tuple[int, ...],
+) -> Cone:
+    netlist, troubles = wiring.netlist, walk.troubles
+    stored = sorted(walk.met(), key=lambda s: natural_order(name_of(netlist, s)))
+    if not stored:
+        troubles.raise_any()
+        raise fail(f"no storage behind the channels of {netlist.top}", "give --channels nets that a register feeds")
+    order, loop = gates_in_order(walk.gates)
+    if loop:
+        troubles.loop(loop)
+    graph = cone_graph(walk.gates, {s.wire: (walk.data[s.wire], s.instance) for s in stored})
+    feedback = feedback_parts(graph, {s.wire: number for number, s in enumerate(stored)})
+    tree = ClockTree(wiring, walk.known, walk.ports, troubles)
+    clocking = clock_all(tree, stored, feedback, graph)
+    clock_order, clock_loop = gates_in_order(tree.gates)
+    if clock_loop:
+        troubles.loop(clock_loop)
+    troubles.raise_any()
+    elements = tuple(element_of(wiring, walk, clocking, s) for s in stored)
+    return Cone(
+        netlist=netlist,
+        channels=tuple(Channel(name, net, walk.known.get(net)) for name, net in wanted),
+        gates=tuple(Gate(net, *walk.gates[net][0], walk.gates[net][1]) for net in order),
+        clock_gates=tuple(Gate(net, *tree.gates[net][0], tree.gates[net][1]) for net in clock_order),
+        elements=elements,
+        free_inputs=tuple(sorted(walk.free, key=lambda net: natural_order(netlist.net_names[net]))),
+        constants=walk.known,
+        clock=clocking.root,
+        clock_edge=clocking.edge,
+        graph=graph,
+        feedback=feedback,
+        loads=find_loads(wiring, elements),
+        obstacles=_obstacles(netlist, stored, obstacles),
+        forced=forced,
+        assumed=_assumptions(netlist, assumed),
+    )
+
+
+def _obstacles(
+    netlist: Netlist, stored: Sequence[Stored], because: Mapping[int, tuple[str, str]]
+) -> tuple[Obstacle, ...]:
+    return tuple(
+        Obstacle(number, *because[s.wire], netlist.instance_place(s.instance))
+        for number, s in enumerate(stored)
+        if s.wire in because
+    )
+
+
+def _assumptions(netlist: Netlist, assumed: Mapping[int, int]) -> tuple[str, ...]:
+    return tuple(
+        f"{netlist.net_names[net]} = {value}: the asynchronous pins behind it are inactive"
+        for net, value in sorted(assumed.items(), key=lambda item: natural_order(netlist.net_names[item[0]]))
+    )
