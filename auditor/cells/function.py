@@ -74,6 +74,9 @@ class TernaryAlgebra:
         return None if a is None or b is None else a ^ b
 
 
+TERNARY = TernaryAlgebra()
+
+
 class _PolarityAlgebra:
     """A value is (inputs met un-inverted, inputs met inverted), as bit sets: a syntactic bound on the dependence."""
 

@@ -1,0 +1,146 @@
+"""Reads the files that describe cells into a ``CellLibrary``: the main verb of this room."""
+
+from collections.abc import Callable, Iterator, Mapping, Sequence
+from functools import partial
+from pathlib import Path
+from typing import NamedTuple
+
+from auditor.cells.cell_table import looks_like_table, table_cells
+from auditor.cells.expression import ExpressionError, is_read_differently
+from auditor.cells.liberty import Group, library_start, parse_liberty
+from auditor.cells.liberty_cells import liberty_cell
+from auditor.cells.liberty_pins import library_defaults
+from auditor.cells.library import Cell, CellLibrary
+from auditor.cells.source_text import read_text
+from auditor.errors import InputError, Trouble, fail
+from auditor.notation import SourcePlace
+
+_EXPRESSIONS = ("function", "three_state", "next_state", "clocked_on", "enable", "data_in", "clear", "preset")
+
+
+class _Source(NamedTuple):
+    """Where a cell is described, and how to make it."""
+
+    place: SourcePlace
+    make: Callable[[], Cell]
+
+
+class _CellsOnDemand(Mapping[str, Cell]):
+    """Cells by name, each made when it is first asked for: of a library most are never used."""
+
+    def __init__(self, sources: Mapping[str, _Source]) -> None:
+        self._sources = sources
+        self._made: dict[str, Cell] = {}
+
+    def __getitem__(self, name: str) -> Cell:
+        if name not in self._made:
+            self._made[name] = self._sources[name].make()
+        return self._made[name]
+
+    def __iter__(self) -> Iterator[str]:
+        return iter(self._sources)
+
+    def __len__(self) -> int:
+        return len(self._sources)
+
+
+def read_cells(paths: Sequence[Path]) -> CellLibrary:
+    """Return the cells that Liberty files and cell tables describe; of several descriptions the last counts.
+
+    What a file is is decided by its content. A Liberty cell whose behaviour cannot be read is ``not_understood``.
+
+    Raises ``InputError`` with the troubles of all files: what cannot be opened or is no such file, syntax errors,
+    and everything that is wrong in a cell table.
+    """
+    sources: dict[str, _Source] = {}
+    notes: list[str] = []
+    troubles: list[Trouble] = []
+    for path in paths:
+        try:
+            described, more_notes = _read_file(path)
+        except InputError as error:
+            troubles += error.troubles
+            continue
+        notes += more_notes
+        notes += _overridden(sources, described)
+        sources.update(described)
+    if troubles:
+        raise InputError(troubles)
+    return CellLibrary(_CellsOnDemand(sources), tuple(notes))
+
+
+def _read_file(path: Path) -> tuple[dict[str, _Source], list[str]]:
+    """Return the cells of one file and notes on it."""
+    text, file = read_text(path), str(path)
+    start = library_start(text)
+    if looks_like_table(text if start < 0 else text[:start]):
+        cells = table_cells(text, file)
+        whole = SourcePlace(file)
+        return {
+            name: _Source(cell.place or whole, partial(cells.__getitem__, name)) for name, cell in cells.items()
+        }, []
+    name = path.name.lower()
+    if start >= 0 or name.endswith((".lib", ".lib.gz", ".lib_gz")):
+        return _liberty_sources(parse_liberty(text, file), file)
+    if name.endswith(".toml"):
+        table_cells(text, file)  # tells what is wrong with it, if anything is
+        return {}, [f"{file} describes no cells"]
+    raise fail("this is neither a Liberty file nor a cell table", "give one of these", SourcePlace(file))
+
+
+def _liberty_sources(libraries: Sequence[Group], file: str) -> tuple[dict[str, _Source], list[str]]:
+    sources: dict[str, _Source] = {}
+    notes: list[str] = []
+    doubtful: list[str] = []
+    for library in libraries:
+        defaults = library_defaults(library, file)
+        if "capacitive_load_unit" not in library.attributes:
+            notes.append(f"{file}:{library.line}: the library states no unit of capacitance, pF is taken")
+        described: dict[str, _Source] = {}
+        for group in library.inside("cell"):
+            name = "".join(group.arguments[:1])
+            source = _Source(SourcePlace(file, group.line), partial(liberty_cell, group, defaults))
+            notes += _overridden(described, {name: source})
+            described[name] = source
+            if _is_doubtful(group):
+                doubtful.append(name)
+        notes += _overridden(sources, described)
+        sources.update(described)
+    if doubtful:
+        notes.append(
+            f"{file}: an expression of {_counted(doubtful)} mixes ^ with operands side by side without parentheses; "
+            "^ is taken to bind first, as the Liberty manual has it, though some programs read it otherwise"
+        )
+    return sources, notes
+
+
+def _is_doubtful(group: Group) -> bool:
+    """Return whether an expression in the cell is read differently by different programs."""
+    levels = [group]
+    for level in levels:
+        levels += level.groups
+        for attribute in _EXPRESSIONS:
+            written = level.attributes.get(attribute)
+            if written and "^" in written[0]:
+                try:
+                    if is_read_differently(written[0]):
+                        return True
+                except ExpressionError:
+                    pass  # told where the cell is used
+    return False
+
+
+def _overridden(earlier: Mapping[str, _Source], later: Mapping[str, _Source]) -> list[str]:
+    """Return a note for each file whose cells are described again, naming which description counts."""
+    by_files: dict[tuple[str, str], list[str]] = {}
+    for name, source in later.items():
+        if name in earlier:
+            by_files.setdefault((earlier[name].place.file, source.place.file), []).append(name)
+    return [
+        f"{_counted(names)} described at {earlier[names[0]].place} and at {later[names[0]].place}: the latter counts"
+        for names in by_files.values()
+    ]
+
+
+def _counted(names: Sequence[str]) -> str:
+    return f"cell {names[0]}" if len(names) == 1 else f"{len(names)} cells ({names[0]} first)"
