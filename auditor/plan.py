@@ -1,7 +1,7 @@
 """What the reviewer states: the plan, from a TOML file, from the command line, or both."""
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from pathlib import Path
 
 
@@ -39,10 +39,16 @@ class Limits:
     depth: int | None = None
 
 
+# Every limit by its name in the plan and after --limit, with the least value that makes sense.
+LEAST_LIMIT = {"separation": 1, "fan_out": 1, "taps": 1, "depth": 0}
+BEYOND = 10**18  # every stated number is smaller
+
+
 @dataclass(frozen=True, slots=True)
 class Plan:
     """All that an audit is given. Paths are as they will be opened.
 
+    ``defines``   macros for the Verilog text: name → value
     ``mode``      net or port → 0 or 1        ``channels``  names, vectors or patterns; empty: all output ports
     ``chain_length``  scan cells of every chain, or None where not stated
     """
@@ -50,6 +56,7 @@ class Plan:
     netlists: tuple[Path, ...]
     cells: tuple[Path, ...] = ()
     top: str | None = None
+    defines: Mapping[str, str] = field(default_factory=dict)
     mode: Mapping[str, int] = field(default_factory=dict)
     channels: tuple[str, ...] = ()
     reference: str | None = None
@@ -60,3 +67,37 @@ class Plan:
     fail_at: str = "error"
     work_limit: int | None = None
     file: Path | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Options:
+    """What the command line states; None or empty means not given. Fields as in ``Plan``."""
+
+    netlists: tuple[Path, ...] = ()
+    cells: tuple[Path, ...] = ()
+    top: str | None = None
+    mode: Mapping[str, int] = field(default_factory=dict)
+    channels: tuple[str, ...] = ()
+    reference: str | None = None
+    chain_length: int | None = None
+    limits: Mapping[str, int] = field(default_factory=dict)
+    fail_at: str | None = None
+    work_limit: int | None = None
+
+
+def merge(plan: Plan | None, options: Options) -> Plan:
+    """Return the plan under the options: a given list replaces the plan's, mode and limits do so key by key."""
+    stated = plan or Plan(netlists=())
+    return replace(
+        stated,
+        netlists=options.netlists or stated.netlists,
+        cells=options.cells or stated.cells,
+        top=stated.top if options.top is None else options.top,
+        mode={**stated.mode, **options.mode},
+        channels=options.channels or stated.channels,
+        reference=stated.reference if options.reference is None else options.reference,
+        chain_length=stated.chain_length if options.chain_length is None else options.chain_length,
+        limits=replace(stated.limits, **options.limits),
+        fail_at=options.fail_at or stated.fail_at,
+        work_limit=stated.work_limit if options.work_limit is None else options.work_limit,
+    )

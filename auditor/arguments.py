@@ -1,0 +1,153 @@
+"""Reads the words of the command line into options; all that is wrong with them is reported together."""
+
+import argparse
+import re
+from collections.abc import Sequence
+from dataclasses import dataclass
+from pathlib import Path
+from typing import NoReturn
+
+from auditor.errors import TroubleList, fail, near_misses
+from auditor.notation import SourcePlace
+from auditor.plan import BEYOND, LEAST_LIMIT, Options
+
+COMMAND_LINE = SourcePlace("command line")
+FAIL_AT = ("note", "warning", "error")
+
+_NO_VALUE = re.compile(r"argument (--[\w-]+): expected one argument")
+
+
+@dataclass(frozen=True, slots=True)
+class Request:
+    """One call of ``auditor audit``: what to audit and where the text goes; ``json`` may be ``-``."""
+
+    options: Options
+    plan: Path | None
+    json: str | None
+    quiet: bool
+
+
+class _Parser(argparse.ArgumentParser):
+    """An argument parser that reports wrong use as every other trouble."""
+
+    def error(self, message: str) -> NoReturn:
+        if without := _NO_VALUE.match(message):
+            raise fail(f"{without[1]} has no value", "give it one, or leave it out", COMMAND_LINE)
+        raise fail(message, f"see {self.prog} --help", COMMAND_LINE)
+
+
+def audit_parser() -> argparse.ArgumentParser:
+    """Return the parser of ``auditor audit``."""
+    parser = _Parser(
+        prog="auditor audit",
+        description="Audit a pattern generator from its gate-level netlist.",
+        epilog="An option overrides the plan. Exit status: 0 pass, 1 a finding at or above --fail-at, 2 wrong use or "
+        "unusable input, 3 a question is undecided, 4 internal error.",
+        allow_abbrev=False,
+    )
+    add = parser.add_argument
+    add("netlists", nargs="*", metavar="NETLIST", help="Verilog file, plain or gz")
+    add("--plan", metavar="F", help="the reviewer's plan, a TOML file")
+    add("--cells", action="append", default=[], metavar="F", help="cell library or cell table; may be repeated")
+    add("--top", metavar="M", help="top module")
+    add("--mode", action="append", default=[], metavar="NET=0|1", help="hold a port or net; may be repeated")
+    add(
+        "--channels",
+        action="append",
+        default=[],
+        metavar="NAME",
+        help="channel: a net, vector or pattern; may be repeated (default: all output ports of the top)",
+    )
+    add("--reference", metavar="NAME", help="channel against which leads are counted")
+    add("--chain-length", metavar="N", help="scan cells of every chain")
+    names = ", ".join(LEAST_LIMIT)
+    add("--limit", action="append", default=[], metavar="NAME=N", help=f"bound on {names}; may be repeated")
+    add("--fail-at", metavar="LEVEL", help="note, warning or error (default error): findings that fail the audit")
+    add("--work-limit", metavar="N", help="bound on the nodes of one proof, beyond which it is undecided")
+    add("--json", metavar="F", help="write the report as JSON; - is standard output, the screen then goes to stderr")
+    add("--quiet", action="store_true", help="show neither the report nor progress on the screen")
+    return parser
+
+
+def read_arguments(words: Sequence[str]) -> Request:
+    """Return what the words after ``auditor audit`` ask for. Raises ``InputError``."""
+    parser = audit_parser()
+    given, unknown = parser.parse_known_intermixed_args(list(words))
+    troubles = TroubleList()
+    options = [_option(name) for name in vars(given) if name != "netlists"]
+    for word in [word for word in unknown if word.startswith("-")] or unknown:
+        remedy = near_misses(word.split("=")[0], options) or "see auditor audit --help"
+        troubles.add(f"{word} is no option of auditor audit", remedy, COMMAND_LINE)
+    _refuse_empty(vars(given), troubles)
+    if given.fail_at and given.fail_at not in FAIL_AT:
+        remedy = near_misses(given.fail_at, FAIL_AT) or "write note, warning or error"
+        troubles.add(f"--fail-at {given.fail_at} is no level", remedy, COMMAND_LINE)
+    request = Request(
+        options=Options(
+            netlists=tuple(map(Path, given.netlists)),
+            cells=tuple(map(Path, given.cells)),
+            top=given.top,
+            mode=_read_mode(given.mode, troubles),
+            channels=tuple(given.channels),
+            reference=given.reference,
+            chain_length=_read_number("--chain-length", given.chain_length, 1, troubles),
+            limits=_read_limits(given.limit, troubles),
+            fail_at=given.fail_at,
+            work_limit=_read_number("--work-limit", given.work_limit, 1, troubles),
+        ),
+        plan=None if given.plan is None else Path(given.plan),
+        json=given.json,
+        quiet=given.quiet,
+    )
+    troubles.raise_any()
+    return request
+
+
+def _option(name: str) -> str:
+    """Return the option whose value argparse keeps under ``name``."""
+    return "--" + name.replace("_", "-")
+
+
+def _refuse_empty(given: dict[str, object], troubles: TroubleList) -> None:
+    """Note every option, and any netlist, whose value is the empty text."""
+    for name, value in given.items():
+        if value == "" or (isinstance(value, list) and "" in value):
+            what = "the name of a netlist" if name == "netlists" else _option(name)
+            troubles.add(f"{what} is empty", "give it a value, or leave it out", COMMAND_LINE)
+
+
+def _read_mode(entries: list[str], troubles: TroubleList) -> dict[str, int]:
+    """Return NET=0|1 entries as a mapping; a net with both values is a contradiction."""
+    mode: dict[str, int] = {}
+    for entry in filter(None, entries):
+        net, equals, value = entry.rpartition("=")
+        if not equals or not net or value not in ("0", "1"):
+            remedy = "write --mode NET=0 or --mode NET=1"
+            troubles.add(f"--mode {entry} does not hold a net at 0 or 1", remedy, COMMAND_LINE)
+        elif mode.setdefault(net, int(value)) != int(value):
+            troubles.add(f"--mode holds {net} at 0 and at 1", "keep one of the two", COMMAND_LINE)
+    return mode
+
+
+def _read_limits(entries: list[str], troubles: TroubleList) -> dict[str, int]:
+    """Return NAME=N entries as a mapping; the last one of a name wins."""
+    limits: dict[str, int] = {}
+    for entry in filter(None, entries):
+        name, equals, value = entry.partition("=")
+        if name not in LEAST_LIMIT:
+            remedy = near_misses(name, LEAST_LIMIT) or f"use one of {', '.join(LEAST_LIMIT)}, as in --limit fan_out=16"
+            troubles.add(f"--limit {entry} names no limit", remedy, COMMAND_LINE)
+        else:
+            number = _read_number(f"--limit {name}", value if equals else "nothing", LEAST_LIMIT[name], troubles)
+            limits[name] = number if number is not None else LEAST_LIMIT[name]
+    return limits
+
+
+def _read_number(option: str, value: str | None, least: int, troubles: TroubleList) -> int | None:
+    """Return a whole number from ``least`` to below ``BEYOND``, or None where not given or wrong."""
+    if not value:
+        return None
+    if re.fullmatch(r"[0-9]{1,20}", value) and least <= int(value) < BEYOND:
+        return int(value)
+    troubles.add(f"{option} is {value}", f"give a whole number of at least {least} and below 10^18", COMMAND_LINE)
+    return None

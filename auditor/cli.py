@@ -1,0 +1,206 @@
+"""The command line: what is asked, where text goes, and the exit status."""
+
+import contextlib
+import os
+import sys
+import traceback
+from collections.abc import Iterator, Sequence
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from auditor.arguments import COMMAND_LINE, Request, read_arguments
+from auditor.errors import InputError, InternalError, TroubleList, fail, near_misses
+from auditor.notation import SourcePlace
+from auditor.plan import Plan, merge
+from auditor.plan_file import read_plan
+from auditor.risks.verdict import verdict
+from auditor.risks.waivers import check_waivers
+
+if TYPE_CHECKING:
+    from auditor.report.facts import AuditFacts
+
+WRONG_USE = 2
+INTERNAL = 4
+INTERRUPTED = 130
+STATUS = {"pass": 0, "fail": 1, "undecided": 3}
+
+HELP = """\
+usage: auditor audit [NETLIST...] [options]
+       auditor --version | --help
+
+Audits an existing BIST pattern generator from its gate-level Verilog netlist: its register, every channel's
+taps and phase, the separations, and the load of every flip-flop.
+
+  auditor audit generator.v --cells library.lib --mode scan_en=0
+  auditor audit --plan plan.toml --json report.json
+
+auditor audit --help lists the options.
+"""
+
+
+def run(words: Sequence[str] | None = None) -> int:
+    """Run the command line (default: that of the process) and return the exit status."""
+    words = sys.argv[1:] if words is None else words
+    for stream in (sys.stdout, sys.stderr):
+        if hasattr(stream, "reconfigure"):  # a name that the terminal cannot show must not end the run
+            stream.reconfigure(errors="backslashreplace")
+    try:
+        return _command(words)
+    except InputError as error:
+        _say(_trouble_text(error))
+        return WRONG_USE
+    except KeyboardInterrupt:
+        _say("interrupted, no verdict\n")
+        return INTERRUPTED
+    except BrokenPipeError:
+        _drop_output()
+        return WRONG_USE
+    except SystemExit as leaving:  # argparse has printed its help
+        return leaving.code if isinstance(leaving.code, int) else WRONG_USE
+    except Exception as error:  # whatever gets here is our own defect
+        _say(_internal_text(error))
+        return INTERNAL
+
+
+def exit_status(facts: "AuditFacts", fail_at: str) -> int:
+    """Return the exit status of an audit that came to its end: 1 a finding that counts, 3 undecided, else 0."""
+    return STATUS[verdict(facts.findings, facts.undecided, fail_at)]
+
+
+def _command(words: Sequence[str]) -> int:
+    """Carry out what the words ask for."""
+    command = words[0] if words else ""
+    if command == "audit":
+        return _audit(read_arguments(words[1:]))
+    if command == "--version":
+        print(f"auditor {_version()}")
+        return 0
+    if command in ("--help", "-h", "help"):
+        print(HELP, end="")
+        return 0
+    remedy = near_misses(command, ["audit", "--version", "--help"]) or "write auditor audit NETLIST..., or see --help"
+    raise fail(f"{command} is no command of auditor" if command else "no command is given", remedy, COMMAND_LINE)
+
+
+def _audit(request: Request) -> int:
+    """Audit, write the report, then show it; return the exit status."""
+    plan = merge(read_plan(request.plan) if request.plan else None, request.options)
+    _check(plan, request.json)
+    from rich.console import Console  # noqa: PLC0415 - an error above is told without loading it
+
+    from auditor.audit import audit  # noqa: PLC0415
+    from auditor.report.json_report import json_text  # noqa: PLC0415
+    from auditor.report.progress import stages  # noqa: PLC0415
+    from auditor.report.terminal import print_audit  # noqa: PLC0415
+    from auditor.report.write import write_whole  # noqa: PLC0415
+
+    with stages(Console(stderr=True), not request.quiet and sys.stderr.isatty()) as progress:
+        facts = audit(plan, progress=progress)
+        text = json_text(facts) if request.json else ""
+    status = exit_status(facts, plan.fail_at)
+    with _closed_pipe_allowed():
+        if request.json and request.json != "-":
+            write_whole(Path(request.json), text)
+        elif request.json:
+            sys.stdout.write(text)
+            sys.stdout.flush()
+        if not request.quiet:
+            screen = sys.stderr if request.json == "-" else sys.stdout
+            print_audit(facts, Console(file=screen, highlight=False))
+            screen.flush()
+    return status
+
+
+def _version() -> str:
+    """Return the version of the installed distribution."""
+    from importlib import metadata  # noqa: PLC0415 - only asked for by --version and after an internal error
+
+    try:
+        return metadata.version("auditor")
+    except metadata.PackageNotFoundError:
+        return "unknown (not installed)"
+
+
+def _check(plan: Plan, json: str | None) -> None:
+    """Refuse what can be seen to fail before the long work starts. Raises ``InputError``."""
+    if not plan.netlists:
+        if plan.file:
+            raise fail("the plan names no netlist", "state [netlist] files", SourcePlace(str(plan.file)))
+        raise fail("no netlist is given", "name a Verilog file, or give --plan F", COMMAND_LINE)
+    check_waivers(plan)
+    if json and json != "-":
+        _check_target(Path(json), (*plan.netlists, *plan.cells, *([plan.file] if plan.file else [])))
+
+
+def _check_target(target: Path, sources: Sequence[Path]) -> None:
+    """Refuse a report file that cannot be written or that would overwrite a source of the audit."""
+    troubles = TroubleList()
+    place = SourcePlace(str(target))
+    remedy = "give --json another file"
+    if target.is_dir():
+        troubles.add("the report cannot be written: it is a directory", remedy, place)
+    elif not target.parent.is_dir():
+        troubles.add(f"the report cannot be written: there is no directory {target.parent}", "make it first", place)
+    elif target.exists() and any(source.exists() and target.samefile(source) for source in sources):
+        troubles.add("the report would overwrite a file that the audit reads", remedy, place)
+    elif not os.access(target if target.exists() else target.parent, os.W_OK):
+        troubles.add("the report cannot be written: writing there is not permitted", remedy, place)
+    troubles.raise_any()
+
+
+@contextlib.contextmanager
+def _closed_pipe_allowed() -> Iterator[None]:
+    """Let the reader of a pipe leave early, as ``| head`` does: what is left to print is dropped."""
+    try:
+        yield
+    except BrokenPipeError:
+        _drop_output()
+
+
+def _drop_output() -> None:
+    """Point both streams at nothing, so that the flush at the end of the process meets no closed pipe."""
+    nothing = os.open(os.devnull, os.O_WRONLY)
+    for stream in (sys.stdout, sys.stderr):
+        with contextlib.suppress(OSError, ValueError):  # a stream of a test has no descriptor
+            os.dup2(nothing, stream.fileno())
+    os.close(nothing)
+
+
+def _say(text: str) -> None:
+    """Print a message to standard error; there is nobody left to tell if that fails."""
+    try:
+        sys.stderr.write(text)
+        sys.stderr.flush()
+    except BrokenPipeError:
+        _drop_output()
+
+
+def _trouble_text(error: InputError) -> str:
+    """Return one block a trouble (place and what was found, then the remedy), and their number if several."""
+    blocks = []
+    for trouble in error.troubles:
+        place = f"{trouble.place}: " if trouble.place else ""
+        blocks.append(f"error: {_plain(place + trouble.found)}\n  remedy: {_plain(trouble.remedy)}\n")
+    if len(blocks) > 1:
+        blocks.append(f"{len(blocks)} errors, no verdict\n")
+    return "".join(blocks)
+
+
+def _internal_text(error: Exception) -> str:
+    """Return the message on a defect of our own; with AUDITOR_TRACEBACK=1 it carries the traceback."""
+    what = _plain(f"{type(error).__name__}: {error}")
+    frames = traceback.extract_tb(error.__traceback__)
+    where = f" ({Path(frames[-1].filename).name}:{frames[-1].lineno})" if frames else ""
+    trace = "".join(traceback.format_exception(error)) if os.environ.get("AUDITOR_TRACEBACK") == "1" else ""
+    contradiction = "the auditor contradicts itself" if isinstance(error, InternalError) else "the auditor broke"
+    return (
+        f"{trace}internal error: {contradiction}, no verdict: {what}{where}\n"
+        "  This is a defect of auditor, not of your files. Please send this message, the command line,\n"
+        f"  version {_version()}, and what AUDITOR_TRACEBACK=1 adds to the message.\n"
+    )
+
+
+def _plain(text: str) -> str:
+    """Return the text without control codes, which a hostile name could carry; further lines are indented."""
+    lines = ("".join(char if char.isprintable() else "?" for char in line) for line in text.split("\n"))
+    return "\n  ".join(lines)

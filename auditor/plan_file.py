@@ -1,0 +1,257 @@
+"""Reads a plan from its TOML file; every trouble in it is reported together, with its line where that can be found."""
+
+import re
+import tomllib
+from collections.abc import Iterable
+from dataclasses import dataclass, field
+from pathlib import Path
+from typing import Any
+
+from auditor.errors import TroubleList, fail, near_misses
+from auditor.notation import SourcePlace
+from auditor.plan import BEYOND, LEAST_LIMIT, Limits, Patterns, Plan, Waiver
+
+KEYS: dict[str, tuple[str, ...]] = {
+    "netlist": ("files", "top", "cells", "defines"),
+    "channels": ("names", "reference"),
+    "chains": ("length",),
+    "patterns": ("count", "shift_cycles", "capture_cycles", "generator_in_capture", "launch"),
+    "limits": tuple(LEAST_LIMIT),
+}
+SECTIONS = ("netlist", "mode", "channels", "chains", "patterns", "limits", "waivers")
+WAIVER_KEYS = ("slug", "where", "reason")
+LATER_SECTIONS = ("capture", "claims", "seeds")
+LATER_KEYS = {"chains": ("file", "scan_outputs")}
+
+_HEADER = re.compile(r"""\s*\[{1,2}\s*([\w."'-]+)\s*\]{1,2}\s*(?:\#.*)?$""")
+_TOML_PLACE = re.compile(r"\s*\(at (?:line (\d+), column \d+|end of document)\)$")
+
+
+def read_plan(path: Path) -> Plan:
+    """Return the plan in the file ``path``; paths in it are relative to it. Raises ``InputError``."""
+    text = _read_text(path)
+    reader = _Reader(str(path), text.splitlines(), _parse(text, path), path.parent)
+    reader.check_names()
+    limits = {name: reader.number("limits", name, least) for name, least in LEAST_LIMIT.items()}
+    plan = Plan(
+        netlists=reader.paths("netlist", "files"),
+        cells=reader.paths("netlist", "cells"),
+        top=reader.text("netlist", "top"),
+        defines=reader.defines(),
+        mode=reader.mode(),
+        channels=reader.texts("channels", "names"),
+        reference=reader.text("channels", "reference"),
+        chain_length=reader.number("chains", "length", 1),
+        patterns=reader.patterns(),
+        limits=Limits(**limits),
+        waivers=reader.waivers(),
+        file=path,
+    )
+    reader.troubles.raise_any()
+    return plan
+
+
+def _read_text(path: Path) -> str:
+    """Return the text of the file, or raise ``InputError`` with what is wrong with the file as a whole."""
+    place = SourcePlace(str(path))
+    try:
+        data = path.read_bytes()
+    except IsADirectoryError:
+        raise fail("the plan is a directory", "give the plan's TOML file", place) from None
+    except (OSError, ValueError) as error:  # ValueError: a NUL in the name
+        reason = getattr(error, "strerror", None) or str(error)
+        raise fail(f"the plan cannot be read: {reason}", "mend the path after --plan", place) from None
+    if not data.strip():
+        raise fail("the plan is empty", "state at least [netlist] files", place)
+    try:
+        text = data.decode("utf-8-sig")
+    except UnicodeDecodeError as error:
+        line = data.count(b"\n", 0, error.start) + 1
+        found = "the plan is not UTF-8 text"
+        raise fail(found, "give a TOML file in UTF-8", SourcePlace(str(path), line)) from None
+    if "\0" in text:
+        raise fail("the plan is a binary file", "give a TOML file in UTF-8", place)
+    return text
+
+
+def _parse(text: str, path: Path) -> dict[str, Any]:
+    """Return the TOML document."""
+    try:
+        return tomllib.loads(text)
+    except RecursionError:
+        raise fail("the plan is nested too deeply", "give a plain plan", SourcePlace(str(path))) from None
+    except ValueError as error:  # TOMLDecodeError, or a number of thousands of digits
+        message = str(error)
+        where = _TOML_PLACE.search(message)
+        line = text.count("\n") + 1 if where else 0
+        if where and where[1]:
+            line = int(where[1])
+        found = f"the plan is not valid TOML: {_TOML_PLACE.sub('', message)}"
+        raise fail(found, "mend this line", SourcePlace(str(path), line)) from None
+
+
+@dataclass(slots=True)
+class _Reader:
+    """Takes typed values out of a TOML document and collects what is wrong with them."""
+
+    file: str
+    lines: list[str]
+    document: dict[str, Any]
+    folder: Path
+    troubles: TroubleList = field(default_factory=TroubleList)
+
+    def place(self, section: str, key: str | None = None, index: int = 0) -> SourcePlace:
+        """Return where a key stands, in the ``index``-th table of that name; line 0 where it cannot be found."""
+        name = re.escape(key) if key else ""
+        wanted = re.compile(rf"""\s*(?:{name}|"{name}"|'{name}')\s*[.=]""")
+        current, tables = "", 1 if section == "" else 0
+        for number, line in enumerate(self.lines, 1):
+            if header := _HEADER.match(line):
+                current = header[1]
+                tables += current == section
+                if key is None and current == section and tables > index:
+                    return SourcePlace(self.file, number)
+            elif key and current == section and tables > index and wanted.match(line):
+                return SourcePlace(self.file, number)
+        return SourcePlace(self.file)
+
+    def wrong(self, section: str, key: str, wants: str, remedy: str, index: int = 0) -> None:
+        """Note that a value is not what its key wants."""
+        self.troubles.add(f"{key} in [{section}] must be {wants}", remedy, self.place(section, key, index))
+
+    def check_names(self) -> None:
+        """Note every section and key that is unknown or comes later."""
+        for section, content in self.document.items():
+            if section in LATER_SECTIONS:
+                self._later(f"[{section}]", "remove it", self.place(section))
+            elif section not in SECTIONS:
+                place = self.place(section) if isinstance(content, dict | list) else self.place("", section)
+                self._unknown(section, "the plan", (*SECTIONS, *LATER_SECTIONS), place)
+            elif section != "waivers" and not isinstance(content, dict):
+                self.troubles.add(f"{section} must be a section", f"write [{section}]", self.place("", section))
+            for key in self._table(section) if section in KEYS else ():
+                if key in LATER_KEYS.get(section, ()):
+                    remedy = "remove it or state [chains] length"
+                    self._later(f"{key} in [{section}]", remedy, self.place(section, key))
+                elif key not in KEYS[section]:
+                    self._unknown(key, f"[{section}]", KEYS[section], self.place(section, key))
+
+    def _later(self, what: str, remedy: str, place: SourcePlace) -> None:
+        self.troubles.add(f"{what} comes with a later version of auditor", remedy, place)
+
+    def _unknown(self, key: str, where: str, known: Iterable[str], place: SourcePlace) -> None:
+        remedy = near_misses(key, known) or f"use one of {', '.join(known)}, or remove it"
+        self.troubles.add(f"unknown key {key} in {where}", remedy, place)
+
+    def _table(self, section: str) -> dict[str, Any]:
+        content = self.document.get(section, {})
+        return content if isinstance(content, dict) else {}
+
+    def text(self, section: str, key: str) -> str | None:
+        """Return a text that is not empty, or None where not stated."""
+        value = self._table(section).get(key)
+        if value is None or (isinstance(value, str) and value):
+            return value
+        self.wrong(section, key, "a text that is not empty", f'write {key} = "..."')
+        return None
+
+    def texts(self, section: str, key: str) -> tuple[str, ...]:
+        """Return a list of texts that are not empty; an absent key gives an empty one."""
+        value = self._table(section).get(key, [])
+        if _is_texts(value):
+            return tuple(value)
+        self.wrong(section, key, "a list of texts", f'write {key} = ["...", "..."]')
+        return ()
+
+    def paths(self, section: str, key: str) -> tuple[Path, ...]:
+        """Return a list of paths, taken relative to the plan."""
+        return tuple(self.folder / name for name in self.texts(section, key))
+
+    def number(self, section: str, key: str, least: int) -> int | None:
+        """Return a whole number from ``least`` to below ``BEYOND``, or None where not stated."""
+        value = self._table(section).get(key)
+        if value is None or (isinstance(value, int) and not isinstance(value, bool) and least <= value < BEYOND):
+            return value
+        self.wrong(section, key, f"a whole number of at least {least} and below 10^18", f"write {key} = N")
+        return None
+
+    def choice(self, section: str, key: str, known: tuple[str, ...]) -> str:
+        """Return one of the known words; the first where not stated."""
+        value = self._table(section).get(key, known[0])
+        if value in known:
+            return str(value)
+        words = " or ".join(f'"{word}"' for word in known)
+        self.wrong(section, key, words, f"write {key} = {words}")
+        return known[0]
+
+    def defines(self) -> dict[str, str]:
+        """Return the macros of [netlist] defines."""
+        value = self._table("netlist").get("defines", {})
+        if isinstance(value, dict) and all(isinstance(text, str) for text in value.values()):
+            return value
+        self.wrong("netlist", "defines", "a table of texts", 'write defines = { NAME = "VALUE" }')
+        return {}
+
+    def mode(self) -> dict[str, int]:
+        """Return the constants of [mode]."""
+        mode = {}
+        for net, value in self._table("mode").items():
+            if isinstance(value, dict):
+                place = self.place(f"mode.{net}")
+                remedy = f'state one mode under [mode]; a name with dots needs quotes there, as in "{net}.enable" = 0'
+                self._later(f"several modes ([mode.{net}])", remedy, place if place.line else self.place("mode", net))
+            elif isinstance(value, int) and not isinstance(value, bool) and value in (0, 1):
+                mode[net] = value
+            else:
+                self.wrong("mode", net, "0 or 1", "write the constant as 0 or 1, without quotes")
+        return mode
+
+    def patterns(self) -> Patterns | None:
+        """Return [patterns], or None where the section is absent or wrong."""
+        table = self._table("patterns")
+        if not table:
+            return None
+        launch = self.choice("patterns", "launch", ("none", "shift"))
+        if launch == "shift":
+            remedy = 'remove it or write launch = "none"'
+            self._later('launch = "shift" in [patterns]', remedy, self.place("patterns", "launch"))
+        for key in ("count", "shift_cycles"):
+            if key not in table:
+                self.troubles.add(f"[patterns] has no {key}", f"state {key} = N", self.place("patterns"))
+        count, shift = self.number("patterns", "count", 1), self.number("patterns", "shift_cycles", 1)
+        capture = self.number("patterns", "capture_cycles", 0) or 0
+        generator = self.choice("patterns", "generator_in_capture", ("holds", "advances"))
+        return Patterns(count, shift, capture, generator) if count and shift else None
+
+    def waivers(self) -> tuple[Waiver, ...]:
+        """Return [[waivers]]; each needs a slug, objects and a reason."""
+        content = self.document.get("waivers", [])
+        if not isinstance(content, list) or not all(isinstance(table, dict) for table in content):
+            self.troubles.add("waivers must be a list of tables", "write [[waivers]]", self.place("", "waivers"))
+            return ()
+        waivers = []
+        for index, table in enumerate(content):
+            for key in table:
+                if key not in WAIVER_KEYS:
+                    self._unknown(key, "[[waivers]]", WAIVER_KEYS, self.place("waivers", key, index))
+            slug, where, reason = (table.get(key) for key in WAIVER_KEYS)
+            good = True
+            for key, value in (("slug", slug), ("reason", reason)):
+                if not isinstance(value, str) or not value.strip():
+                    good = self._incomplete(key, "a text that is not empty", f'write {key} = "..."', index)
+            if not where or not _is_texts(where):
+                good = self._incomplete("where", "a list of names", 'write where = ["...", "..."]', index)
+            if good:
+                waivers.append(Waiver(slug, tuple(where), reason))
+        return tuple(waivers)
+
+    def _incomplete(self, key: str, wants: str, remedy: str, index: int) -> bool:
+        """Note that a waiver's key is absent or wrong; return False."""
+        place = self.place("waivers", key, index)
+        place = place if place.line else self.place("waivers", None, index)
+        self.troubles.add(f"{key} in [[waivers]] must be {wants}", remedy, place)
+        return False
+
+
+def _is_texts(value: object) -> bool:
+    return isinstance(value, list) and all(isinstance(item, str) and item for item in value)

@@ -1,0 +1,55 @@
+"""What was asked and is not decided: a sentence each, for the report and the exit status."""
+
+from collections.abc import Iterator
+
+from auditor.risks.evidence import Evidence, decimal, register_name
+
+
+def open_questions(evidence: Evidence) -> tuple[str, ...]:
+    """Return a sentence for every question of this audit that stays open."""
+    parts = (_proofs, _orders, _separations, _test_length)
+    return tuple(sentence for part in parts for sentence in part(evidence))
+
+
+def _proofs(evidence: Evidence) -> Iterator[str]:
+    for refusal in evidence.extraction.refusals:
+        if refusal.undecided:
+            yield f"Whether {refusal.what} is affine is not decided: {refusal.because} (at {refusal.gate})."
+    if evidence.machine is None:
+        yield "Without a machine nothing is known about polynomials, periods, taps, leads and separations."
+
+
+def _orders(evidence: Evidence) -> Iterator[str]:
+    for register in evidence.registers:
+        if register.period is None:
+            name = register_name(evidence.storage_names(register))
+            yield f"The period of register {name} is not decided: the factors of an order it needs are not known."
+
+
+def _separations(evidence: Evidence) -> Iterator[str]:
+    """Yield a sentence where a bound needs leads that have no value and is not certified without them."""
+    bound, table = evidence.bound, evidence.phases
+    if bound is None or table is None or evidence.machine is None:
+        return
+    if table.decides(bound):
+        return
+    leads = [table.phases[number].kind for number, _ in evidence.channels()]
+    unknown, certified = leads.count("undecided"), table.certified_at_least
+    if unknown and (certified is None or certified < bound):
+        yield (
+            f"Whether all channels are {decimal(bound)} cycles apart is not decided: {unknown} of {len(leads)} leads "
+            f"have no value, and at least {decimal(certified or 0)} cycles are certified."
+        )
+
+
+def _test_length(evidence: Evidence) -> Iterator[str]:
+    clocks, table = evidence.test_clocks, evidence.phases
+    if clocks is None or table is None or evidence.machine is None:
+        return
+    for group in table.classes:
+        if group.modulus is None and evidence.chain_fed(group):
+            name = evidence.machine.observed[group.reference].name
+            yield (
+                f"Whether the stream of {name} repeats within the {decimal(clocks)} cycles of the planned test is not "
+                "decided: its period is not known."
+            )

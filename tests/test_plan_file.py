@@ -1,0 +1,221 @@
+"""Reading a plan from TOML: what it says, and the texts of everything that can be wrong with it."""
+
+from pathlib import Path
+
+import pytest
+
+from auditor.errors import InputError
+from auditor.plan import Limits, Patterns, Waiver
+from auditor.plan_file import read_plan
+
+COMPLETE = """\
+[netlist]
+files = ["generator.v", "sub/rest.v.gz"]
+top = "generator"
+cells = ["../lib/cells.lib"]
+defines = { SCAN = "1" }
+
+[mode]
+scan_en = 0
+"u1.hold" = 1
+
+[channels]
+names = ["so", "extra*"]
+reference = "so[0]"
+
+[chains]
+length = 120
+
+[patterns]
+count = 10_000
+shift_cycles = 120
+capture_cycles = 2
+generator_in_capture = "advances"
+launch = "none"
+
+[limits]
+separation = 500
+fan_out = 16
+taps = 3
+depth = 0
+
+[[waivers]]
+slug = "single-tap-channel"
+where = ["so[0]"]
+reason = "feeds a chain of one scan cell"
+"""
+
+
+def troubles(tmp_path: Path, text: str | bytes) -> list[str]:
+    """Return the messages that reading a plan of this text gives, with the plan's folder cut off."""
+    plan = tmp_path / "plan.toml"
+    plan.write_bytes(text if isinstance(text, bytes) else text.encode())
+    with pytest.raises(InputError) as caught:
+        read_plan(plan)
+    return [str(trouble).replace(f"{tmp_path}/", "") for trouble in caught.value.troubles]
+
+
+def test_a_complete_plan_is_read(tmp_path: Path) -> None:
+    """Every key of the plan arrives, and its paths are relative to it."""
+    (tmp_path / "plan.toml").write_text(COMPLETE)
+    plan = read_plan(tmp_path / "plan.toml")
+    assert plan.netlists == (tmp_path / "generator.v", tmp_path / "sub/rest.v.gz")
+    assert plan.cells == (tmp_path / "../lib/cells.lib",)
+    assert (plan.top, plan.defines) == ("generator", {"SCAN": "1"})
+    assert plan.mode == {"scan_en": 0, "u1.hold": 1}
+    assert (plan.channels, plan.reference, plan.chain_length) == (("so", "extra*"), "so[0]", 120)
+    assert plan.patterns == Patterns(10_000, 120, 2, "advances")
+    assert plan.limits == Limits(500, 16, 3, 0)
+    assert plan.waivers == (Waiver("single-tap-channel", ("so[0]",), "feeds a chain of one scan cell"),)
+    assert (plan.fail_at, plan.work_limit, plan.file) == ("error", None, tmp_path / "plan.toml")
+
+
+def test_a_short_plan_leaves_the_rest_unasked(tmp_path: Path) -> None:
+    """A section that is not there asks nothing; a byte order mark and CRLF do not matter."""
+    (tmp_path / "plan.toml").write_bytes(b'\xef\xbb\xbf[netlist]\r\nfiles = ["a.v"]\r\n')
+    plan = read_plan(tmp_path / "plan.toml")
+    assert plan.netlists == (tmp_path / "a.v",)
+    assert (plan.patterns, plan.chain_length, plan.limits, plan.mode) == (None, None, Limits(), {})
+
+
+def test_a_file_that_is_no_plan_says_so(tmp_path: Path) -> None:
+    """A missing, empty, binary or broken plan and a directory each give one message with its place."""
+    for path, message in (
+        (
+            tmp_path / "none.toml",
+            "none.toml: the plan cannot be read: No such file or directory; mend the path after --plan",
+        ),
+        (tmp_path, f"{tmp_path}: the plan is a directory; give the plan's TOML file"),
+    ):
+        with pytest.raises(InputError) as caught:
+            read_plan(path)
+        assert str(caught.value).replace(f"{tmp_path}/", "") == message
+    assert troubles(tmp_path, " \n") == ["plan.toml: the plan is empty; state at least [netlist] files"]
+    assert troubles(tmp_path, b"a\nb\xff\xfe") == ["plan.toml:2: the plan is not UTF-8 text; give a TOML file in UTF-8"]
+    assert troubles(tmp_path, "a\0b") == ["plan.toml: the plan is a binary file; give a TOML file in UTF-8"]
+    assert troubles(tmp_path, "[netlist]\nfiles = [\n") == [
+        "plan.toml:3: the plan is not valid TOML: Invalid value; mend this line"
+    ]
+    assert troubles(tmp_path, "[netlist]\nfiles 1\n") == [
+        "plan.toml:2: the plan is not valid TOML: Expected '=' after a key in a key/value pair; mend this line"
+    ]
+
+
+def test_deep_nesting_and_endless_numbers_give_a_message(tmp_path: Path) -> None:
+    """Neither a deep nest of lists nor a number of thousands of digits ends in a traceback."""
+    assert len(troubles(tmp_path, "a = " + "[" * 100_000)) == 1
+    assert len(troubles(tmp_path, "[chains]\nlength = " + "9" * 10_000)) == 1
+
+
+def test_unknown_names_suggest_known_ones(tmp_path: Path) -> None:
+    """An unknown section or key is named with its line and a near miss, or with all that is known."""
+    text = (
+        '[netlst]\nfiles = ["a.v"]\n[chains]\nlenght = 3\n[limits]\nzzz = 1\n[[waivers]]\nslug = "a"\nwhere = ["b"]\n'
+    )
+    text += 'reason = "c"\nuntil = 1\n'
+    assert troubles(tmp_path, "size = 1\n" + text) == [
+        "plan.toml:1: unknown key size in the plan; use one of netlist, mode, channels, chains, patterns, limits, "
+        "waivers, capture, claims, seeds, or remove it",
+        "plan.toml:2: unknown key netlst in the plan; did you mean netlist?",
+        "plan.toml:5: unknown key lenght in [chains]; did you mean length?",
+        "plan.toml:7: unknown key zzz in [limits]; use one of separation, fan_out, taps, depth, or remove it",
+        "plan.toml:12: unknown key until in [[waivers]]; use one of slug, where, reason, or remove it",
+    ]
+
+
+def test_parts_that_come_later_are_refused(tmp_path: Path) -> None:
+    """What the plan may hold one day is never ignored in silence."""
+    text = "[mode.shift]\nscan_en = 0\n[capture]\na = 1\n[claims]\n[seeds]\n"
+    text += (
+        '[chains]\nfile = "c.csv"\nscan_outputs = ["x"]\n[patterns]\ncount = 1\nshift_cycles = 1\nlaunch = "shift"\n'
+    )
+    later = "comes with a later version of auditor"
+    assert troubles(tmp_path, text) == [
+        f"plan.toml:1: several modes ([mode.shift]) {later}; state one mode under [mode]; a name with dots needs "
+        'quotes there, as in "shift.enable" = 0',
+        f"plan.toml:3: [capture] {later}; remove it",
+        f"plan.toml:5: [claims] {later}; remove it",
+        f"plan.toml:6: [seeds] {later}; remove it",
+        f"plan.toml:8: file in [chains] {later}; remove it or state [chains] length",
+        f"plan.toml:9: scan_outputs in [chains] {later}; remove it or state [chains] length",
+        f'plan.toml:13: launch = "shift" in [patterns] {later}; remove it or write launch = "none"',
+    ]
+
+
+def test_a_dotted_name_without_quotes_is_explained(tmp_path: Path) -> None:
+    """A hierarchical net written without quotes is a table to TOML; the message gives the line and the cure."""
+    (message,) = troubles(tmp_path, "[mode]\nscan = 1\nu1.enable = 0\n")
+    assert message.startswith("plan.toml:3: several modes ([mode.u1])")
+    assert 'as in "u1.enable" = 0' in message
+
+
+def test_values_of_the_wrong_kind_are_listed_together(tmp_path: Path) -> None:
+    """Each wrong value is named with its line, what it must be, and how to write it; all in one go."""
+    text = """\
+[netlist]
+files = "a.v"
+top = ""
+cells = [1]
+defines = ["A"]
+[mode]
+a = 2
+b = true
+c = "0"
+[channels]
+names = [""]
+reference = 3
+[chains]
+length = 0
+[patterns]
+shift_cycles = 1.5
+capture_cycles = -1
+generator_in_capture = "runs"
+[limits]
+separation = 0
+fan_out = true
+taps = "3"
+depth = -1
+"""
+    whole = "must be a whole number of at least"
+    below = "and below 10^18; write"
+    assert troubles(tmp_path, text) == [
+        'plan.toml:2: files in [netlist] must be a list of texts; write files = ["...", "..."]',
+        'plan.toml:3: top in [netlist] must be a text that is not empty; write top = "..."',
+        'plan.toml:4: cells in [netlist] must be a list of texts; write cells = ["...", "..."]',
+        'plan.toml:5: defines in [netlist] must be a table of texts; write defines = { NAME = "VALUE" }',
+        *(
+            f"plan.toml:{line}: {net} in [mode] must be 0 or 1; write the constant as 0 or 1, without quotes"
+            for line, net in ((7, "a"), (8, "b"), (9, "c"))
+        ),
+        'plan.toml:11: names in [channels] must be a list of texts; write names = ["...", "..."]',
+        'plan.toml:12: reference in [channels] must be a text that is not empty; write reference = "..."',
+        f"plan.toml:14: length in [chains] {whole} 1 {below} length = N",
+        "plan.toml:15: [patterns] has no count; state count = N",
+        f"plan.toml:16: shift_cycles in [patterns] {whole} 1 {below} shift_cycles = N",
+        f"plan.toml:17: capture_cycles in [patterns] {whole} 0 {below} capture_cycles = N",
+        'plan.toml:18: generator_in_capture in [patterns] must be "holds" or "advances"; '
+        'write generator_in_capture = "holds" or "advances"',
+        f"plan.toml:20: separation in [limits] {whole} 1 {below} separation = N",
+        f"plan.toml:21: fan_out in [limits] {whole} 1 {below} fan_out = N",
+        f"plan.toml:22: taps in [limits] {whole} 1 {below} taps = N",
+        f"plan.toml:23: depth in [limits] {whole} 0 {below} depth = N",
+    ]
+
+
+def test_a_section_must_be_a_section(tmp_path: Path) -> None:
+    """A value where a section belongs is refused, and so are waivers that are no list of tables."""
+    assert troubles(tmp_path, "netlist = 1\nmode = 2\nwaivers = 3\n") == [
+        "plan.toml:1: netlist must be a section; write [netlist]",
+        "plan.toml:2: mode must be a section; write [mode]",
+        "plan.toml:3: waivers must be a list of tables; write [[waivers]]",
+    ]
+
+
+def test_an_incomplete_waiver_is_refused_in_its_own_table(tmp_path: Path) -> None:
+    """A waiver needs a slug, objects and a reason; the line is that of the waiver concerned."""
+    good = '[[waivers]]\nslug = "a"\nwhere = ["b"]\nreason = "c"\n'
+    assert troubles(tmp_path, good + '[[waivers]]\nwhere = []\nreason = " "\n') == [
+        'plan.toml:5: slug in [[waivers]] must be a text that is not empty; write slug = "..."',
+        'plan.toml:6: where in [[waivers]] must be a list of names; write where = ["...", "..."]',
+        'plan.toml:7: reason in [[waivers]] must be a text that is not empty; write reason = "..."',
+    ]
