@@ -4,7 +4,7 @@
 A linear map costs one table look-up and one XOR for each byte of an element, some 20 ns at 128 bits.
 """
 
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Iterator, Sequence
 from typing import TypeAlias
 
 import numpy as np
@@ -16,8 +16,6 @@ from auditor.notation import Polynomial
 Words: TypeAlias = NDArray[np.uint64]
 Elements: TypeAlias = NDArray[np.uint64]
 
-# 2^64 divided by the golden ratio, odd: the multiplier of Knuth's multiplicative hashing (1973).
-_GOLDEN = 0x9E3779B97F4A7C15
 _NIBBLE = 4
 BLOCK = 1 << 14  # rows for one numpy call: they and the tables of a linear map fit the second-level cache
 
@@ -136,18 +134,6 @@ class Ring:
         return result
 
 
-def hash_keys(elements: Elements) -> Words:
-    """Return one 64-bit key for each row: equal rows have equal keys, unequal rows rarely, in the upper bits too."""
-    keys = np.zeros(len(elements), np.uint64)
-    factor = 1
-    for word in range(elements.shape[1]):
-        factor = factor * _GOLDEN % (1 << 64)
-        keys += elements[:, word] * np.uint64(factor)
-    keys ^= keys >> np.uint64(32)
-    keys *= np.uint64(_GOLDEN)
-    return keys
-
-
 def geometric_block(ring: Ring, starts: Elements, ratio: Polynomial, count: int) -> Elements:
     """Return starts, starts ratio, ..., starts ratio^(count - 1) one below the other, by doubling."""
     block, done = starts, 1
@@ -157,17 +143,14 @@ def geometric_block(ring: Ring, starts: Elements, ratio: Polynomial, count: int)
     return block[: count * len(starts)]
 
 
-def progression_keys(ring: Ring, starts: Elements, ratio: Polynomial, count: int) -> Words:
-    """Return the keys of starts ratio^k for k = 0 ... count - 1, those of one k side by side."""
+def progression(ring: Ring, starts: Elements, ratio: Polynomial, count: int) -> Iterator[Elements]:
+    """Yield starts ratio^k for k = 0 ... count - 1, those of one k side by side, in blocks of about ``BLOCK`` rows."""
     together = max(1, min(count, BLOCK // max(1, len(starts))))
     block = geometric_block(ring, starts, ratio, together)
     advance = ring.multiplier(power_modulo(ratio, together, ring.f))
-    keys = np.empty(count * len(starts), np.uint64)
-    for first in range(0, len(keys), max(1, len(block))):
-        part = keys[first : first + len(block)]
-        part[:] = hash_keys(block)[: len(part)]
+    for done in range(0, count, together):
+        yield block[: (count - done) * len(starts)]
         block = advance(block)
-    return keys
 
 
 def _bytes_of(elements: Elements) -> NDArray[np.uint8]:

@@ -1,17 +1,18 @@
 """Values that are few steps of x apart, found without logarithms: works at any degree and for any f.
 
 If value_i = x^d value_j with 0 < d < H, then d = k B - b with 0 <= b < B and 0 < k <= ceil(H / B), and
-x^b value_i = x^(k B) value_j. With B near the root of H two tables of about m sqrt(H) elements hold every such
-meeting (the balance of Shanks 1971, with all m values in both tables).
+x^b value_i = x^(k B) value_j. With B near the root of H, a table of m sqrt(H) elements and as many look-ups find
+every such meeting (the balance of Shanks 1971, with all m values on both sides).
 """
 
 from collections.abc import Iterator, Sequence
-from itertools import combinations, product
+from itertools import combinations
 from math import isqrt
 
 import numpy as np
 
-from auditor.gf2.batch import Ring, Words, progression_keys
+from auditor.gf2.batch import Ring, progression
+from auditor.gf2.keys import KeyTable, hash_keys
 from auditor.gf2.order import order_of_x
 from auditor.gf2.polynomial import multiply_modulo, power_modulo, remainder
 from auditor.notation import Polynomial
@@ -55,29 +56,18 @@ def _meetings(values: Sequence[Polynomial], f: Polynomial, reach: int) -> Iterat
         return
     ring, count = Ring(f), len(values)
     starts = ring.pack(values)
-    small = isqrt(reach - 2) + 1
+    small = min(isqrt(reach - 2) + 1, max(1, KeyTable.LARGEST // count))
+    table = KeyTable(np.concatenate([hash_keys(block) for block in progression(ring, starts, _X, small)]))
     stride = power_modulo(_X, small, f)
-    left = progression_keys(ring, starts, _X, small)
-    right = progression_keys(ring, ring.multiplier(stride)(starts), stride, -(-(reach - 1) // small))
-    common = np.intersect1d(left, right)
-    right_places = _places(right, common)
     powers: dict[int, Polynomial] = {}
-    for key, places in _places(left, common).items():
-        for place, other in product(places, right_places[key]):
-            (b, i), (k, j) = divmod(place, count), divmod(other, count)
+    done = 0
+    for block in progression(ring, ring.multiplier(stride)(starts), stride, -(-(reach - 1) // small)):
+        for row, place in table.candidates(hash_keys(block)):
+            (k, j), (b, i) = divmod(done + row, count), divmod(place, count)
             d = (k + 1) * small - b
             if d < reach and values[i] != values[j]:
                 if d not in powers:
                     powers[d] = power_modulo(_X, d, f)
                 if multiply_modulo(powers[d], values[j], f) == values[i]:
                     yield i, j, d
-
-
-def _places(keys: Words, wanted: Words) -> dict[int, list[int]]:
-    """Return for each wanted key, all of which occur, where it stands; ``wanted`` is sorted."""
-    found: dict[int, list[int]] = {}
-    if len(wanted):
-        nearest = np.minimum(np.searchsorted(wanted, keys), len(wanted) - 1)
-        for place in np.flatnonzero(wanted[nearest] == keys).tolist():
-            found.setdefault(int(keys[place]), []).append(place)
-    return found
+        done += len(block)
