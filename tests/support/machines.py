@@ -1,6 +1,7 @@
 """Abstract linear machines for tests, and the plain mathematics that tells what an audit must find.
 
-Nothing here uses the auditor: a machine is stepped, walked and shifted bit by bit, so that its answers are a second road.
+Nothing here uses the auditor: a machine is stepped, walked and shifted bit by bit, so that its answers are a second
+road.
 
     x(t+1) = A x(t) + a        y_i(t) = c_i x(t) + e_i        (over GF(2); bit k of a row = element k)
 """
@@ -12,7 +13,7 @@ from dataclasses import dataclass, replace
 
 @dataclass(frozen=True)
 class Machine:
-    """n elements and m channels: ``rows`` of A, ``offset`` a (bit i = row i), ``channels`` c_i, ``constants`` (bit i = e_i)."""
+    """n elements, m channels: ``rows`` of A, ``offset`` a (bit i = row i), ``channels`` c_i, ``constants`` e."""
 
     rows: tuple[int, ...]
     channels: tuple[int, ...] = ()
@@ -64,7 +65,7 @@ def row_of(elements: Iterable[int]) -> int:
 
 
 def fibonacci(stages: Iterable[int], size: int) -> Machine:
-    """Return the register whose stage 1 (element 0) takes the sum of ``stages`` and that shifts towards stage ``size``."""
+    """Return the register whose stage 1 (element 0) takes the sum of ``stages``, shifting towards stage ``size``."""
     return Machine((row_of(s - 1 for s in stages), *(1 << k for k in range(size - 1))))
 
 
@@ -181,16 +182,17 @@ def rank(rows: Iterable[int]) -> int:
     return len(pivots)
 
 
-def lead_by_stepping(machine: Machine, channel: int, reference: int, limit: int) -> int | None:
-    """Return the least s < ``limit`` with c A^T = c_ref A^(T+s), or None."""
+def lead_by_stepping(machine: Machine, channel: int, reference: int) -> int | None:
+    """Return the least s with c A^T = c_ref A^(T+s), or None after the whole orbit of the reference."""
     row, other = machine.channels[channel], machine.channels[reference]
     for _ in range(transient(machine)):
         row, other = machine.pulled_back(row), machine.pulled_back(other)
-    for s in range(limit):
-        if row == other:
-            return s
-        other = machine.pulled_back(other)
-    return None
+    start, steps = other, 0
+    while row != other:
+        other, steps = machine.pulled_back(other), steps + 1
+        if other == start:
+            return None
+    return steps
 
 
 def berlekamp_massey(stream: Sequence[int]) -> int:
