@@ -1,10 +1,12 @@
 """What several writers take from the facts in the same way: channels, closest pairs, the heaviest output."""
 
+from collections.abc import Sequence
+from dataclasses import replace
 from typing import NamedTuple
 
 from auditor.cone.cone import Load
 from auditor.machine.machine import ObservedRow, Refusal
-from auditor.phases.table import Phase
+from auditor.phases.table import Phase, PhaseClass
 from auditor.report.facts import AuditFacts
 
 
@@ -65,31 +67,37 @@ def heaviest_output(load: Load) -> int | None:
 def closest_pairs(facts: AuditFacts, count: int) -> list[Pair]:
     """Return the ``count`` pairs of channels with the smallest separations, nearest first.
 
-    On the circle of a class's leads, a pair with more than ``count`` channels between its two has ``count`` pairs
-    between them that are no farther apart; so only near neighbours on the circle are compared. Pairs of undecided
-    leads come from the bounded search.
+    Pairs whose leads are undecided come from the bounded search of the phase table.
     """
     machine, table = facts.extraction.machine, facts.phases
     if machine is None or table is None:
         return []
-    found: dict[tuple[int, int], Pair] = {}
-    for i, j, cycles, complement in table.close_pairs:
-        found[min(i, j), max(i, j)] = Pair(cycles, min(i, j), max(i, j), complement)
+    fed = {k for k, row in enumerate(machine.observed) if not row.cut_from}
+    known = [Pair(c, min(i, j), max(i, j), complement) for i, j, c, complement in table.close_pairs if {i, j} <= fed]
     for group in table.classes:
-        circle = sorted(_known_leads(facts, group.channels)) if group.modulus else []
-        for at, (lead, i) in enumerate(circle):
-            for step in range(1, min(count + 1, len(circle) - 1) + 1):
-                other, j = circle[(at + step) % len(circle)]
-                ahead = (other - lead) % (group.modulus or 1)
-                cycles = min(ahead, (group.modulus or 1) - ahead)
-                complement = table.phases[i].inverted != table.phases[j].inverted
-                found[min(i, j), max(i, j)] = Pair(cycles, min(i, j), max(i, j), complement)
-    true = {k for k, row in enumerate(machine.observed) if not row.cut_from}
-    return sorted(pair for pair in found.values() if {pair.first, pair.second} <= true)[:count]
+        channels = tuple(k for k in group.channels if k in fed)
+        known += _near_pairs(replace(group, channels=channels), table.phases, count)
+    return sorted({(pair.first, pair.second): pair for pair in known}.values())[:count]
 
 
-def _known_leads(facts: AuditFacts, channels: tuple[int, ...]) -> list[tuple[int, int]]:
-    """Return (lead, channel) of the channels whose lead is known modulo the class modulus."""
-    phases = facts.phases.phases if facts.phases else ()
-    leads = ((phases[k].lead, k) for k in channels if phases[k].kind in {"exact", "from"})
-    return [(lead, k) for lead, k in leads if lead is not None]
+def _near_pairs(group: PhaseClass, phases: Sequence[Phase], count: int) -> list[Pair]:
+    """Return pairs of near neighbours on the circle of the leads, the ``count`` closest ones among them.
+
+    The circle is one turn: a shift by a turn gives the stream again or its complement. Of two channels with more than
+    ``count`` others between them, ``count`` pairs between them are no farther apart; they need not be compared.
+    """
+    if not group.modulus or not group.turn:
+        return []
+    leads = [(phases[k].lead, k) for k in group.channels if phases[k].kind in {"exact", "from"}]
+    ring = sorted((lead % group.turn, lead, k) for lead, k in leads if lead is not None)
+    pairs = []
+    for at, (_, lead, i) in enumerate(ring):
+        for step in range(1, min(count + 1, len(ring) - 1) + 1):
+            _, other, j = ring[(at + step) % len(ring)]
+            differ, ways = phases[i].inverted != phases[j].inverted, []
+            for distance in (other - lead, lead - other):
+                turns, cycles = divmod(distance % group.modulus, group.turn)
+                ways.append((cycles, differ != bool(turns)))
+            cycles, complement = min(ways)
+            pairs.append(Pair(cycles, min(i, j), max(i, j), complement))
+    return pairs

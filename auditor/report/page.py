@@ -1,7 +1,9 @@
 """A page of the terminal report: text made harmless, folded to the width, laid out without lines or boxes."""
 
+import unicodedata
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
+from itertools import takewhile
 from typing import NamedTuple
 
 from rich.cells import cell_len
@@ -19,19 +21,31 @@ _MARGIN = 2
 def harmless(text: str, encoding: str) -> str:
     r"""Return text that can do nothing to a terminal: what is not printable there is spelled out, as in ``\x1b``.
 
-    That takes in control codes, marks that turn the direction of writing, and what the encoding does not have.
+    That takes in control codes, marks that turn the direction of writing or pile up on a letter, and what the
+    encoding does not have.
     """
-    if not text.isprintable():
-        text = "".join(c if c.isprintable() else c.encode("unicode_escape").decode("ascii") for c in text)
-    return text if text.isascii() else text.encode(encoding, "backslashreplace").decode(encoding)
+    if text.isascii() and text.isprintable():
+        return text
+    text = "".join(c if _stands_alone(c) else c.encode("unicode_escape").decode("ascii") for c in text)
+    return text.encode(encoding, "backslashreplace").decode(encoding)
+
+
+def _stands_alone(character: str) -> bool:
+    """Say whether the character is visible and takes a place of its own."""
+    return character.isprintable() and unicodedata.category(character) not in {"Mn", "Me"}
 
 
 @dataclass(frozen=True, slots=True)
 class Column:
-    """A column of a table; ``numeric`` ones stand to the right and are folded only where the page is narrower."""
+    """A column of a table.
+
+    ``numeric``  its cells stand to the right and are folded only where the page is narrower than they are
+    ``joined``   it stays on the line of the column before it, unless they are wider than the page
+    """
 
     heading: str
     numeric: bool = False
+    joined: bool = False
 
 
 class Row(NamedTuple):
@@ -84,46 +98,50 @@ class Page:
         ]
         bands = self._bands(columns, natural)
         for number, band in enumerate(bands):
-            self._band(columns, band, [column.heading for column in columns], number, "dim")
+            self._band(columns, band, [column.heading for column in columns], number, heading=True)
         for row in safe:
             for number, band in enumerate(bands):
                 if number == 0 or any(row.cells[k] != EMPTY for k in band):
-                    self._band(columns, band, row.cells, number, "")
+                    self._band(columns, band, row.cells, number)
             if row.remark:
                 self.say(row.remark, margin=3 * _MARGIN)
 
     def _bands(self, columns: Sequence[Column], natural: Sequence[int]) -> list[dict[int, int]]:
         """Distribute the columns over lines; a band maps a column to its width."""
+        whole, last = self.width - 3 * _MARGIN, len(columns) - 1
+        widths = [
+            min(natural[k], whole if column.numeric or k == last else max(16, whole // 3))
+            for k, column in enumerate(columns)
+        ]
         bands: list[dict[int, int]] = [{}]
-        room = whole = self.width - _MARGIN
+        room = self.width - _MARGIN
         for k, column in enumerate(columns):
-            last = k == len(columns) - 1
-            most = whole if column.numeric or last else max(16, whole // 3)
-            least = min(natural[k], most if not last else whole // 4)
-            if bands[-1] and least > room:
+            following = list(takewhile(lambda other: columns[other].joined, range(k + 1, last + 1)))
+            needed = widths[k] if column.joined else sum(widths[other] + _GAP for other in [k, *following]) - _GAP
+            # The last column is folded beside the others where a line of its own would save no line.
+            folds = k == last and room > whole // 4 and natural[k] <= 2 * room
+            if bands[-1] and needed > room and not folds:
                 bands.append({})
-                room = whole = self.width - 3 * _MARGIN
-            width = min(natural[k], room if last else min(most, room))
-            bands[-1][k] = width
-            room -= width + _GAP
+                room = whole
+            bands[-1][k] = min(widths[k], room)
+            room -= bands[-1][k] + _GAP
         return bands
 
     def _band(
-        self, columns: Sequence[Column], band: dict[int, int], cells: Sequence[str], number: int, style: str
+        self, columns: Sequence[Column], band: dict[int, int], cells: Sequence[str], number: int, heading: bool = False
     ) -> None:
-        """Add the lines of one row in one band; headings (the ones with a style) stand on the last line."""
+        """Add the lines of one row in one band; headings stand on the last of their lines, cells on the first."""
         folded = {k: self._fold(cells[k], width) for k, width in band.items()}
         height = max(map(len, folded.values()))
-        margin = _MARGIN if number == 0 else 3 * _MARGIN
         for line in range(height):
-            text = " " * margin
+            text = " " * (_MARGIN if number == 0 else 3 * _MARGIN)
             for k, width in band.items():
-                at = line - (height - len(folded[k]) if style else 0)
+                at = line - (height - len(folded[k]) if heading else 0)
                 piece = folded[k][at] if 0 <= at < len(folded[k]) else ""
                 padding = " " * (width - cell_len(piece))
                 text += (padding + piece if columns[k].numeric else piece + padding) + " " * _GAP
             if text.strip():
-                self.lines.append(Text(text.rstrip(), style=style))
+                self.lines.append(Text(text.rstrip(), style="dim" if heading else ""))
 
     def _harmless(self, text: str) -> str:
         return harmless(text, self.console.encoding)

@@ -3,15 +3,25 @@
 from collections.abc import Sequence
 
 from auditor.cone.cone import Load
-from auditor.machine.machine import LinearMachine, ObservedRow
+from auditor.machine.machine import AffineRow, LinearMachine, ObservedRow
 from auditor.phases.table import Phase, PhaseTable
-from auditor.report.digest import ChannelView, channel_views, closest_pairs, cut_views, heaviest_output
+from auditor.plan import Plan
+from auditor.report.digest import ChannelView, Pair, channel_views, closest_pairs, cut_views, heaviest_output
 from auditor.report.facts import AuditFacts
 from auditor.report.page import EMPTY, Column, Page, Row
-from auditor.report.wording import decimal, number_text, plural
+from auditor.report.wording import as_power, decimal, plural
 
 MOST_ROWS = 40
 _CLOSEST = 5
+_CHANNEL_COLUMNS = (
+    Column("channel"), Column("class", True), Column("lead", True), Column("from cycle", True), Column("inverted"),
+    Column("pipeline stages", True), Column("nearest"), Column("separation", True, joined=True),
+    Column("XOR inputs", True), Column("XOR depth", True, joined=True), Column("taps"),
+)  # fmt: skip
+_CHANNEL_LEGEND = (
+    "A lead counts cycles ahead of the class reference. ~ stands before a channel whose stream is the complement. "
+    "Taps name elements of a feedback register; (t-k) marks one that is read k cycles before the channel shows it."
+)
 
 
 def say_separations(page: Page, facts: AuditFacts) -> None:
@@ -21,26 +31,35 @@ def say_separations(page: Page, facts: AuditFacts) -> None:
         return
     page.heading("Smallest separations, in cycles")
     pairs = closest_pairs(facts, _CLOSEST)
-    bounds = [("chain length", facts.plan.chain_length), ("limit", facts.plan.limits.separation)]
-    stated = [(name, bound) for name, bound in bounds if bound is not None]
-    columns = [Column("channel"), Column("channel"), Column("separation", numeric=True), Column("complement")]
-    columns += [Column(f"{name} {bound}") for name, bound in stated]
-    rows = [
-        Row((
-            machine.observed[pair.first].name, machine.observed[pair.second].name, decimal(pair.cycles),
-            "yes" if pair.complement else "no",
-            *(f"short by {bound - pair.cycles}" if pair.cycles < bound else "enough" for _, bound in stated),
-        ))
-        for pair in pairs
-    ]  # fmt: skip
-    if rows:
-        page.table(columns, rows)
-    else:
+    if not pairs:
         page.say("No two channels are known to carry the same stream.")
+    else:
+        _pair_table(page, facts.plan, machine, pairs)
     if table.certified_at_least is not None:
         page.say(f"Proved for every pair of one class: at least {decimal(table.certified_at_least)}.")
     if facts.plan.chain_length is None:
         page.say("No chain length is stated, so whether chains repeat each other was not asked.")
+
+
+def _pair_table(page: Page, plan: Plan, machine: LinearMachine, pairs: Sequence[Pair]) -> None:
+    bounds = [("chain length", plan.chain_length), ("limit", plan.limits.separation)]
+    stated = [(name, bound) for name, bound in bounds if bound is not None]
+    missed = [(name, bound) for name, bound in stated if pairs[0].cycles < bound]
+    columns = [Column("channel"), Column("channel"), Column("separation", True)]
+    rows = []
+    for pair in pairs:
+        second = _mark(machine.observed[pair.second].name, pair.complement)
+        short = (f"short by {bound - pair.cycles}" if pair.cycles < bound else "enough" for _, bound in missed)
+        rows.append(Row((machine.observed[pair.first].name, second, decimal(pair.cycles), *short)))
+    page.table([*columns, *(Column(f"{name} {bound}") for name, bound in missed)], rows)
+    kept = [f"the {name} {bound}" for name, bound in stated if pairs[0].cycles >= bound]
+    if kept:
+        page.say(f"None of them is below {' or '.join(kept)}.")
+
+
+def _mark(name: str, complement: bool) -> str:
+    """Return the name, with a sign in front where the streams are complements."""
+    return f"~{name}" if complement else name
 
 
 def say_classes(page: Page, facts: AuditFacts) -> None:
@@ -55,7 +74,7 @@ def say_classes(page: Page, facts: AuditFacts) -> None:
     rows = []
     for number, group in enumerate(table.classes[:MOST_ROWS]):
         least = EMPTY if group.minimum is None else decimal(group.minimum.cycles)
-        modulus = "undecided" if group.modulus is None else number_text(group.modulus)
+        modulus = "undecided" if group.modulus is None else as_power(group.modulus) or decimal(group.modulus)
         cells = (str(number), machine.observed[group.reference].name, str(len(group.channels)), least, modulus)
         rows.append(Row(cells))
     page.table([*columns, Column("modulus")], rows)
@@ -69,8 +88,7 @@ def say_channels(page: Page, facts: AuditFacts) -> None:
     if facts.extraction.machine is None:
         page.say(f"Nothing can be said about {plural(len(views), 'channel')}: the machine was refused.")
         return
-    page.say("A lead counts cycles ahead of the class reference. Taps name elements of a feedback register; "
-             "(t-k) marks one that is read k cycles before the channel shows it.")  # fmt: skip
+    page.say(_CHANNEL_LEGEND)
     shown = views if len(views) <= MOST_ROWS else sorted(views, key=_closeness)[:MOST_ROWS]
     _channel_table(page, facts, shown)
     _say_rest(page, len(views), "channel", order=", the closest first")
@@ -87,27 +105,37 @@ def _closeness(view: ChannelView) -> tuple[bool, int]:
 
 
 def _channel_table(page: Page, facts: AuditFacts, views: Sequence[ChannelView]) -> None:
+    """Add the views; the columns for class and first cycle only where they tell something."""
     machine, table = facts.extraction.machine, facts.phases
     if machine is None or table is None:
         return
-    several, late = len(table.classes) > 1, any(view.phase and view.phase.valid_from for view in views)
-    columns = [Column("channel"), *([Column("class", True)] if several else []), Column("lead", True),
-               *([Column("from cycle", True)] if late else []), Column("inverted"), Column("pipeline stages", True),
-               Column("XOR inputs", True), Column("XOR depth", True), Column("nearest"), Column("separation", True),
-               Column("taps")]  # fmt: skip
+    idle = set() if len(table.classes) > 1 else {"class"}
+    if not any(view.phase and view.phase.valid_from for view in views):
+        idle.add("from cycle")
+    columns = [column for column in _CHANNEL_COLUMNS if column.heading not in idle]
     rows = []
     for view in views:
-        observed, phase = view.row, view.phase
-        if observed is None or phase is None:
-            continue
-        group = [_dash(phase.group)] if several else []
-        start = [_dash(phase.valid_from if phase.lead is not None else None)] if late else []
-        inverted = {True: "yes", False: "no", None: EMPTY}[phase.inverted]
-        row = (view.name, *group, _lead(phase), *start, inverted, str(observed.pipeline_stages),
-               str(observed.xor_inputs), str(observed.xor_depth), *_nearest(phase, machine),
-               _taps(observed, machine))  # fmt: skip
-        rows.append(Row(row, _remark(view, table)))
+        cells = _channel_cells(view, machine, table)
+        rows.append(Row(tuple(cells[column.heading] for column in columns), _remark(view, table)))
     page.table(columns, rows)
+
+
+def _channel_cells(view: ChannelView, machine: LinearMachine, table: PhaseTable) -> dict[str, str]:
+    """Return the cells of one channel by the heading of their column."""
+    cells = dict.fromkeys((column.heading for column in _CHANNEL_COLUMNS), EMPTY) | {"channel": view.name}
+    if (row := view.row) and row.row:
+        cells |= {"pipeline stages": str(row.pipeline_stages), "XOR inputs": str(row.xor_inputs)}
+        cells |= {"XOR depth": str(row.xor_depth), "taps": _taps(row, row.row, machine)}
+    if phase := view.phase:
+        cells |= {"class": _dash(phase.group), "lead": _lead(phase)}
+        cells |= {"from cycle": _dash(None if phase.lead is None else phase.valid_from)}
+        cells |= {"inverted": {True: "yes", False: "no", None: EMPTY}[phase.inverted]}
+        if near := phase.nearest:
+            cells |= {"nearest": _mark(machine.observed[near.channel].name, near.complement)}
+            cells |= {"separation": decimal(near.separation)}
+        elif phase.group is not None and len(table.classes[phase.group].channels) == 1:
+            cells |= {"separation": "infinite"}
+    return cells
 
 
 def _dash(number: int | None) -> str:
@@ -121,20 +149,11 @@ def _lead(phase: Phase) -> str:
     return decimal(phase.lead) + part
 
 
-def _nearest(phase: Phase, machine: LinearMachine) -> tuple[str, str]:
-    if phase.nearest is None:
-        return (EMPTY, EMPTY)
-    complement = " (complement)" if phase.nearest.complement else ""
-    return (machine.observed[phase.nearest.channel].name + complement, decimal(phase.nearest.separation))
-
-
-def _taps(observed: ObservedRow, machine: LinearMachine) -> str:
+def _taps(observed: ObservedRow, row: AffineRow, machine: LinearMachine) -> str:
     """Return the taps with their delays, then the external XOR inputs; a row without any is a constant."""
-    if observed.row is None:
-        return EMPTY
     words = [machine.storage[tap.element] + (f"(t-{tap.delay})" if tap.delay else "") for tap in observed.taps]
-    words += [f"input {name}" for k, name in enumerate(machine.free_inputs) if observed.row.inputs >> k & 1]
-    return "  ".join(words) or f"constant {observed.row.constant}"
+    words += [f"input {name}" for k, name in enumerate(machine.free_inputs) if row.inputs >> k & 1]
+    return "  ".join(words) or f"constant {row.constant}"
 
 
 def _remark(view: ChannelView, table: PhaseTable) -> str:
@@ -158,7 +177,7 @@ def say_flip_flops(page: Page, facts: AuditFacts) -> None:
     if len(loads) > MOST_ROWS:
         loads = tuple(sorted(loads, key=lambda load: (-_use(load), -sum(load.leaf), load.element))[:MOST_ROWS])
     columns = [Column("element"), Column("cell"), Column("direct fan-out", True), Column("leaf fan-out", True),
-               Column("XOR fan-out", True), Column("load"), Column("fF", True), Column("limit fF", True),
+               Column("XOR fan-out", True), Column("output"), Column("load fF", True), Column("limit fF", True),
                Column("used", True)]  # fmt: skip
     rows = []
     for load in loads:

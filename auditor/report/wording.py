@@ -64,7 +64,11 @@ def number_text(number: int) -> str:
 
 def exponents(polynomial: Polynomial) -> list[int]:
     """Return the exponents with coefficient 1, the highest first."""
-    return [k for k in range(polynomial.bit_length() - 1, -1, -1) if polynomial >> k & 1]
+    found = []
+    while polynomial:
+        found.append(polynomial.bit_length() - 1)
+        polynomial ^= 1 << found[-1]
+    return found
 
 
 def polynomial_text(polynomial: Polynomial) -> str:

@@ -167,9 +167,12 @@ def _cone(machine: LinearMachine) -> Cone:
     base = len(nets)
     hold = Function(("D",), ("$0",))
     elements = tuple(
-        StorageElement(name, "DFFRX1", k, base + k, hold, (base + k,), 0, Function(("C",), ("$0",)), (2,), 0, ())
+        StorageElement(
+            name=name, cell="DFFRX1", instance=k, bit=0, wire=base + k, data=hold, inputs=(base + k,), step=0,
+            clock=Function(("C",), ("$0",)), clock_inputs=(2,), reset=0, outputs=(),
+        )
         for k, name in enumerate(machine.storage)
-    )
+    )  # fmt: skip
     loads = tuple(
         Load(k, ("Q", "QN"), (2 + k % 3, 1), (4 + k % 3, 1), (1.2345 * (k + 1), 2.5), (60.0, 12.0 if k == 2 else None))
         for k in range(machine.size)
