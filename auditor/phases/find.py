@@ -101,8 +101,6 @@ class _Method:
 def _solve(search: _Search, space: CyclicSpace, progress: Progress | None) -> None:
     """Split a space into classes and give its members their phases."""
     method = _method(search, space, progress)
-    if method.links:
-        search.pairs += proved_pairs(search.streams, space, method.links)
     cut = [bool(observed.cut_from) for observed in search.machine.observed]
     for group in alike(space, method.found):
         reference = choose_reference([space.members[place] for place in group], search.named, cut)
@@ -113,6 +111,9 @@ def _solve(search: _Search, space: CyclicSpace, progress: Progress | None) -> No
             search.open_classes.add(len(search.classes) - 1)
             for place in set(group) - set(inside):
                 search.phases[space.members[place]] = Phase(None, None, "undecided", None, None, 0)
+    if method.links:
+        settled = {place for place, channel in enumerate(space.members) if search.phases[channel].lead is not None}
+        search.pairs += proved_pairs(search.streams, space, method.links, settled)
 
 
 def _method(search: _Search, space: CyclicSpace, progress: Progress | None) -> _Method:
@@ -169,7 +170,7 @@ def _table(search: _Search) -> PhaseTable:
     classes = [search.classes[index] for index in order]
     open_classes = {renumbered[index] for index in search.open_classes}
     pairs = tuple(sorted(search.pairs))
-    neighbours = nearest_neighbours(classes, phases, open_classes, pairs)
+    neighbours = nearest_neighbours(classes, phases, dict.fromkeys(open_classes, search.window), pairs)
     phases = [replace(phase, nearest=neighbours.get(channel)) for channel, phase in enumerate(phases)]
     classes = [replace(group, minimum=closest(group.channels, neighbours)) for group in classes]
     undecided = any(phase.kind == "undecided" for phase in phases)

@@ -65,6 +65,8 @@ def overlap(table: PhaseTable, i: int, j: int, length_i: int, length_j: int) -> 
         return Overlap(0, None) if table.decides(max(length_i, length_j)) else None
     turn = group.turn if group else None
     found = shared_cells(difference, turn, length_i, length_j)
+    if not found.pairs and not turn:
+        return None  # an unknown modulus could be so short that the pair meets the other way round
     if group and group.half_turn and turn and found.example:
         turns = (difference - found.example[0] + found.example[1]) // turn
         complement = complement != bool(turns % 2)

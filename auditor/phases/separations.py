@@ -1,7 +1,7 @@
 """How far apart channels are, from sorted leads: O(m log m) for nearest neighbours, never all pairs."""
 
 from bisect import bisect_left
-from collections.abc import Collection, Iterable, Iterator, Mapping, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 
 from auditor.phases.table import Closest, Infinite, Neighbour, Phase, PhaseClass, PhaseTable, Separation
 
@@ -86,12 +86,12 @@ def _sorted_leads(group: PhaseClass, phases: Sequence[Phase], turn: int) -> list
 
 
 def nearest_neighbours(
-    classes: Sequence[PhaseClass], phases: Sequence[Phase], open_classes: Collection[int], pairs: Iterable[Pair]
+    classes: Sequence[PhaseClass], phases: Sequence[Phase], windows: Mapping[int, int], pairs: Iterable[Pair]
 ) -> dict[int, Neighbour]:
     """Return the nearest neighbour of every channel for which it is certain; of equals the first channel.
 
-    In an open class, some members of which have no lead or are not recognised, only the pairs of a bounded search
-    are certain to leave none out.
+    Some members of a class may have no lead, or not be recognised. ``windows`` gives such a class the bound below
+    which leads and the pairs of a bounded search together still leave no pair out.
     """
     candidates: dict[int, tuple[int, int, bool]] = {}
 
@@ -101,9 +101,10 @@ def nearest_neighbours(
             candidates[channel] = candidate
 
     for index, group in enumerate(classes):
-        if index not in open_classes and len(group.channels) > 1:
-            for channel, other in _ring_neighbours(group, phases):
-                offer(channel, other, *gap(group, phases[channel], phases[other]))
+        for channel, other in _ring_neighbours(group, phases):
+            cycles, complement = gap(group, phases[channel], phases[other])
+            if index not in windows or cycles < windows[index]:
+                offer(channel, other, cycles, complement)
     for i, j, cycles, complement in pairs:
         offer(i, j, cycles, complement)
         offer(j, i, cycles, complement)
@@ -114,8 +115,9 @@ def nearest_neighbours(
 
 def _ring_neighbours(group: PhaseClass, phases: Sequence[Phase]) -> Iterator[tuple[int, int]]:
     """Yield each channel with those that can be its nearest: one in step with it, else the first on either side."""
+    ring = _sorted_leads(group, phases, group.turn) if group.turn else []
     places: dict[int, list[int]] = {}
-    for lead, channel in _sorted_leads(group, phases, group.turn or 1):
+    for lead, channel in ring if len(ring) > 1 else []:
         places.setdefault(lead, []).append(channel)
     rings = list(places.values())
     for k, here in enumerate(rings):

@@ -134,7 +134,7 @@ class PhaseTable:
     """The registers, the classes, and one phase a channel.
 
     ``certified_at_least``  every separation inside a class is at least this; None where all leads are known
-    ``close_pairs``   all pairs closer than ``window`` whose leads needed more than a bounded search, ascending:
+    ``close_pairs``   all pairs closer than ``window`` of which a lead is undecided, ascending:
                       (i, j, cycles, complement), channel i leads channel j by so many cycles
     ``window``        None where all leads are known
     """
