@@ -182,6 +182,17 @@ def rank(rows: Iterable[int]) -> int:
     return len(pivots)
 
 
+def shifted(machine: Machine, row: int, steps: int) -> int:
+    """Return row * A^steps by repeated squaring."""
+    power = list(machine.rows)
+    while steps:
+        if steps & 1:
+            row = sum_rows(power[k] for k in bits_of(row))
+        power = [sum_rows(power[k] for k in bits_of(r)) for r in power]
+        steps >>= 1
+    return row
+
+
 def lead_by_stepping(machine: Machine, channel: int, reference: int) -> int | None:
     """Return the least s with c A^T = c_ref A^(T+s), or None after the whole orbit of the reference."""
     row, other = machine.channels[channel], machine.channels[reference]
@@ -212,6 +223,21 @@ def berlekamp_massey(stream: Sequence[int]) -> int:
             current ^= previous << gap
             gap += 1
     return sum(1 << length - k for k in bits_of(current))
+
+
+def remainder(polynomial: int, divisor: int) -> int:
+    """Return the remainder of a division over GF(2)."""
+    while polynomial.bit_length() >= divisor.bit_length():
+        polynomial ^= divisor << polynomial.bit_length() - divisor.bit_length()
+    return polynomial
+
+
+def product(polynomials: Iterable[int]) -> int:
+    """Return the product over GF(2)."""
+    total = 1
+    for polynomial in polynomials:
+        total = sum_rows(total << k for k in bits_of(polynomial))
+    return total
 
 
 def random_machine(rng: random.Random, size: int, channels: int, affine: bool = True) -> Machine:
