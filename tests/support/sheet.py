@@ -64,7 +64,7 @@ class Sheet:
 
     def __post_init__(self) -> None:
         for part in ("register", "shifter"):
-            self.instances[part] = self.identifier(f"u_{part}")  # type: ignore[index]  # the two literals
+            self.instances[part] = self.identifier(f"u_{part}")
 
     def identifier(self, hint: str) -> str:
         """Return a new name, as written in Verilog."""
