@@ -48,7 +48,6 @@ BEYOND = 10**18  # every stated number is smaller
 class Plan:
     """All that an audit is given. Paths are as they will be opened.
 
-    ``defines``   macros for the Verilog text: name → value
     ``mode``      net or port → 0 or 1        ``channels``  names, vectors or patterns; empty: all output ports
     ``chain_length``  scan cells of every chain, or None where not stated
     """
@@ -56,7 +55,6 @@ class Plan:
     netlists: tuple[Path, ...]
     cells: tuple[Path, ...] = ()
     top: str | None = None
-    defines: Mapping[str, str] = field(default_factory=dict)
     mode: Mapping[str, int] = field(default_factory=dict)
     channels: tuple[str, ...] = ()
     reference: str | None = None

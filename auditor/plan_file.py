@@ -12,7 +12,7 @@ from auditor.notation import SourcePlace
 from auditor.plan import BEYOND, LEAST_LIMIT, Limits, Patterns, Plan, Waiver
 
 KEYS: dict[str, tuple[str, ...]] = {
-    "netlist": ("files", "top", "cells", "defines"),
+    "netlist": ("files", "top", "cells"),
     "channels": ("names", "reference"),
     "chains": ("length",),
     "patterns": ("count", "shift_cycles", "capture_cycles", "generator_in_capture", "launch"),
@@ -21,7 +21,7 @@ KEYS: dict[str, tuple[str, ...]] = {
 SECTIONS = ("netlist", "mode", "channels", "chains", "patterns", "limits", "waivers")
 WAIVER_KEYS = ("slug", "where", "reason")
 LATER_SECTIONS = ("capture", "claims", "seeds")
-LATER_KEYS = {"chains": ("file", "scan_outputs")}
+LATER_KEYS = {"netlist": ("defines",), "chains": ("file", "scan_outputs")}
 
 _HEADER = re.compile(r"""\s*\[{1,2}\s*([\w."'-]+)\s*\]{1,2}\s*(?:\#.*)?$""")
 _TOML_PLACE = re.compile(r"\s*\(at (?:line (\d+), column \d+|end of document)\)$")
@@ -37,7 +37,6 @@ def read_plan(path: Path) -> Plan:
         netlists=reader.paths("netlist", "files"),
         cells=reader.paths("netlist", "cells"),
         top=reader.text("netlist", "top"),
-        defines=reader.defines(),
         mode=reader.mode(),
         channels=reader.texts("channels", "names"),
         reference=reader.text("channels", "reference"),
@@ -131,7 +130,7 @@ class _Reader:
                 self.troubles.add(f"{section} must be a section", f"write [{section}]", self.place("", section))
             for key in self._table(section) if section in KEYS else ():
                 if key in LATER_KEYS.get(section, ()):
-                    remedy = "remove it or state [chains] length"
+                    remedy = "remove it or state [chains] length" if section == "chains" else "remove it"
                     self._later(f"{key} in [{section}]", remedy, self.place(section, key))
                 elif key not in KEYS[section]:
                     self._unknown(key, f"[{section}]", KEYS[section], self.place(section, key))
@@ -183,14 +182,6 @@ class _Reader:
         words = " or ".join(f'"{word}"' for word in known)
         self.wrong(section, key, words, f"write {key} = {words}")
         return known[0]
-
-    def defines(self) -> dict[str, str]:
-        """Return the macros of [netlist] defines."""
-        value = self._table("netlist").get("defines", {})
-        if isinstance(value, dict) and all(isinstance(text, str) for text in value.values()):
-            return value
-        self.wrong("netlist", "defines", "a table of texts", 'write defines = { NAME = "VALUE" }')
-        return {}
 
     def mode(self) -> dict[str, int]:
         """Return the constants of [mode]."""

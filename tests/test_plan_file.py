@@ -13,7 +13,6 @@ COMPLETE = """\
 files = ["generator.v", "sub/rest.v.gz"]
 top = "generator"
 cells = ["../lib/cells.lib"]
-defines = { SCAN = "1" }
 
 [mode]
 scan_en = 0
@@ -61,7 +60,7 @@ def test_a_complete_plan_is_read(tmp_path: Path) -> None:
     plan = read_plan(tmp_path / "plan.toml")
     assert plan.netlists == (tmp_path / "generator.v", tmp_path / "sub/rest.v.gz")
     assert plan.cells == (tmp_path / "../lib/cells.lib",)
-    assert (plan.top, plan.defines) == ("generator", {"SCAN": "1"})
+    assert plan.top == "generator"
     assert plan.mode == {"scan_en": 0, "u1.hold": 1}
     assert (plan.channels, plan.reference, plan.chain_length) == (("so", "extra*"), "so[0]", 120)
     assert plan.patterns == Patterns(10_000, 120, 2, "advances")
@@ -127,7 +126,8 @@ def test_parts_that_come_later_are_refused(tmp_path: Path) -> None:
     """What the plan may hold one day is never ignored in silence."""
     text = "[mode.shift]\nscan_en = 0\n[capture]\na = 1\n[claims]\n[seeds]\n"
     text += (
-        '[chains]\nfile = "c.csv"\nscan_outputs = ["x"]\n[patterns]\ncount = 1\nshift_cycles = 1\nlaunch = "shift"\n'
+        '[netlist]\ndefines = { A = "1" }\n[chains]\nfile = "c.csv"\nscan_outputs = ["x"]\n'
+        '[patterns]\ncount = 1\nshift_cycles = 1\nlaunch = "shift"\n'
     )
     later = "comes with a later version of auditor"
     assert troubles(tmp_path, text) == [
@@ -136,9 +136,10 @@ def test_parts_that_come_later_are_refused(tmp_path: Path) -> None:
         f"plan.toml:3: [capture] {later}; remove it",
         f"plan.toml:5: [claims] {later}; remove it",
         f"plan.toml:6: [seeds] {later}; remove it",
-        f"plan.toml:8: file in [chains] {later}; remove it or state [chains] length",
-        f"plan.toml:9: scan_outputs in [chains] {later}; remove it or state [chains] length",
-        f'plan.toml:13: launch = "shift" in [patterns] {later}; remove it or write launch = "none"',
+        f"plan.toml:8: defines in [netlist] {later}; remove it",
+        f"plan.toml:10: file in [chains] {later}; remove it or state [chains] length",
+        f"plan.toml:11: scan_outputs in [chains] {later}; remove it or state [chains] length",
+        f'plan.toml:15: launch = "shift" in [patterns] {later}; remove it or write launch = "none"',
     ]
 
 
@@ -156,7 +157,6 @@ def test_values_of_the_wrong_kind_are_listed_together(tmp_path: Path) -> None:
 files = "a.v"
 top = ""
 cells = [1]
-defines = ["A"]
 [mode]
 a = 2
 b = true
@@ -182,23 +182,22 @@ depth = -1
         'plan.toml:2: files in [netlist] must be a list of texts; write files = ["...", "..."]',
         'plan.toml:3: top in [netlist] must be a text that is not empty; write top = "..."',
         'plan.toml:4: cells in [netlist] must be a list of texts; write cells = ["...", "..."]',
-        'plan.toml:5: defines in [netlist] must be a table of texts; write defines = { NAME = "VALUE" }',
         *(
             f"plan.toml:{line}: {net} in [mode] must be 0 or 1; write the constant as 0 or 1, without quotes"
-            for line, net in ((7, "a"), (8, "b"), (9, "c"))
+            for line, net in ((6, "a"), (7, "b"), (8, "c"))
         ),
-        'plan.toml:11: names in [channels] must be a list of texts; write names = ["...", "..."]',
-        'plan.toml:12: reference in [channels] must be a text that is not empty; write reference = "..."',
-        f"plan.toml:14: length in [chains] {whole} 1 {below} length = N",
-        "plan.toml:15: [patterns] has no count; state count = N",
-        f"plan.toml:16: shift_cycles in [patterns] {whole} 1 {below} shift_cycles = N",
-        f"plan.toml:17: capture_cycles in [patterns] {whole} 0 {below} capture_cycles = N",
-        'plan.toml:18: generator_in_capture in [patterns] must be "holds" or "advances"; '
+        'plan.toml:10: names in [channels] must be a list of texts; write names = ["...", "..."]',
+        'plan.toml:11: reference in [channels] must be a text that is not empty; write reference = "..."',
+        f"plan.toml:13: length in [chains] {whole} 1 {below} length = N",
+        "plan.toml:14: [patterns] has no count; state count = N",
+        f"plan.toml:15: shift_cycles in [patterns] {whole} 1 {below} shift_cycles = N",
+        f"plan.toml:16: capture_cycles in [patterns] {whole} 0 {below} capture_cycles = N",
+        'plan.toml:17: generator_in_capture in [patterns] must be "holds" or "advances"; '
         'write generator_in_capture = "holds" or "advances"',
-        f"plan.toml:20: separation in [limits] {whole} 1 {below} separation = N",
-        f"plan.toml:21: fan_out in [limits] {whole} 1 {below} fan_out = N",
-        f"plan.toml:22: taps in [limits] {whole} 1 {below} taps = N",
-        f"plan.toml:23: depth in [limits] {whole} 0 {below} depth = N",
+        f"plan.toml:19: separation in [limits] {whole} 1 {below} separation = N",
+        f"plan.toml:20: fan_out in [limits] {whole} 1 {below} fan_out = N",
+        f"plan.toml:21: taps in [limits] {whole} 1 {below} taps = N",
+        f"plan.toml:22: depth in [limits] {whole} 0 {below} depth = N",
     ]
 
 

@@ -13,20 +13,21 @@ def not_affine(evidence: Evidence) -> Iterator[Finding]:
     channels = {channel.name for channel in evidence.cone.channels}
     for refusal in evidence.extraction.refusals:
         if not refusal.undecided:
-            yield _refused(refusal, refusal.what in channels)
+            if refusal.what in channels:
+                consequence = "it has no taps and no lead, and what its chain shares with others stays unknown"
+            elif evidence.machine is None:
+                consequence = "a register depends on it, so no polynomial, period, lead or separation can be given"
+            else:
+                consequence = "what it feeds has no taps and no lead"
+            yield _refused(refusal, consequence)
 
 
-def _refused(refusal: Refusal, is_channel: bool) -> Finding:
-    cure = f"; {refusal.cure} would make it so" if refusal.cure else ""
-    consequence = (
-        "no taps and no lead can be given for it, and how it relates to the other channels stays unknown"
-        if is_channel
-        else "it feeds what the channels carry, so no polynomial, period, lead or separation can be given"
-    )
+def _refused(refusal: Refusal, consequence: str) -> Finding:
+    cure = f" ({refusal.cure} would make it one)" if refusal.cure else ""
     return finding(
         "not-affine",
         (refusal.what,),
-        f"{refusal.what} is no XOR of stored bits, spoilt at {refusal.gate} ({refusal.because}){cure}: {consequence}.",
+        f"{refusal.what} is no XOR of stored bits, because {refusal.because}{cure}: {consequence}.",
         {"gate": refusal.gate, "because": refusal.because, "cure": refusal.cure or None},
         refusal.place,
     )
