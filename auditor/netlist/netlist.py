@@ -75,7 +75,7 @@ class Netlist:
 
     def cell_of(self, instance: int) -> CellType:
         """Return what the instance instantiates."""
-        return self.cell_types[self.instance_type[instance]]
+        return self.cell_types[int(self.instance_type[instance])]
 
     def pins_of(self, instance: int) -> Iterator[tuple[str, int]]:
         """Yield the pins of an instance as (pin name, net or OPEN), in the order written."""

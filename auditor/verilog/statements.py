@@ -58,14 +58,22 @@ class Connection(NamedTuple):
     value: Expression | None
 
 
+class Range(NamedTuple):
+    """The bounds of a vector or of an array of instances as written, in either order, also negative."""
+
+    left: int
+    right: int
+
+
 class Instance(NamedTuple):
-    """One instance of a module, a cell or (``primitive``) a gate primitive of the language."""
+    """One instance, or ``array`` of them, of a module, a cell or (``primitive``) a gate primitive of the language."""
 
     cell: str
     name: str
     connections: tuple[Connection, ...]
     line: int
     primitive: bool = False
+    array: Range | None = None
 
 
 class Assign(NamedTuple):
@@ -74,13 +82,6 @@ class Assign(NamedTuple):
     left: Expression
     right: Expression
     line: int
-
-
-class Range(NamedTuple):
-    """The bounds of a vector as declared, in either order, also negative."""
-
-    left: int
-    right: int
 
 
 class Declaration(NamedTuple):

@@ -1,0 +1,209 @@
+"""The grammar lane: what is not plain goes to pyverilog, item by item, in pieces of a few hundred.
+
+pyverilog's grammar appends to tuples and takes time quadratic in the length of a list, hence pieces. Each item is
+one element (one instance, one assigned net, one declared name) and gives one element of the syntax tree, so that
+the line of an item is known here and not asked of pyverilog. This is the only file that imports it.
+"""
+
+import contextlib
+import io
+import os
+import re
+import sys
+import tempfile
+import warnings
+from collections.abc import Iterator, Sequence
+from functools import cache
+from importlib.metadata import version
+from pathlib import Path
+from typing import Any
+
+from auditor.verilog.draft import Declared, Draft, Waiting
+from auditor.verilog.items import direction_of
+from auditor.verilog.plain import GATES, plain_name
+from auditor.verilog.statements import Assign, Connection, Direction, Instance, Range
+from auditor.verilog.tree import Parameters, RefusedError, expression_of, integer_of, parameter_of
+
+PIECE = 300
+
+# pyverilog takes `^~a` for `^(~a)` and wants literals without blanks.
+_NORMALISED = re.compile(r"\\\S++\s|\^~|(\d?)\s*'\s*([sS]?[bBoOdDhH])\s*([\w?])")
+_COORDINATE = re.compile(r'line:(\d+)(?: column:\d+)?: (?:before: "(.*)"|(.*))', re.DOTALL)
+_REMEDY = "mend the text, or give it as plain structural Verilog"
+
+
+def read_waiting(draft: Draft) -> None:
+    """Read all that waits in a draft into it; troubles are noted with the line of the item.
+
+    Parameters are evaluated in the order of the text and hold for what follows them.
+    """
+    parameters: Parameters = {}
+    results: list[tuple[Waiting, Instance | Assign]] = []
+    waiting = draft.waiting
+    for start in range(0, len(waiting), PIECE):
+        for wait, node in _parsed(draft, waiting[start : start + PIECE]):
+            try:
+                result = _element(wait, node, parameters)
+            except RefusedError as refused:
+                draft.trouble(refused.found, refused.remedy, wait.item.line)
+                continue
+            if isinstance(result, Declared):
+                draft.declare(result)
+            elif result is not None:
+                results.append((wait, result))
+    draft.waiting = []
+    draft.merge(results)
+
+
+def _parsed(draft: Draft, piece: Sequence[Waiting]) -> Iterator[tuple[Waiting, Any]]:
+    """Yield each item with its syntax tree; where the piece has an error, its items are parsed one by one."""
+    try:
+        yield from zip(piece, _parse(piece), strict=True)
+        return
+    except _syntax_error():
+        pass
+    for wait in piece:
+        try:
+            (node,) = _parse([wait])
+        except _syntax_error() as error:
+            found, line = _explain(wait, str(error))
+            draft.trouble(found, _REMEDY, line)
+        else:
+            yield wait, node
+
+
+def _parse(piece: Sequence[Waiting]) -> Sequence[Any]:
+    """Return the syntax trees of the items, one each; raises pyverilog's ParseError."""
+    texts = [_NORMALISED.sub(_normal, wait.item.text) for wait in piece]
+    parser = _parser()
+    parser.lexer.reset_lineno()
+    with contextlib.redirect_stdout(io.StringIO()), contextlib.redirect_stderr(io.StringIO()):
+        tree = parser.parse("module m;\n" + "".join(f"{text};\n" for text in texts) + "endmodule\n")
+    items: Sequence[Any] = tree.description.definitions[0].items
+    return items
+
+
+def _normal(match: re.Match[str]) -> str:
+    size, base, digit = match.groups()
+    if base:
+        return f"{size}'{base}{digit}"
+    return "~^" if match[0] == "^~" else match[0]
+
+
+def _explain(wait: Waiting, message: str) -> tuple[str, int]:
+    """Return what a ParseError says in words, and the line in the user's file."""
+    match = _COORDINATE.search(message)
+    if not match:
+        words = wait.item.text.split()
+        return f"syntax error in the {wait.kind} that begins with {' '.join(words[:3])}", wait.item.line
+    # The item begins on the second line of what pyverilog was given.
+    line = wait.item.line + min(int(match[1]) - 2, wait.item.text.count("\n"))
+    token = match[2] if match[2] is not None else match[3]
+    if token in (";", "endmodule"):
+        return f"syntax error: the {wait.kind} ends too early", line
+    return f"syntax error at {token}", line
+
+
+def _element(wait: Waiting, node: Any, parameters: Parameters) -> Declared | Instance | Assign | None:
+    """Return what an item says, or None for a parameter, which is entered. Raises RefusedError."""
+    kind = type(node).__name__
+    if kind == "InstanceList" and wait.kind == "instance":
+        return _instance(node, wait.item.line, parameters)
+    if kind == "Assign" and wait.kind == "assign":
+        left = expression_of(node.left.var, parameters)
+        return Assign(left, expression_of(node.right.var, parameters), wait.item.line)
+    if kind == "Decl" and wait.kind == "declaration":
+        return _declared(node.list, wait.item.line, parameters)
+    if kind == "Decl" and wait.kind == "parameter":
+        name, value = parameter_of(node.list[0], parameters)
+        parameters[name] = value
+        return None
+    raise RefusedError(f"found {wait.item.text.split()[0]} where an item of a netlist should stand", _REMEDY)
+
+
+def _instance(node: Any, line: int, parameters: Parameters) -> Instance:
+    if node.parameterlist:
+        raise RefusedError(f"{node.module} is given parameters here", "give a netlist without parameters")
+    (one,) = node.instances
+    connections = tuple(
+        Connection(
+            plain_name(port.portname) if port.portname else None,
+            expression_of(port.argname, parameters) if port.argname is not None else None,
+        )
+        for port in one.portlist
+    )
+    array = _range(one.array, parameters) if one.array else None
+    primitive = node.module in GATES
+    return Instance(plain_name(node.module), plain_name(one.name), connections, line, primitive, array)
+
+
+def _declared(nodes: Sequence[Any], line: int, parameters: Parameters) -> Declared:
+    """Return one declared name; a port that is a net as well comes as two nodes."""
+    direction: Direction | None = None
+    kind: str | None = None
+    for node in nodes:
+        word = type(node).__name__.lower()
+        if getattr(node, "signed", False):
+            raise RefusedError(f"{plain_name(node.name)} is signed", "declare it without signed")
+        if direction_of(word):
+            direction = direction_of(word)
+        elif word == "supply":
+            kind = f"supply{node.value.value}"
+        else:
+            kind = "wire" if word == "tri" else word
+    width = nodes[0].width
+    bounds = _range(width, parameters) if width is not None else None
+    return Declared(plain_name(nodes[0].name), direction, kind, bounds, line)
+
+
+def _range(width: Any, parameters: Parameters) -> Range:
+    return Range(integer_of(width.msb, parameters), integer_of(width.lsb, parameters))
+
+
+def _syntax_error() -> type[Exception]:
+    """Return pyverilog's own error, imported when the lane is first used."""
+    from pyverilog.vparser.parser import ParseError  # noqa: PLC0415  (a cold start without this lane saves 20 ms)
+
+    error: type[Exception] = ParseError
+    return error
+
+
+@cache
+def _parser() -> Any:
+    """Return pyverilog's parser, with its tables from a private directory of the user, made at the first use.
+
+    Building the tables takes a second, loading them a tenth. A table file is an importable module, so it must not
+    lie where somebody else could have put it: not in the working directory, not under a known name in a shared one.
+    """
+    with warnings.catch_warnings(), contextlib.redirect_stderr(io.StringIO()):
+        warnings.simplefilter("ignore")
+        from pyverilog.vparser.parser import VerilogParser  # noqa: PLC0415  (see _syntax_error)
+
+        store = _table_directory()
+        if (store / "parsetab.py").exists():
+            return _with_tables_in(VerilogParser, store)
+        with tempfile.TemporaryDirectory() as scratch:
+            parser = _with_tables_in(VerilogParser, Path(scratch))
+            with contextlib.suppress(OSError):
+                store.mkdir(parents=True, exist_ok=True, mode=0o700)
+                draft = store / f"parsetab.{os.getpid()}"
+                draft.write_bytes((Path(scratch) / "parsetab.py").read_bytes())
+                draft.replace(store / "parsetab.py")
+        return parser
+
+
+def _table_directory() -> Path:
+    base = os.environ.get("XDG_CACHE_HOME") or Path.home() / ".cache"
+    python = f"{sys.version_info.major}.{sys.version_info.minor}"
+    return Path(base) / "auditor" / f"pyverilog-{version('pyverilog')}-python-{python}"
+
+
+def _with_tables_in(parser_class: Any, directory: Path) -> Any:
+    """Build the parser while ``directory`` is the first place that modules are looked for."""
+    sys.path.insert(0, str(directory))
+    sys.modules.pop("parsetab", None)
+    try:
+        return parser_class(outputdir=str(directory), debug=False)
+    finally:
+        sys.path.remove(str(directory))
+        sys.modules.pop("parsetab", None)

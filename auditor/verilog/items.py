@@ -1,0 +1,203 @@
+"""One statement → its items, each entered in the draft if it is plain and left waiting if it is not."""
+
+import re
+from collections.abc import Iterator
+from functools import partial
+
+from auditor.verilog.draft import Declared, Draft
+from auditor.verilog.plain import (
+    GATES,
+    NAME,
+    RESERVED,
+    SPACE,
+    Item,
+    NotPlainError,
+    PlainNames,
+    PlainValues,
+    closing,
+    plain_name,
+    split_list,
+)
+from auditor.verilog.statements import Assign, Connection, Direction, Expression, HeaderPort, Instance, Range
+
+S = SPACE
+_VALUE = r"(?>[^()\\;]++|\\\S++\s)*+"
+_PIN_ONLY = rf"\.{S}{NAME}{S}\({_VALUE}\)"
+NAMED_BODY = rf"{S}{_PIN_ONLY}{S}(?:,{S}{_PIN_ONLY}{S})*+"
+PINS = re.compile(rf"\.{S}({NAME}){S}\(({_VALUE})\)")
+BOUNDS = rf"\[{S}(-?\d++){S}:{S}(-?\d++){S}\]"
+_NAMED_BODY = re.compile(NAMED_BODY)
+_ONE_INSTANCE = re.compile(rf"({NAME}){S}(?:({NAME}){S})?+\((.*)\){S}", re.DOTALL)
+_DELAY = r"#\s*(?:[\d.]+|\([^()]*\)|[A-Za-z_]\w*)"
+_CELL_HEAD = re.compile(rf"({NAME}){S}(?:{_DELAY})?")
+_ASSIGN_HEAD = re.compile(rf"assign\b{S}(?:{_DELAY})?")
+_DECLARED = re.compile(
+    rf"(?:(input|output|inout)\b{S})?+(?:(wire|tri|uwire|reg|supply0|supply1)\b{S})?+(signed\b{S})?+"
+    rf"(\[[^\]\\]*+\]{S})?+(?:{_DELAY}{S})?+({NAME}){S}(?:=(.*))?",
+    re.DOTALL,
+)
+_RANGE = re.compile(rf"{BOUNDS}{S}")
+_DIRECTIONS: dict[str, Direction] = {"input": "input", "output": "output", "inout": "inout"}
+
+connect = partial(tuple.__new__, Connection)
+
+
+class Items:
+    """Reads the items of statements; names and values are worked out once for the whole file."""
+
+    def __init__(self, names: PlainNames, values: PlainValues) -> None:
+        self.names, self.values = names, values
+
+    def header(self, draft: Draft, statement: str, position: int, line: int) -> None:
+        """Read the parameters and the ports of a module's header."""
+        for kind, sign in (("parameter", "#"), ("port", "(")):
+            if not statement.startswith(sign, position):
+                continue
+            start = statement.find("(", position)
+            end = closing(statement, start, line) if start >= 0 else -1
+            if end < 0:
+                break
+            items = split_list(statement[start + 1 : end - 1], line + statement.count("\n", 0, start + 1))
+            if kind == "parameter":
+                for item in items:
+                    text = item.text if item.text.startswith("parameter") else f"parameter {item.text}"
+                    self._wait_parameter(draft, Item(text, item.line))
+            elif statement[start + 1 : end - 1].strip():
+                self._ports(draft, items)
+            position = end + len(statement[end:]) - len(statement[end:].lstrip())
+        rest = statement[position:].strip()
+        if rest:
+            draft.trouble(f"found {rest.split()[0]} in the header of module {draft.name}", "mend the header", line)
+
+    def _ports(self, draft: Draft, items: Iterator[Item]) -> None:
+        """Read the ports of a header: names, declarations, or names with what they are connected to within."""
+        prefix: tuple[str, ...] | None = None
+        for text, line in items:
+            pin = _NAMED_BODY.fullmatch(text) and PINS.match(text)
+            declared = _DECLARED.fullmatch(text)
+            if pin or declared is None:
+                name = plain_name(pin[1]) if pin else text.strip()
+                try:
+                    inside = self.values[pin[2] if pin else text]
+                except NotPlainError:
+                    inside = None
+                if inside is None:
+                    draft.trouble(f"found {text.strip() or 'nothing'} in a list of ports", "mend the header", line)
+                else:
+                    draft.ports.append(HeaderPort(inside if isinstance(inside, str) and not pin else name, inside))
+            else:
+                *head, name, _ = declared.groups(default="")
+                if any(head[:2]):
+                    prefix = tuple(head)
+                draft.ports.append(HeaderPort(plain_name(name), plain_name(name)))
+                if prefix:
+                    self._declare(draft, (*prefix[:3], head[3] or prefix[3], name), line)
+
+    def declaration(self, draft: Draft, statement: str, line: int) -> None:
+        """Read a declaration that is no plain list of names."""
+        prefix: list[str] | None = None
+        for item in split_list(statement, line):
+            match = _DECLARED.fullmatch(item.text)
+            if not match:
+                draft.wait("declaration", item)
+                continue
+            *head, name, value = match.groups(default="")
+            if prefix is None:
+                prefix = head
+            self._declare(draft, (*prefix, name), item.line)
+            if value:
+                self._assign_item(draft, Item(f"assign {name} = {value}", item.line))
+
+    def _declare(self, draft: Draft, parts: tuple[str, ...], line: int) -> None:
+        """Enter one declared name given as direction, kind, ``signed``, range and name, each as written."""
+        word, kind, signed, bounds, name = parts
+        plain_range = _RANGE.fullmatch(bounds)
+        if draft.plain and not signed and name not in RESERVED and (plain_range or not bounds):
+            direction, kind_or_none = direction_and_kind(word or kind, kind if word else None)
+            range_or_none = Range(int(plain_range[1]), int(plain_range[2])) if plain_range else None
+            draft.declare(Declared(plain_name(name), direction, kind_or_none, range_or_none, line))
+        else:
+            # pyverilog knows no uwire, which is a wire with a promise.
+            draft.wait("declaration", Item(f"{word} {kind.replace('uwire', 'wire')} {signed} {bounds} {name}", line))
+
+    def parameter(self, draft: Draft, statement: str, line: int) -> None:
+        """Leave each parameter to the grammar lane, and with it all that follows in the module."""
+        keyword = statement.split(maxsplit=1)[0]
+        for item in split_list(statement, line):
+            text = item.text if item.text.startswith(keyword) else f"{keyword} {item.text}"
+            self._wait_parameter(draft, Item(text, item.line))
+
+    def _wait_parameter(self, draft: Draft, item: Item) -> None:
+        draft.plain = False
+        draft.wait("parameter", item)
+
+    def assign(self, draft: Draft, statement: str, line: int) -> None:
+        """Read a continuous assignment of one net or several, without its delay."""
+        head = _ASSIGN_HEAD.match(statement)
+        start = head.end() if head else 0
+        for item in split_list(statement[start:], line + statement.count("\n", 0, start)):
+            self._assign_item(draft, Item(f"assign {item.text}", item.line))
+
+    def _assign_item(self, draft: Draft, item: Item) -> None:
+        left, _, right = item.text.removeprefix("assign ").partition("=")
+        if draft.plain:
+            try:
+                target, source = self.values[left], self.values[right]
+                if target is not None and source is not None:
+                    draft.assigns.append(Assign(target, source, item.line))
+                    return
+            except NotPlainError:
+                pass
+        draft.wait("assign", item)
+
+    def instances(self, draft: Draft, statement: str, line: int) -> None:
+        """Read a statement of one instance or more, each with its own line."""
+        head = _CELL_HEAD.match(statement)
+        if not head or (head[1] not in GATES and statement[head.end(1) :].lstrip().startswith("#")):
+            cell = plain_name(head[1] if head else statement)
+            draft.trouble(f"{cell} is given parameters here", "give a netlist without parameters", line)
+            return
+        start = head.end()
+        for number, item in enumerate(split_list(statement[start:], line + statement.count("\n", 0, start))):
+            # The first instance stands where its statement begins, a further one where its name stands.
+            above = item.line - line if number == 0 else 0
+            whole = Item(head[1] + "\n" * above + " " + item.text, item.line - above)
+            instance = self._plain_item(whole) if draft.plain else None
+            if instance:
+                draft.instances.append(instance)
+            else:
+                draft.wait("instance", whole)
+
+    def _plain_item(self, item: Item) -> Instance | None:
+        """Return the instance if it is plain."""
+        match = _ONE_INSTANCE.fullmatch(item.text)
+        if not match:
+            return None
+        cell, name, body = match.groups(default="")
+        primitive = cell in GATES
+        if name in RESERVED or (cell in RESERVED and not primitive):
+            return None
+        try:
+            if _NAMED_BODY.fullmatch(body):
+                pairs: list[tuple[str | None, Expression | None]] = [
+                    (self.names[pin], self.values[value]) for pin, value in PINS.findall(body)
+                ]
+            elif body.strip():
+                pairs = [(None, self.values[part.text]) for part in split_list(body, item.line)]
+            else:
+                pairs = []
+        except NotPlainError:
+            return None
+        return Instance(self.names[cell], self.names[name], tuple(map(connect, pairs)), item.line, primitive)
+
+
+def direction_of(word: str) -> Direction | None:
+    """Return the direction that a word says, if it says one."""
+    return _DIRECTIONS.get(word)
+
+
+def direction_and_kind(word: str, kind: str | None) -> tuple[Direction | None, str | None]:
+    """Return what the one or two words before a declared name say; ``tri`` and ``uwire`` are wires."""
+    direction = direction_of(word)
+    kind = kind if direction else word
+    return direction, "wire" if kind in ("tri", "uwire") else kind or None

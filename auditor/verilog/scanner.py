@@ -1,0 +1,241 @@
+"""The fast lane: regular expressions over statements, which read all that is plain and leave the rest waiting.
+
+Gate-level text is almost all plain instances, so one compiled pattern reads a whole instance and the loop over
+them does nothing else. Every other statement is cut into items, each tried as plain once more; what is not plain
+waits in its draft for the grammar lane.
+"""
+
+import re
+from collections.abc import Callable
+
+from auditor.errors import TroubleList
+from auditor.notation import SourcePlace
+from auditor.verilog.draft import Declared, Draft
+from auditor.verilog.items import BOUNDS, NAMED_BODY, PINS, Items, connect, direction_and_kind
+from auditor.verilog.plain import (
+    GATES,
+    MAX_DEPTH,
+    NAME,
+    RESERVED,
+    SPACE,
+    DepthError,
+    NotPlainError,
+    PlainNames,
+    PlainValues,
+    plain_name,
+)
+from auditor.verilog.statements import Instance, Range
+
+S = SPACE
+_POSITION = r"(?>[^(),{}\\;.]++|\\\S++\s)++"
+_POSITIONS = re.compile(_POSITION)
+_INSTANCE = re.compile(rf"{S}({NAME}){S}(?:({NAME}){S})?+\((?:({NAMED_BODY})|({_POSITION}(?:,{_POSITION})*+))\){S};")
+_WORD = re.compile(rf"{S}(?:([A-Za-z_][\w$]*+)|(\\\S++\s)|(.))")
+_STATEMENT = re.compile(r'(?>[^;\\"]++|\\\S++\s|"(?:[^"\\\n]|\\.)*+")*+;')
+_MODULE_WORD = re.compile(r"\\\S++|\b(endmodule|module|macromodule)\b")
+_SPECIFY_END = re.compile(r"\\\S++|\b(endspecify)\b")
+_HEAD = re.compile(rf"(?:macro)?module\b{S}({NAME}){S}")
+_LABEL = re.compile(rf"{S}:{S}{NAME}")
+_NAME_LIST = re.compile(
+    rf"{S}(input|output|inout|wire|tri|supply0|supply1)\b{S}(?:(wire|tri)\b{S})?+(?:{BOUNDS}{S})?+"
+    rf"({NAME}{S}(?:,{S}{NAME}{S})*+);"
+)
+_BARE_NAME = re.compile(r"[A-Za-z_][\w$]*+|\\\S++")
+_WIRED = frozenset({"tri0", "tri1", "wand", "wor", "triand", "trior", "trireg"})
+
+
+def scan(text: str, file: str, troubles: TroubleList, plain: bool = True) -> list[Draft]:
+    """Return a draft of each module of a blanked text; with ``plain`` False all waits for the grammar lane."""
+    return _Scanner(text, file, troubles, plain).run()
+
+
+class _Scanner:
+    """Where the scan stands in one file; ``counted`` is the position up to which lines are counted."""
+
+    def __init__(self, text: str, file: str, troubles: TroubleList, plain: bool) -> None:
+        self.text, self.file, self.troubles, self.plain = text, file, troubles, plain
+        self.position, self.counted, self.line = 0, 0, 1
+        self.names, self.values = PlainNames(), PlainValues()
+        self.items = Items(self.names, self.values)
+        self.drafts: list[Draft] = []
+        self.draft: Draft | None = None
+
+    def run(self) -> list[Draft]:
+        """Read the whole text."""
+        while True:
+            if self.draft and self.draft.plain:
+                self._plain_instances(self.draft)
+            match = _WORD.match(self.text, self.position)
+            if not match:
+                break
+            line = self._line_at(match.start(match.lastindex or 0))
+            try:
+                self._statement(match, line)
+            except DepthError as error:
+                found = f"brackets are nested deeper than {MAX_DEPTH}"
+                self._trouble(found, "break the expression into nets of its own", error.line)
+        if self.draft:
+            self._trouble(
+                f"the file ends inside module {self.draft.name}", "end it with endmodule", self.draft.place.line
+            )
+        return self.drafts
+
+    def _plain_instances(self, draft: Draft) -> None:
+        """Read plain instances as long as they follow each other: the loop that a large netlist spends its time in."""
+        text, names, values = self.text, self.names, self.values
+        position, counted, line = self.position, self.counted, self.line
+        match_instance, find_pins, append = _INSTANCE.match, PINS.findall, draft.instances.append
+        while match := match_instance(text, position):
+            cell, name, named, by_position = match.groups()
+            primitive = cell in GATES
+            if (cell in RESERVED and not (primitive and by_position)) or name in RESERVED:
+                break
+            start = match.start(1)
+            line += text.count("\n", counted, start)
+            counted = start
+            try:
+                if named:
+                    connections = tuple([connect((names[pin], values[value])) for pin, value in find_pins(named)])
+                else:
+                    connections = tuple([connect((None, values[value])) for value in _POSITIONS.findall(by_position)])
+            except NotPlainError:
+                break
+            append(Instance(names[cell], names[name] if name else "", connections, line, primitive))
+            position = match.end()
+        self.position, self.counted, self.line = position, counted, line
+
+    def _statement(self, match: re.Match[str], line: int) -> None:
+        """Read the statement whose first word was matched."""
+        word, escaped, sign = match.groups()
+        self.position = match.start(match.lastindex or 0)
+        if sign == ";":
+            self.position += 1
+        elif word == "endmodule":
+            self._end_module(line)
+        elif word in ("module", "macromodule"):
+            self._begin_module(line)
+        elif self.draft is None:
+            self._trouble(f"{match[0].strip()} stands outside a module", "put it into a module or leave it out", line)
+            self._skip_to("module", "macromodule")
+        elif sign:
+            self._trouble(f"found {sign} where a statement should begin", "mend the text", line)
+            self._take_statement(line)
+        elif escaped or word in _HANDLERS or word not in RESERVED:
+            if word in _DECLARING and self.draft.plain and self._name_list(self.draft):
+                return
+            statement = self._take_statement(line)
+            if statement is not None:
+                _HANDLERS.get(word, Items.instances)(self.items, self.draft, statement, line)
+        else:
+            self._refused(self.draft, word, line)
+
+    def _refused(self, draft: Draft, word: str, line: int) -> None:
+        """Pass over what is not structural: timing in silence, all else with a trouble."""
+        if word == "specify":
+            self._skip_past(_SPECIFY_END)
+        elif word in _WIRED:
+            self._trouble(f"{word} nets are wired logic", "drive the net by one gate", line)
+            self._take_statement(line)
+        else:
+            self._trouble(
+                f"module {draft.name} is not structural: found {word}", "give a netlist mapped to gates", line
+            )
+            self._skip_to("endmodule")
+
+    def _begin_module(self, line: int) -> None:
+        if self.draft:
+            self._trouble(
+                f"a module begins inside module {self.draft.name}, which begins on line {self.draft.place.line}",
+                "end that module with endmodule first",
+                line,
+            )
+            self.draft = None
+        statement = self._take_statement(line)
+        if statement is None:
+            return
+        head = _HEAD.match(statement)
+        if not head or head[1] in RESERVED:
+            self._trouble("module without a name", "name it", line)
+            self._skip_past(_MODULE_WORD)
+            return
+        self.draft = Draft(plain_name(head[1]), SourcePlace(self.file, line), self.troubles, self.plain)
+        self.drafts.append(self.draft)
+        self.items.header(self.draft, statement, head.end(), line)
+
+    def _name_list(self, draft: Draft) -> bool:
+        """Read a plain list of declared names in one go, if it is one: lists may hold a million."""
+        match = _NAME_LIST.match(self.text, self.position)
+        if not match:
+            return False
+        word, kind, left, right, names = match.groups()
+        direction, kind = direction_and_kind(word, kind)
+        bounds = Range(int(left), int(right)) if left else None
+        line = self._line_at(match.start(5))
+        for chunk in names.split("\n"):
+            for written in _BARE_NAME.findall(chunk):
+                name = self.names[written]
+                if written in RESERVED:
+                    self._trouble(f"found {written} in a list of names", "mend the declaration", line)
+                draft.declare(Declared(name, direction, kind, bounds, line))
+            line += 1
+        self.position = match.end()
+        return True
+
+    def _end_module(self, line: int) -> None:
+        self.position += len("endmodule")
+        if label := _LABEL.match(self.text, self.position):
+            self.position = label.end()
+        if not self.draft:
+            self._trouble("endmodule without a module", "leave it out or mend what stands before it", line)
+        self.draft = None
+
+    def _take_statement(self, line: int) -> str | None:
+        """Return the text up to the next ``;`` and pass over it, or None after noting that it is not ended."""
+        match = _STATEMENT.match(self.text, self.position)
+        begun = self.text[self.position : match.end() if match else len(self.text)]
+        first = _WORD.match(begun)
+        inner = _find(_MODULE_WORD, begun, first.end() if first else 0)
+        if match and not inner:
+            self.position = match.end()
+            return begun[:-1]
+        self._trouble(f"the statement that begins with {begun.split()[0]} is not ended", "end it with ;", line)
+        self.position += inner.start() if inner else len(begun)
+        return None
+
+    def _skip_to(self, *words: str) -> None:
+        """Go on at the next of these words, or at the end of the text."""
+        match = _find(_MODULE_WORD, self.text, self.position)
+        while match and match[1] not in words:
+            match = _find(_MODULE_WORD, self.text, match.end())
+        self.position = match.start() if match else len(self.text)
+
+    def _skip_past(self, pattern: re.Pattern[str]) -> None:
+        match = _find(pattern, self.text, self.position)
+        self.position = match.end() if match else len(self.text)
+
+    def _line_at(self, position: int) -> int:
+        """Return the line of a position not before the last one asked for."""
+        self.line += self.text.count("\n", self.counted, position)
+        self.counted = position
+        return self.line
+
+    def _trouble(self, found: str, remedy: str, line: int) -> None:
+        self.troubles.add(found, remedy, SourcePlace(self.file, line))
+
+
+def _find(pattern: re.Pattern[str], text: str, start: int) -> re.Match[str] | None:
+    """Find a keyword outside escaped identifiers."""
+    return next((match for match in pattern.finditer(text, start) if match[1]), None)
+
+
+_Handler = Callable[[Items, Draft, str, int], None]
+_DECLARING = dict.fromkeys(
+    ("input", "output", "inout", "wire", "tri", "uwire", "reg", "supply0", "supply1"), Items.declaration
+)
+_HANDLERS: dict[str, _Handler] = {
+    **_DECLARING,
+    **dict.fromkeys(GATES, Items.instances),
+    "assign": Items.assign,
+    "parameter": Items.parameter,
+    "localparam": Items.parameter,
+}
