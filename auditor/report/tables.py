@@ -110,7 +110,7 @@ def _channel_table(page: Page, facts: AuditFacts, views: Sequence[ChannelView]) 
     if machine is None or table is None:
         return
     idle = set() if len(table.classes) > 1 else {"class"}
-    if not any(view.phase and view.phase.valid_from for view in views):
+    if not any(view.phase and view.phase.lead is not None and view.phase.valid_from for view in views):
         idle.add("from cycle")
     columns = [column for column in _CHANNEL_COLUMNS if column.heading not in idle]
     rows = []
