@@ -64,5 +64,5 @@ def fail(found: str, remedy: str, place: SourcePlace | None = None) -> InputErro
 
 def near_misses(name: str, known: Iterable[str]) -> str:
     """Return a clause that suggests up to three known names like ``name``, or an empty string."""
-    close = difflib.get_close_matches(name, list(known), n=3, cutoff=0.6)
+    close = difflib.get_close_matches(name, list(dict.fromkeys(known)), n=3, cutoff=0.6)
     return f"did you mean {' or '.join(close)}?" if close else ""

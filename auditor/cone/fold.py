@@ -21,6 +21,11 @@ class Folded(NamedTuple):
         """Return 0 or 1 if nothing is left to depend on."""
         return None if self.wires else int(self.function.program[0])
 
+    @property
+    def connected(self) -> tuple[int, ...]:
+        """Return the wires without the mark of an open pin."""
+        return tuple(wire for wire in self.wires if wire != OPEN_PIN)
+
 
 def fold(function: Function, wire_of: Mapping[str, int], known: Mapping[int, int]) -> Folded:
     """Put a cell function on wires: ``wire_of`` gives the wire of an input name, ``known`` the constant wires."""

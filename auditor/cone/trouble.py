@@ -10,42 +10,47 @@ from auditor.notation import SourcePlace, natural_order
 
 @dataclass(slots=True)
 class ConeTroubles:
-    """Notes what keeps the cone from being closed; ``others`` takes every trouble but the unknown cells."""
+    """Notes what keeps the cone from being closed.
+
+    ``loose`` takes nets without driver and open pins: they are told only where no cell is unknown, because an
+    unknown cell may well drive or ignore them. ``others`` takes the rest.
+    """
 
     wiring: Wiring
     others: TroubleList = field(default_factory=TroubleList)
+    loose: TroubleList = field(default_factory=TroubleList)
     unknown: dict[int, None] = field(default_factory=dict)  # instances of cells without description
 
     def unknown_cell(self, instance: int) -> None:
         """Note an instance inside the cone whose behaviour no description gives."""
         self.unknown[instance] = None
 
-    def driverless(self, net: int) -> None:
-        """Note a net inside the cone that nothing drives, as far as is known."""
+    def driverless(self, net: int) -> list[int]:
+        """Note a net inside the cone that nothing drives; return the unknown cells that may drive it after all."""
         netlist = self.wiring.netlist
-        suspects = list(self.wiring.pins_on(net, UNKNOWN_CELL))
+        suspects = [self.wiring.pin_of(pin)[0] for pin in self.wiring.pins_on(net, UNKNOWN_CELL)]
         if suspects:
-            for pin in suspects:
-                self.unknown_cell(self.wiring.pin_of(pin)[0])
-            return
+            self.unknown.update(dict.fromkeys(suspects))
+            return suspects
         name, place = netlist.net_names[net], netlist.net_place(net)
+        unlisted = [self.wiring.pin_of(pin) for pin in self.wiring.pins_on(net, UNLISTED)]
         if net in netlist.undefined:
-            self.others.add(f"net {name} inside the cone is tied to x or z", "tie it to 0 or 1", place)
-            return
-        for pin in self.wiring.pins_on(net, UNLISTED):
-            instance, pin_name = self.wiring.pin_of(pin)
-            self.others.add(
-                f"net {name} inside the cone hangs on pin {pin_name} of {netlist.instance_names[instance]}, "
+            self.loose.add(f"net {name} inside the cone is tied to x or z", "tie it to 0 or 1", place)
+        elif unlisted:
+            instance, pin = unlisted[0]
+            self.loose.add(
+                f"net {name} inside the cone hangs on pin {pin} of {netlist.instance_names[instance]}, "
                 f"which cell {netlist.cell_of(instance).name} does not have as an input or output",
                 "mend the pin's name or the cell's description",
                 netlist.instance_place(instance),
             )
-            return
-        self.others.add(
-            f"net {name} inside the cone has no driver",
-            "connect it, make it a port, or give --mode a value for it",
-            place,
-        )
+        else:
+            self.loose.add(
+                f"net {name} inside the cone has no driver",
+                "connect it, make it a port, or give --mode a value for it",
+                place,
+            )
+        return []
 
     def several_drivers(self, net: int) -> None:
         """Note a net inside the cone with two drivers or more, and name them all."""
@@ -77,7 +82,7 @@ class ConeTroubles:
     def open_pin(self, instance: int, pin: str) -> None:
         """Note an input inside the cone that is connected to nothing."""
         netlist = self.wiring.netlist
-        self.others.add(
+        self.loose.add(
             f"input {pin} of {netlist.instance_names[instance]} ({netlist.cell_of(instance).name}) "
             "inside the cone is not connected",
             "connect it or tie it to 0 or 1",
@@ -98,6 +103,8 @@ class ConeTroubles:
         """Raise all troubles together, the unknown cells as one list with a cell-table stub."""
         if self.unknown:
             self.others.add(*self._unknown_cells())
+        else:
+            self.others.troubles.extend(self.loose.troubles)
         self.others.raise_any()
 
     def _unknown_cells(self) -> tuple[str, str, SourcePlace]:

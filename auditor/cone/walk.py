@@ -61,7 +61,7 @@ class Walk:
         if driver == SEVERAL_DRIVERS or wire in self.ports:
             self.troubles.several_drivers(wire)
         elif driver == NO_DRIVER:
-            self.troubles.driverless(wire)
+            return self._behind_unknown(self.troubles.driverless(wire))
         else:
             return self._behind_pin(wire, *self.wiring.pin_of(driver))
         return ()
@@ -71,7 +71,7 @@ class Walk:
         pin = cell.pins.get(pin_name) if cell else None
         if cell is None or pin is None or pin.function is None or cell.not_understood:
             self.troubles.unknown_cell(instance)
-            return ()
+            return self._behind_unknown([instance])
         wire_of = self.wires_of(instance, cell)
         if pin.three_state is not None and fold(pin.three_state, wire_of, self.known).constant != 0:
             self.troubles.three_state(instance, pin_name)
@@ -79,25 +79,28 @@ class Walk:
         folded = self._checked(pin.function, wire_of, instance)
         if folded.constant is not None:
             self.settled[net] = folded.constant
-            return ()
-        self.gates[net] = (folded, instance)
-        return folded.wires
+        else:
+            self.gates[net] = (folded, instance)
+        return folded.connected
+
+    def _behind_unknown(self, instances: list[int]) -> tuple[int, ...]:
+        """Walk on through every net of unknown cells, so that all of them come up in one run."""
+        return tuple(net for instance in instances for net in self.wiring.nets_of(instance).values())
 
     def _behind_storage(self, stored: Stored) -> tuple[int, ...]:
         wire_of = self.wires_of(stored.instance, stored.cell)
         folded = self._checked(stored.storage.data, wire_of, stored.instance)
         self.data[stored.wire] = folded
-        return folded.wires
+        return folded.connected
 
     def _checked(self, function: Function, wire_of: dict[str, int], instance: int) -> Folded:
         """Fold, and complain of an input that matters but is connected to nothing."""
         folded = fold(function, wire_of, self.known)
-        if OPEN_PIN not in folded.wires:
-            return folded
-        for name in function.inputs:
-            if name not in wire_of:
-                self.troubles.open_pin(instance, name)
-        return Folded(Function((), ("0",)), ())
+        if OPEN_PIN in folded.wires:
+            for name in function.inputs:
+                if name not in wire_of:
+                    self.troubles.open_pin(instance, name)
+        return folded
 
     def wires_of(self, instance: int, cell: Cell) -> dict[str, int]:
         """Return the wire of every name that the cell's functions may use: its pins and its state variables."""

@@ -19,6 +19,13 @@ NODE_LIMIT = 200_000  # new diagram nodes for one gate; ``--work-limit`` sets an
 SUPPORT_LIMIT = 300  # affine nets under one function; the package recurses once a level
 
 
+class _Manager(BDD):
+    """The package's diagrams without its last check, which would count references that are not kept here."""
+
+    def __del__(self) -> None:
+        """Leave without a check."""
+
+
 class TooLargeError(Exception):
     """A diagram passed the node or the support limit: the question is undecided."""
 
@@ -32,7 +39,7 @@ class Diagrams:
     """
 
     node_limit: int = NODE_LIMIT
-    manager: BDD = field(default_factory=BDD)
+    manager: _Manager = field(default_factory=_Manager)
     forms: list[Vector] = field(default_factory=list)
     wires: list[int] = field(default_factory=list)
     _number: dict[Vector, int] = field(default_factory=dict)
