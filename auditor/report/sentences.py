@@ -14,13 +14,25 @@ _DIGITS = re.compile(r"(\d+)")
 
 def name_runs(names: Sequence[str]) -> str:
     """Return the names in their order; three or more that only count up by one become "q[0..31]"."""
+    return ", ".join(_run_text(run) for run in _runs(names))
+
+
+def bounded(names: Sequence[str], most: int) -> str:
+    """Return the names as ``name_runs``, at most ``most`` runs, and how many more names the JSON has."""
+    runs = [part for run in _runs(names) for part in ([run] if len(run) > 2 else [[name] for name in run])]
+    more = sum(map(len, runs[most:]))
+    return ", ".join(map(_run_text, runs[:most])) + (f" and {more} more in the JSON" if more else "")
+
+
+def _runs(names: Sequence[str]) -> list[list[str]]:
+    """Return the names cut into stretches that count up by one in the same number."""
     runs: list[list[str]] = []
     for name in names:
         if runs and _continues(runs[-1], name):
             runs[-1].append(name)
         else:
             runs.append([name])
-    return ", ".join(_run_text(run) for run in runs)
+    return runs
 
 
 def _continues(run: Sequence[str], name: str) -> bool:
@@ -50,12 +62,6 @@ def _run_text(run: Sequence[str]) -> str:
     parts = _DIGITS.split(run[0])
     parts[at] += ".." + _DIGITS.split(run[-1])[at]
     return "".join(parts)
-
-
-def bounded(names: Sequence[str], most: int) -> str:
-    """Return the names, at most ``most`` of them, and how many more the JSON has."""
-    more = len(names) - most
-    return ", ".join(names[:most]) + (f" and {more} more in the JSON" if more > 0 else "")
 
 
 def say_register(page: Page, register: RegisterFacts, machine: LinearMachine, number: int, count: int) -> None:

@@ -173,12 +173,11 @@ def _remark(view: ChannelView, table: PhaseTable) -> str:
 def say_flip_flops(page: Page, facts: AuditFacts) -> None:
     """Add the load of every storage element; of more than forty, the ones that drive the most."""
     machine, loads = facts.extraction.machine, facts.cone.loads
-    page.heading("Flip-flops: what they drive, without wires")
+    page.heading("Flip-flops: fan-out (direct, leaf, XOR) and load of the heaviest output")
     if len(loads) > MOST_ROWS:
         loads = tuple(sorted(loads, key=lambda load: (-_use(load), -sum(load.leaf), load.element))[:MOST_ROWS])
-    columns = [Column("element"), Column("cell"), Column("direct fan-out", True), Column("leaf fan-out", True),
-               Column("XOR fan-out", True), Column("output"), Column("load fF", True), Column("limit fF", True),
-               Column("used", True)]  # fmt: skip
+    columns = [Column("element"), Column("cell"), Column("direct", True), Column("leaf", True), Column("XOR", True),
+               Column("output"), Column("load fF", True), Column("limit fF", True), Column("used", True)]  # fmt: skip
     rows = []
     for load in loads:
         element = facts.cone.elements[load.element]
@@ -203,7 +202,7 @@ def _weight(load: Load) -> tuple[str, str, str, str]:
         return (EMPTY, EMPTY, EMPTY, EMPTY)
     limit = load.limit_ff[pin]
     used = f"{100 * _use(load):.0f} %" if limit else EMPTY
-    return (load.pins[pin], f"{load.capacitance_ff[pin]:.3f}", f"{limit:.3f}" if limit is not None else EMPTY, used)
+    return (load.pins[pin], f"{load.capacitance_ff[pin]:.2f}", f"{limit:.2f}" if limit is not None else EMPTY, used)
 
 
 def _say_rest(page: Page, total: int, noun: str, nouns: str = "", order: str = "") -> None:

@@ -105,10 +105,17 @@ def _say_finding(page: Page, finding: Finding) -> None:
     where = f"{finding.slug}: {bounded(finding.where, _MOST_NAMES)}"
     page.say(where, first=f"{finding.level:<8}  ", first_style=_LEVEL_STYLE[finding.level], style="bold")
     page.say(finding.says, margin=12)
-    figures = "; ".join(f"{name.replace('_', ' ')} {_figure(value)}" for name, value in finding.figures.items())
+    told = [name for name, value in finding.figures.items() if _is_phrase(value) and str(value) in finding.says]
+    fresh = [(name, value) for name, value in finding.figures.items() if name not in told]
+    figures = "; ".join(f"{name.replace('_', ' ')} {_figure(value)}" for name, value in fresh)
     for aside in (figures, str(finding.place or ""), f"waived: {finding.waived}" if finding.waived else ""):
         if aside:
             page.say(aside, margin=12, style="dim")
+
+
+def _is_phrase(value: object) -> bool:
+    """Say whether a figure is a text of several words, which the sentence may hold already."""
+    return isinstance(value, str) and " " in value
 
 
 def _figure(value: int | float | str | None) -> str:

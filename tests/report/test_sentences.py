@@ -28,6 +28,8 @@ def test_runs_of_counting_names_become_one(names, text):
 
 
 def test_a_bounded_list_says_how_many_are_missing():
-    """Up to the bound all names are given, beyond it their number."""
+    """Up to the bound all names are given, beyond it their number; a run counts once."""
     assert bounded(["a", "b"], 2) == "a, b"
     assert bounded(["a", "b", "c"], 2) == "a, b and 1 more in the JSON"
+    assert bounded([f"q[{k}]" for k in range(9)] + ["x", "y"], 2) == "q[0..8], x and 1 more in the JSON"
+    assert bounded(["x", "q[0]", "q[1]"], 2) == "x, q[0] and 1 more in the JSON"
