@@ -60,22 +60,26 @@ class Asynchronous:
             assumed[free[0]] = settings[0]
         return assumed, "", ""
 
-    def reset_value(self, stored: Stored, known: Mapping[int, int]) -> int | None:
-        """Return the bit that activating a single port gives, None where none does or two of them disagree."""
+    def reset_value(self, stored: Stored, known: Mapping[int, int]) -> tuple[int | None, list[int]]:
+        """Return the bit that activating a single port gives, and the ports that give it.
+
+        The bit is None where no port does, or where two of them disagree.
+        """
         clear, preset = stored.storage.clear, stored.storage.preset
         conditions = [condition for condition in (clear, preset) if condition is not None]
         ports = sorted(frozenset().union(*(self._trace_all(c, stored).ports for c in conditions)) & known.keys())
-        outcomes = set()
+        outcomes: dict[int, int | None] = {}
         for port in ports:
             flipped = {net: value for net, value in known.items() if net in self.ports}
             flipped[port] = 1 - known[port]
             cleared = clear is not None and self._value(clear, stored, flipped) == 1
             preset_on = preset is not None and self._value(preset, stored, flipped) == 1
             if cleared and preset_on:
-                outcomes.add(int(stored.storage.both) if stored.storage.both else None)
+                outcomes[port] = int(stored.storage.both) if stored.storage.both else None
             elif cleared or preset_on:
-                outcomes.add(int(preset_on))
-        return outcomes.pop() if len(outcomes) == 1 else None
+                outcomes[port] = int(preset_on)
+        values = set(outcomes.values())
+        return (values.pop(), list(outcomes)) if len(values) == 1 else (None, [])
 
     def _release(self, condition: Function, stored: Stored, known: Mapping[int, int]) -> str:
         """Return the constant of a single port that would make an active pin inactive."""

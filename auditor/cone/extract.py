@@ -1,6 +1,8 @@
 """From a netlist and a mode to the cone of the channels: the main verb of this room."""
 
+from collections import Counter
 from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
 
 from auditor.cells.library import CellLibrary
 from auditor.cone.asynchronous import Asynchronous
@@ -37,17 +39,27 @@ def extract_cone(netlist: Netlist, library: CellLibrary, mode: Mapping[str, int]
         raise fail(f"{netlist.top} has no output ports", "give --channels the nets that feed the scan chains")
     known = {**TIES, **forced_values}
     spread(wiring, known, list(known))
-    walk, assumed, obstacles = _close(wiring, known, ports, [net for _, net in wanted])
-    return _assemble(wiring, walk, wanted, assumed, obstacles, tuple(forced))
+    closed = _close(wiring, known, ports, [net for _, net in wanted])
+    return _assemble(wiring, closed, wanted, tuple(forced))
 
 
-def _close(
-    wiring: Wiring, known: dict[int, int], ports: frozenset[int], channels: list[int]
-) -> tuple[Walk, dict[int, int], dict[int, tuple[str, str]]]:
-    """Walk until the mode, the assumed asynchronous ports and what follows from both no longer change.
+@dataclass(frozen=True, slots=True)
+class _Closed:
+    """A finished walk and what its asynchronous pins gave.
 
-    Returns the walk, the assumed ports, and per stored wire why its asynchronous pins stand in the way.
+    ``assumed``    port → the value at which the pins behind it are inactive
+    ``reset_by``   port → how many elements its other value sets or clears
+    ``obstacles``  stored wire → why its pins stand in the way, and the cure
     """
+
+    walk: Walk
+    assumed: Mapping[int, int]
+    reset_by: Mapping[int, int]
+    obstacles: Mapping[int, tuple[str, str]]
+
+
+def _close(wiring: Wiring, known: dict[int, int], ports: frozenset[int], channels: list[int]) -> _Closed:
+    """Walk until the mode, the assumed asynchronous ports and what follows from both no longer change."""
     asynchronous = Asynchronous(wiring, ports)
     assumed: dict[int, int] = {}
     while True:
@@ -65,20 +77,15 @@ def _close(
             break
         known.update(fresh)
         spread(wiring, known, list(fresh))
+    reset_by: Counter[int] = Counter()
     for stored in walk.met():
-        walk.resets[stored.wire] = asynchronous.reset_value(stored, known)
-    return walk, assumed, obstacles
+        walk.resets[stored.wire], by = asynchronous.reset_value(stored, known)
+        reset_by.update(by)
+    return _Closed(walk, assumed, reset_by, obstacles)
 
 
-def _assemble(
-    wiring: Wiring,
-    walk: Walk,
-    wanted: list[tuple[str, int]],
-    assumed: dict[int, int],
-    obstacles: dict[int, tuple[str, str]],
-    forced: tuple[int, ...],
-) -> Cone:
-    netlist, troubles = wiring.netlist, walk.troubles
+def _assemble(wiring: Wiring, closed: _Closed, wanted: list[tuple[str, int]], forced: tuple[int, ...]) -> Cone:
+    netlist, walk, troubles = wiring.netlist, closed.walk, closed.walk.troubles
     stored = sorted(walk.met(), key=lambda s: natural_order(name_of(netlist, s)))
     if not stored:
         troubles.raise_any()
@@ -108,9 +115,9 @@ def _assemble(
         graph=graph,
         feedback=feedback,
         loads=find_loads(wiring, elements),
-        obstacles=_obstacles(netlist, stored, obstacles),
+        obstacles=_obstacles(netlist, stored, closed.obstacles),
         forced=forced,
-        assumed=_assumptions(netlist, assumed),
+        assumed=_assumptions(netlist, closed),
     )
 
 
@@ -124,8 +131,12 @@ def _obstacles(
     )
 
 
-def _assumptions(netlist: Netlist, assumed: Mapping[int, int]) -> tuple[str, ...]:
-    return tuple(
-        f"{netlist.net_names[net]} = {value}: the asynchronous pins behind it are inactive"
-        for net, value in sorted(assumed.items(), key=lambda item: natural_order(netlist.net_names[item[0]]))
-    )
+def _assumptions(netlist: Netlist, closed: _Closed) -> tuple[str, ...]:
+    sentences = []
+    for net in sorted({*closed.assumed, *closed.reset_by}, key=lambda net: natural_order(netlist.net_names[net])):
+        name, value = netlist.net_names[net], closed.walk.known[net]
+        parts = [f"{name} = {value}: the asynchronous pins behind it are inactive"] if net in closed.assumed else []
+        if count := closed.reset_by.get(net):
+            parts.append(f"{name} = {1 - value} gives the reset state of {count} storage element{'s' * (count > 1)}")
+        sentences.append("; ".join(parts))
+    return tuple(sentences)

@@ -77,7 +77,10 @@ def test_fan_out_counts_leaves_through_buffers_and_inverters(tmp_path: Path) -> 
 def test_asynchronous_pins_are_inactive_by_assumption_and_give_the_reset(tmp_path: Path) -> None:
     """A reset port behind an inverter is assumed inactive and listed; flipping it gives the reset state."""
     cone = cone_of(tmp_path, CLEARED, ports="input clk, input reset, output y")
-    assert cone.assumed == ("reset = 0: the asynchronous pins behind it are inactive",)
+    assert cone.assumed == (
+        "reset = 0: the asynchronous pins behind it are inactive; "
+        "reset = 1 gives the reset state of 2 storage elements",
+    )
     assert [element.reset for element in cone.elements] == [0, 1]
     assert not cone.obstacles
 
