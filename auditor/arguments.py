@@ -9,7 +9,7 @@ from typing import NoReturn
 
 from auditor.errors import TroubleList, fail, near_misses
 from auditor.notation import SourcePlace
-from auditor.plan import BEYOND, LEAST_LIMIT, Options
+from auditor.plan import BEYOND, LEAST_LIMIT, LONGEST_CHAIN, Options
 
 COMMAND_LINE = SourcePlace("command line")
 FAIL_AT = ("note", "warning", "error")
@@ -90,7 +90,7 @@ def read_arguments(words: Sequence[str]) -> Request:
             mode=_read_mode(given.mode, troubles),
             channels=tuple(given.channels),
             reference=given.reference,
-            chain_length=_read_number("--chain-length", given.chain_length, 1, troubles),
+            chain_length=_read_number("--chain-length", given.chain_length, 1, troubles, LONGEST_CHAIN),
             limits=_read_limits(given.limit, troubles),
             fail_at=given.fail_at,
             work_limit=_read_number("--work-limit", given.work_limit, 1, troubles),
@@ -143,11 +143,13 @@ def _read_limits(entries: list[str], troubles: TroubleList) -> dict[str, int]:
     return limits
 
 
-def _read_number(option: str, value: str | None, least: int, troubles: TroubleList) -> int | None:
-    """Return a whole number from ``least`` to below ``BEYOND``, or None where not given or wrong."""
+def _read_number(
+    option: str, value: str | None, least: int, troubles: TroubleList, most: int = BEYOND - 1
+) -> int | None:
+    """Return a whole number from ``least`` to ``most``, or None where not given or wrong."""
     if not value:
         return None
-    if re.fullmatch(r"[0-9]{1,20}", value) and least <= int(value) < BEYOND:
+    if re.fullmatch(r"[0-9]{1,20}", value) and least <= int(value) <= most:
         return int(value)
-    troubles.add(f"{option} is {value}", f"give a whole number of at least {least} and below 10^18", COMMAND_LINE)
+    troubles.add(f"{option} is {value}", f"give a whole number from {least} to {most}", COMMAND_LINE)
     return None

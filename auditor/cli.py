@@ -3,10 +3,11 @@
 import contextlib
 import os
 import sys
+import textwrap
 import traceback
 from collections.abc import Iterator, Sequence
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, TextIO
 
 from auditor.arguments import COMMAND_LINE, Request, read_arguments
 from auditor.errors import InputError, InternalError, TroubleList, fail, near_misses
@@ -41,9 +42,7 @@ auditor audit --help lists the options.
 def run(words: Sequence[str] | None = None) -> int:
     """Run the command line (default: that of the process) and return the exit status."""
     words = sys.argv[1:] if words is None else words
-    for stream in (sys.stdout, sys.stderr):
-        if hasattr(stream, "reconfigure"):  # a name that the terminal cannot show must not end the run
-            stream.reconfigure(errors="backslashreplace")
+    _prepare_output()
     try:
         return _command(words)
     except InputError as error:
@@ -150,17 +149,34 @@ def _check_target(target: Path, sources: Sequence[Path]) -> None:
 
 @contextlib.contextmanager
 def _closed_pipe_allowed() -> Iterator[None]:
-    """Let the reader of a pipe leave early, as ``| head`` does: what is left to print is dropped."""
+    """Let the reader of a pipe leave early, as ``| head`` does: what is left to print is dropped.
+
+    Raises ``InputError`` where the output cannot be written for another reason, as on a full disk.
+    """
     try:
         yield
     except BrokenPipeError:
         _drop_output()
+    except OSError as error:
+        _drop_output(sys.stdout)
+        found = f"the output cannot be written: {error.strerror or error}"
+        raise fail(found, "make room for it, or give --quiet") from None
 
 
-def _drop_output() -> None:
-    """Point both streams at nothing, so that the flush at the end of the process meets no closed pipe."""
+def _prepare_output() -> None:
+    """Make printing safe: a closed stream swallows what it gets, and what a terminal cannot show is escaped."""
+    for name in ("stdout", "stderr"):
+        stream = getattr(sys, name)
+        if stream is None:
+            setattr(sys, name, open(os.devnull, "w"))  # noqa: SIM115 - it lives as long as the process
+        elif hasattr(stream, "reconfigure"):
+            stream.reconfigure(errors="backslashreplace")
+
+
+def _drop_output(*streams: TextIO) -> None:
+    """Point streams (default: both) at nothing, so that the flush at the end of the process cannot fail again."""
     nothing = os.open(os.devnull, os.O_WRONLY)
-    for stream in (sys.stdout, sys.stderr):
+    for stream in streams or (sys.stdout, sys.stderr):
         with contextlib.suppress(OSError, ValueError):  # a stream of a test has no descriptor
             os.dup2(nothing, stream.fileno())
     os.close(nothing)
@@ -188,7 +204,7 @@ def _trouble_text(error: InputError) -> str:
 
 def _internal_text(error: Exception) -> str:
     """Return the message on a defect of our own; with AUDITOR_TRACEBACK=1 it carries the traceback."""
-    what = _plain(f"{type(error).__name__}: {error}")
+    what = textwrap.shorten(_plain(f"{type(error).__name__}: {error}"), 500)
     frames = traceback.extract_tb(error.__traceback__)
     where = f" ({Path(frames[-1].filename).name}:{frames[-1].lineno})" if frames else ""
     trace = "".join(traceback.format_exception(error)) if os.environ.get("AUDITOR_TRACEBACK") == "1" else ""
@@ -203,4 +219,4 @@ def _internal_text(error: Exception) -> str:
 def _plain(text: str) -> str:
     """Return the text without control codes, which a hostile name could carry; further lines are indented."""
     lines = ("".join(char if char.isprintable() else "?" for char in line) for line in text.split("\n"))
-    return "\n  ".join(lines)
+    return "\n".join(line and "  " * (number > 0) + line for number, line in enumerate(lines)).rstrip()

@@ -42,6 +42,7 @@ class Limits:
 # Every limit by its name in the plan and after --limit, with the least value that makes sense.
 LEAST_LIMIT = {"separation": 1, "fan_out": 1, "taps": 1, "depth": 0}
 BEYOND = 10**18  # every stated number is smaller
+LONGEST_CHAIN = 10**7  # scan cells; far beyond any chain, and short enough to go through
 
 
 @dataclass(frozen=True, slots=True)

@@ -9,7 +9,7 @@ from typing import Any
 
 from auditor.errors import TroubleList, fail, near_misses
 from auditor.notation import SourcePlace
-from auditor.plan import BEYOND, LEAST_LIMIT, Limits, Patterns, Plan, Waiver
+from auditor.plan import BEYOND, LEAST_LIMIT, LONGEST_CHAIN, Limits, Patterns, Plan, Waiver
 
 KEYS: dict[str, tuple[str, ...]] = {
     "netlist": ("files", "top", "cells"),
@@ -40,7 +40,7 @@ def read_plan(path: Path) -> Plan:
         mode=reader.mode(),
         channels=reader.texts("channels", "names"),
         reference=reader.text("channels", "reference"),
-        chain_length=reader.number("chains", "length", 1),
+        chain_length=reader.number("chains", "length", 1, LONGEST_CHAIN),
         patterns=reader.patterns(),
         limits=Limits(**limits),
         waivers=reader.waivers(),
@@ -166,12 +166,12 @@ class _Reader:
         """Return a list of paths, taken relative to the plan."""
         return tuple(self.folder / name for name in self.texts(section, key))
 
-    def number(self, section: str, key: str, least: int) -> int | None:
-        """Return a whole number from ``least`` to below ``BEYOND``, or None where not stated."""
+    def number(self, section: str, key: str, least: int, most: int = BEYOND - 1) -> int | None:
+        """Return a whole number from ``least`` to ``most``, or None where not stated."""
         value = self._table(section).get(key)
-        if value is None or (isinstance(value, int) and not isinstance(value, bool) and least <= value < BEYOND):
+        if value is None or (isinstance(value, int) and not isinstance(value, bool) and least <= value <= most):
             return value
-        self.wrong(section, key, f"a whole number of at least {least} and below 10^18", f"write {key} = N")
+        self.wrong(section, key, f"a whole number from {least} to {most}", f"write {key} = N")
         return None
 
     def choice(self, section: str, key: str, known: tuple[str, ...]) -> str:

@@ -219,7 +219,7 @@ def test_control_codes_and_markup_of_names_are_harmless(
     )
 
 
-NUMBER = "give a whole number of at least 1 and below 10^18"
+NUMBER = "give a whole number from 1 to 999999999999999999"
 ONE_OR_THE_OTHER = "write --mode NET=0 or --mode NET=1"
 NO_OPTION = "is no option of auditor audit"
 
@@ -243,7 +243,7 @@ NO_OPTION = "is no option of auditor audit"
         (["audit", "a.v", "--limit", "q"], "--limit q names no limit",
          "use one of separation, fan_out, taps, depth, as in --limit fan_out=16"),
         (["audit", "a.v", "--limit", "taps=x"], "--limit taps is x", NUMBER),
-        (["audit", "a.v", "--chain-length", "0"], "--chain-length is 0", NUMBER),
+        (["audit", "a.v", "--chain-length", "0"], "--chain-length is 0", "give a whole number from 1 to 10000000"),
         (["audit", "a.v", "--work-limit", "1e3"], "--work-limit is 1e3", NUMBER),
         (["audit", "a.v", "--fail-at", "erorr"], "--fail-at erorr is no level", "did you mean error?"),
     ],
@@ -299,6 +299,10 @@ def test_a_defect_of_our_own_is_told_as_such(
     err = capsys.readouterr().err
     assert err.startswith("Traceback")
     assert "internal error: the auditor broke, no verdict: ZeroDivisionError: x" in err
+    monkeypatch.delenv("AUDITOR_TRACEBACK")
+    use(raises(ValueError("y" * 10_000)))
+    assert cli.run(["audit", "a.v"]) == 4
+    assert len(capsys.readouterr().err) < 1000
 
 
 def test_an_interrupt_takes_one_line(use: Callable[[Audit], None], capsys: pytest.CaptureFixture[str]) -> None:
@@ -348,6 +352,49 @@ def test_a_closed_pipe_is_no_trouble() -> None:
     os.close(reading)
     assert process.communicate(b"go\n")[1] == b""
     assert process.returncode == 1
+
+
+@pytest.mark.skipif(not Path("/dev/full").exists(), reason="there is no device that is always full")
+def test_a_full_disk_behind_the_screen_is_told() -> None:
+    """Output that cannot be written is no defect of ours: status 2 and one message."""
+    code = (
+        "import sys, types; from tests.support.facts import small_facts; from auditor import cli;"
+        "sys.modules['auditor.audit'] = types.SimpleNamespace(audit=lambda plan, progress: small_facts());"
+        "sys.exit(cli.run(['audit', 'a.v']))"
+    )
+    with open("/dev/full", "w") as full:
+        done = subprocess.run(
+            [sys.executable, "-c", code],
+            stdout=full,
+            stderr=subprocess.PIPE,
+            text=True,
+            check=False,
+            env=_environment(),
+        )
+    assert done.returncode == 2
+    assert done.stderr == (
+        "error: the output cannot be written: No space left on device\n  remedy: make room for it, or give --quiet\n"
+    )
+
+
+@pytest.mark.parametrize(
+    ("plan", "words", "status", "verdict"),
+    [
+        ("phase_shifter.toml", [], 0, "pass"),
+        ("phase_shifter.toml", ["--limit", "taps=2", "--fail-at", "warning"], 1, "fail"),
+        ("plain_register.toml", [], 1, "fail"),
+        ("completed_cycle.toml", [], 1, "fail"),
+    ],
+)
+def test_real_audits_end_with_the_status_of_their_verdict(
+    plan: str, words: list[str], status: int, verdict: str, capsys: pytest.CaptureFixture[str]
+) -> None:
+    """From a sample's plan to the exit status, with all stages: the JSON on standard output says the same."""
+    path = Path(__file__).parents[1] / "sample_netlists" / plan
+    assert cli.run(["audit", "--plan", str(path), "--json", "-", "--quiet", *words]) == status
+    out, err = capsys.readouterr()
+    assert json.loads(out)["verdict"] == verdict
+    assert err == ""
 
 
 def test_the_package_runs_as_a_module() -> None:

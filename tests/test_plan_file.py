@@ -176,8 +176,8 @@ fan_out = true
 taps = "3"
 depth = -1
 """
-    whole = "must be a whole number of at least"
-    below = "and below 10^18; write"
+    whole = "must be a whole number from"
+    below = "to 999999999999999999; write"
     assert troubles(tmp_path, text) == [
         'plan.toml:2: files in [netlist] must be a list of texts; write files = ["...", "..."]',
         'plan.toml:3: top in [netlist] must be a text that is not empty; write top = "..."',
@@ -188,7 +188,7 @@ depth = -1
         ),
         'plan.toml:10: names in [channels] must be a list of texts; write names = ["...", "..."]',
         'plan.toml:11: reference in [channels] must be a text that is not empty; write reference = "..."',
-        f"plan.toml:13: length in [chains] {whole} 1 {below} length = N",
+        f"plan.toml:13: length in [chains] {whole} 1 to 10000000; write length = N",
         "plan.toml:14: [patterns] has no count; state count = N",
         f"plan.toml:15: shift_cycles in [patterns] {whole} 1 {below} shift_cycles = N",
         f"plan.toml:16: capture_cycles in [patterns] {whole} 0 {below} capture_cycles = N",

@@ -89,7 +89,8 @@ def _overlap(evidence: Evidence, pair: _Pair) -> Finding:
     figures: dict[str, int | float | str | None] = {"separation": decimal(pair.cycles), "streams": _relation(pair)}
     if limit is not None:
         figures["limit"] = decimal(limit)
-    says = f"{names[0]} and {names[1]} carry {_relation(pair)} streams {decimal(pair.cycles)} cycles apart"
+    distance = f"{decimal(pair.cycles)} cycle{'s' * (pair.cycles != 1)} apart"
+    says = f"{names[0]} and {names[1]} carry {_relation(pair)} streams {distance}"
     shared = overlap(evidence.phases, pair.i, pair.j, length, length) if length and evidence.phases else None
     if length:
         figures["chain_length"] = decimal(length)

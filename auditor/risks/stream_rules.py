@@ -43,10 +43,11 @@ def constant_channel(evidence: Evidence) -> Iterator[Finding]:
         return
     reached = open_input_reach(machine)
     for number, observed in evidence.channels():
-        row, group = observed.row, evidence.phases.phases[number].group
+        row, phase = observed.row, evidence.phases.phases[number]
         if row is None or row.inputs or row.state & reached:
             continue
-        if group is None or evidence.phases.classes[group].modulus == 1:
+        held = phase.group is not None and evidence.phases.classes[phase.group].modulus == 1
+        if held or phase.kind == "none":
             yield _constant(evidence, observed.name, None if row.state else row.constant)
 
 

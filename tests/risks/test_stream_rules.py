@@ -75,6 +75,14 @@ def test_a_channel_that_an_open_input_moves_is_not_constant() -> None:
     assert not list(constant_channel(evidence(machine)))
 
 
+def test_a_channel_whose_class_is_undecided_is_not_constant() -> None:
+    """A channel that has no class because nothing was decided is no constant."""
+    told = evidence(linear_machine(REGISTER, [(1, 0)]))
+    assert told.phases
+    open_phase = replace(told.phases.phases[0], group=None, lead=None, kind="undecided", inverted=None)
+    assert not list(constant_channel(replace(told, phases=replace(told.phases, phases=(open_phase,)))))
+
+
 def test_tied_channels_are_found_without_a_machine() -> None:
     """A refused machine does not hide a channel that is tied."""
     (finding,) = constant_channel(evidence(linear_machine(REGISTER, [(0, 0), (1, 0)]), proved=False))
