@@ -96,7 +96,7 @@ def parse_liberty(text: str, file: str) -> list[Group]:
             if string:
                 attributes[name] = (_unquoted(string),)
             else:
-                attributes[name] = _arguments(arguments) if bare is None else (bare,)
+                attributes[name] = _arguments(arguments) if bare is None else (bare.rstrip(),)
         elif close and len(open_groups) > 1:
             open_groups.pop()
         else:

@@ -37,7 +37,8 @@ def settle(described: Sequence[Described], taken: Container[str]) -> tuple[tuple
 
     A variable named like a pin (one of ``taken``) gets the suffix ``.state``.
     """
-    inverted = [_follows_inverted(bit) for bit in described]
+    complements = {bit.second: Function((bit.first,), ("$0", "!")) for bit in described if bit.second}
+    inverted = [_falls_with_data(bit, complements) for bit in described]
     meaning: dict[str, Function] = {}
     variables = []
     for bit, is_inverted in zip(described, inverted, strict=True):
@@ -60,15 +61,12 @@ def inverse(function: Function) -> Function:
     return Function(function.inputs, (*function.program, "!"))
 
 
-def _follows_inverted(bit: Described) -> bool:
+def _falls_with_data(bit: Described, complements: Mapping[str, Function]) -> bool:
     """Return whether the first variable is negative unate in its data: in every input in which it is unate at all.
 
     Selecting inputs (an enable, a scan enable) are mixed and do not count; nor does the variable itself.
     """
-    data = bit.data
-    if bit.second in data.inputs:
-        data = substitute(data, {bit.second: Function((bit.first,), ("$0", "!"))})
-    ways = {way for name, way in unateness(data).items() if name != bit.first}
+    ways = {way for name, way in unateness(substitute(bit.data, complements)).items() if name != bit.first}
     return "negative" in ways and "positive" not in ways
 
 
