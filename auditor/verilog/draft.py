@@ -35,7 +35,10 @@ class Waiting(NamedTuple):
 
 @dataclass(slots=True)
 class Draft:
-    """A module in the making. ``plain`` turns False with the first parameter: any name may then be a number."""
+    """A module in the making; ``port_nets`` are the ports that are declared as nets as well.
+
+    ``plain`` turns False with the first parameter: any name may then be a number.
+    """
 
     name: str
     place: SourcePlace
@@ -44,7 +47,7 @@ class Draft:
     ports: list[HeaderPort] = field(default_factory=list)
     directions: dict[str, Direction] = field(default_factory=dict)
     nets: dict[str, Declaration] = field(default_factory=dict)
-    net_kinds: dict[str, str] = field(default_factory=dict)
+    port_nets: set[str] = field(default_factory=set)
     instances: list[Instance] = field(default_factory=list)
     assigns: list[Assign] = field(default_factory=list)
     waiting: list[Waiting] = field(default_factory=list)
@@ -57,30 +60,39 @@ class Draft:
         """Note a trouble on a line of this module."""
         self.troubles.add(found, remedy, SourcePlace(self.place.file, line))
 
+    def declare_all(
+        self, names: Sequence[str], direction: Direction | None, kind: str | None, bounds: Range | None, line: int
+    ) -> None:
+        """Enter names of one declaration on one line."""
+        if self.nets.keys().isdisjoint(names) and len(set(names)) == len(names):
+            self.nets.update(dict.fromkeys(names, Declaration(kind or "wire", bounds, line)))
+            if direction:
+                self.directions.update(dict.fromkeys(names, direction))
+            if direction and kind:
+                self.port_nets.update(names)
+        else:
+            for name in names:
+                self.declare(Declared(name, direction, kind, bounds, line))
+
     def declare(self, declared: Declared) -> None:
         """Enter a declared name. A port may be declared once as port and once as net, with the same range."""
         name, direction, kind, bounds, line = declared
         before = self.nets.get(name)
         if before is None:
-            self.nets[name] = Declaration(kind or "wire", bounds, line)
+            self.declare_all([name], direction, kind, bounds, line)
+            return
+        was_port, was_net = name in self.directions, name in self.port_nets or name not in self.directions
+        if (direction and was_port) or (kind and was_net):
+            found = f"{name} is declared again, first on line {before.line}"
+            self.trouble(found, "leave one of the declarations out", line)
+        elif before.range != bounds:
+            found = f"{name} is declared with another range than on line {before.line}"
+            self.trouble(found, "give both one range", line)
         else:
-            twice_port = direction is not None and name in self.directions
-            twice_net = kind is not None and name in self.net_kinds
-            if twice_port or twice_net or (direction is None and name not in self.directions):
-                self.trouble(
-                    f"{name} is declared again, first on line {before.line}", "leave one of the declarations out", line
-                )
-                return
-            if before.range != bounds:
-                self.trouble(
-                    f"{name} is declared with another range than on line {before.line}", "give both one range", line
-                )
-                return
             self.nets[name] = Declaration(kind or before.kind, bounds, before.line)
-        if kind:
-            self.net_kinds[name] = kind
-        if direction:
-            self.directions[name] = direction
+            self.port_nets.add(name)
+            if direction:
+                self.directions[name] = direction
 
     def merge(self, results: Sequence[tuple[Waiting, Instance | Assign]]) -> None:
         """Put the results of the grammar lane where they stand in the text."""

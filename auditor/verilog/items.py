@@ -39,7 +39,9 @@ _DECLARED = re.compile(
 _RANGE = re.compile(rf"{BOUNDS}{S}")
 _DIRECTIONS: dict[str, Direction] = {"input": "input", "output": "output", "inout": "inout"}
 
+# The constructors of the large loops, without the call of Python code that a named tuple's own one makes.
 connect = partial(tuple.__new__, Connection)
+instantiate = partial(tuple.__new__, Instance)
 
 
 class Items:

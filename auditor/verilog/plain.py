@@ -113,7 +113,9 @@ class PlainValues(dict[str, Expression | None]):
 
     def __missing__(self, text: str) -> Expression | None:
         value: Expression | None
-        if match := self._one.fullmatch(text):
+        if text.isidentifier() and text.isascii() and text not in RESERVED:
+            value = text
+        elif match := self._one.fullmatch(text):
             value = self._value(*match.groups())
         elif match := self._several.fullmatch(text):
             value = Concatenation(tuple(self._value(*groups) for groups in self._parts.findall(match[1])))

@@ -10,8 +10,8 @@ from collections.abc import Callable
 
 from auditor.errors import TroubleList
 from auditor.notation import SourcePlace
-from auditor.verilog.draft import Declared, Draft
-from auditor.verilog.items import BOUNDS, NAMED_BODY, PINS, Items, connect, direction_and_kind
+from auditor.verilog.draft import Draft
+from auditor.verilog.items import BOUNDS, NAMED_BODY, PINS, Items, connect, direction_and_kind, instantiate
 from auditor.verilog.plain import (
     GATES,
     MAX_DEPTH,
@@ -24,7 +24,7 @@ from auditor.verilog.plain import (
     PlainValues,
     plain_name,
 )
-from auditor.verilog.statements import Instance, Range
+from auditor.verilog.statements import Range
 
 S = SPACE
 _POSITION = r"(?>[^(),{}\\;.]++|\\\S++\s)++"
@@ -100,7 +100,8 @@ class _Scanner:
                     connections = tuple([connect((None, values[value])) for value in _POSITIONS.findall(by_position)])
             except NotPlainError:
                 break
-            append(Instance(names[cell], names[name] if name else "", connections, line, primitive))
+            own = name if name and name[0] != "\\" else plain_name(name or "")
+            append(instantiate((names[cell], own, connections, line, primitive, None)))
             position = match.end()
         self.position, self.counted, self.line = position, counted, line
 
@@ -171,13 +172,11 @@ class _Scanner:
         direction, kind = direction_and_kind(word, kind)
         bounds = Range(int(left), int(right)) if left else None
         line = self._line_at(match.start(5))
-        for chunk in names.split("\n"):
-            for written in _BARE_NAME.findall(chunk):
-                name = self.names[written]
-                if written in RESERVED:
-                    self._trouble(f"found {written} in a list of names", "mend the declaration", line)
-                draft.declare(Declared(name, direction, kind, bounds, line))
-            line += 1
+        for number, chunk in enumerate(names.split("\n"), line):
+            written = _BARE_NAME.findall(chunk)
+            if not RESERVED.isdisjoint(written):
+                self._trouble(f"found {min(RESERVED & set(written))} in a list of names", "mend the text", number)
+            draft.declare_all(list(map(plain_name, written)), direction, kind, bounds, number)
         self.position = match.end()
         return True
 
