@@ -108,7 +108,7 @@ def _cell(name: str, entry: Section) -> Cell:
     names = [*inputs, *outputs.values, *power]
     for pin in dict.fromkeys(names):
         if names.count(pin) > 1:
-            entry.note(f"the cell {name} names its pin {pin} twice", "leave it in one list", pin)
+            entry.note(f"the cell {name} names its pin {pin} twice", "leave it in one list")
     three_state.check_keys(outputs.values, "output")
     storage, meaning = _storage(storage_sections, entry, names, inputs)
     known = [*inputs, _STATE] if storage_sections else inputs

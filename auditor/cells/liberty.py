@@ -35,7 +35,7 @@ _TO_BRACE = re.compile(rf"{_FLAT}(?:\{{{_FLAT}\}}{_FLAT})*+([{{}}])")  # passes 
 _ARGUMENT = re.compile(rf'{_STRING}|[^\s,"\\]++')
 _TO_COMMENT = re.compile(rf'(?:[^"/]++|{_STRING}|/(?![*/]))*+')
 _COMMENT = re.compile(r"//[^\n]*+|/\*(?:[^*]++|\*(?!/))*+\*/")
-_LIBRARY = re.compile(r"(?:\A|[\s};/])library\s*\(")
+_LIBRARY = re.compile(r"(?:\A|[\n};/])[ \t]*library\s*\(")
 
 
 @dataclass(slots=True)

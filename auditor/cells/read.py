@@ -37,6 +37,9 @@ class _CellsOnDemand(Mapping[str, Cell]):
             self._made[name] = self._sources[name].make()
         return self._made[name]
 
+    def __contains__(self, name: object) -> bool:
+        return name in self._sources
+
     def __iter__(self) -> Iterator[str]:
         return iter(self._sources)
 

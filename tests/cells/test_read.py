@@ -1,0 +1,235 @@
+"""Reading cells from several files: formats, overriding, troubles together, the two real libraries."""
+
+import gzip
+import re
+import time
+from collections import Counter
+from pathlib import Path
+
+import pytest
+
+from auditor.cells import read as read_module
+from auditor.cells.function import support, truth_table
+from auditor.cells.read import read_cells
+from auditor.errors import InputError
+from auditor.notation import SourcePlace
+
+REAL = Path(__file__).parents[3] / "shared" / "cells"
+SKY = REAL / "sky130hd_tt.lib.gz"
+IHP = REAL / "sg13g2_stdcell_typ_1p20V_25C.lib.gz"
+needs_libraries = pytest.mark.skipif(not REAL.exists(), reason="the two open libraries are not beside this repository")
+
+LIBERTY = """library (l) { capacitive_load_unit (1, ff);
+cell (INV) { pin (A) { direction : input; } pin (Y) { direction : output; function : "!A"; } }
+cell (BUF) { pin (A) { direction : input; } pin (Y) { direction : output; function : "A"; } }
+}
+"""
+TABLE = '[cell.INV]\ninputs = ["A"]\noutputs = { Y = "!(A & A)" }\n'
+
+
+def files(tmp_path, **texts):
+    """Write texts to files; a name's last underscore becomes the dot."""
+    paths = []
+    for name, text in texts.items():
+        path = tmp_path / ".".join(name.rsplit("_", 1))
+        path.write_bytes(text if isinstance(text, bytes) else text.encode())
+        paths.append(path)
+    return paths
+
+
+@pytest.mark.parametrize("suffix", ["lib", "gz", "toml", "txt"])
+def test_content_decides_the_format(tmp_path, suffix):
+    """Liberty and tables are told apart by what they hold, whatever the suffix, packed or not."""
+    data = gzip.compress(LIBERTY.encode()) if suffix == "gz" else LIBERTY
+    assert list(read_cells(files(tmp_path, **{f"a_{suffix}": data})).cells) == ["INV", "BUF"]
+    assert list(read_cells(files(tmp_path, **{f"b_{suffix}": TABLE})).cells) == ["INV"]
+
+
+@pytest.mark.parametrize("comment", ["# my library (old)\n", '# "library (x)"\n'])
+def test_a_word_in_a_comment_does_not_decide(tmp_path, comment):
+    """A table that mentions a library in a comment behind its first header, or in front, is still a table."""
+    assert list(read_cells(files(tmp_path, a_toml=TABLE + comment)).cells) == ["INV"]
+    assert list(read_cells(files(tmp_path, a_toml=comment + TABLE)).cells) == ["INV"]
+
+
+def test_places(tmp_path):
+    """Every cell says its file and line."""
+    (liberty, table) = files(tmp_path, a_lib=LIBERTY, b_toml="\n" + TABLE.replace("INV", "X"))
+    cells = read_cells([liberty, table]).cells
+    assert cells["BUF"].place == SourcePlace(str(liberty), 3)
+    assert cells["X"].place == SourcePlace(str(table), 2)
+
+
+def test_later_files_override_with_a_note(tmp_path):
+    """Of two descriptions the last counts, and a note names both places."""
+    liberty, table = files(tmp_path, a_lib=LIBERTY, b_toml=TABLE)
+    library = read_cells([liberty, table])
+    assert library.cells["INV"].place == SourcePlace(str(table), 1)
+    assert library.notes == (f"cell INV described at {liberty}:2 and at {table}:1: the latter counts",)
+    library = read_cells([table, liberty])
+    assert library.cells["INV"].place == SourcePlace(str(liberty), 2)
+    assert library.notes == (f"cell INV described at {table}:1 and at {liberty}:2: the latter counts",)
+    library = read_cells([liberty, liberty])
+    assert library.notes == (f"2 cells (INV first) described at {liberty}:2 and at {liberty}:2: the latter counts",)
+
+
+def test_a_cell_twice_in_one_file(tmp_path):
+    """The same holds inside a file, within a library group and across two."""
+    for text in (LIBERTY.replace("BUF", "INV"), LIBERTY.replace("cell (BUF)", "} library (m) { cell (INV)")):
+        (path,) = files(tmp_path, a_lib=text)
+        library = read_cells([path])
+        assert f"cell INV described at {path}:2 and at {path}:3: the latter counts" in library.notes
+        assert truth_table(library.cells["INV"].pins["Y"].function) == 0b10
+
+
+def test_doubtful_expressions_are_noted_once_a_file(tmp_path):
+    """Juxtaposition beside ^ gives one note that counts the cells, and the reading by the manual."""
+    text = LIBERTY.replace('"!A"', '"A ^ A A"').replace('"A"', '"A A ^ 1"')
+    (path,) = files(tmp_path, a_lib=text)
+    assert read_cells([path]).notes == (
+        f"{path}: an expression of 2 cells (INV first) mixes ^ with operands side by side without parentheses; "
+        "^ is taken to bind first, as the Liberty manual has it, though some programs read it otherwise",
+    )
+    (path,) = files(tmp_path, a_lib=LIBERTY.replace('"!A"', '"A ^ (A A) ^"'))
+    library = read_cells([path])
+    assert library.notes == ()
+    assert library.cells["INV"].not_understood.startswith("the function of pin Y cannot be read: it ends")
+
+
+def test_a_library_without_unit_is_noted(tmp_path):
+    """Where capacitances have no unit, pF are assumed and it is said."""
+    (path,) = files(tmp_path, a_lib="\n" + LIBERTY.replace("capacitive_load_unit (1, ff);", ""))
+    assert read_cells([path]).notes == (f"{path}:2: the library states no unit of capacitance, pF is taken",)
+
+
+def test_a_table_without_cells(tmp_path):
+    """A table that describes nothing is noted."""
+    (path,) = files(tmp_path, a_toml="# nothing yet\n")
+    library = read_cells([path])
+    assert (dict(library.cells), library.notes) == ({}, (f"{path} describes no cells",))
+
+
+def test_no_files_at_all():
+    """Without files the library is empty and still knows the gate primitives."""
+    library = read_cells([])
+    assert (len(library.cells), library.notes) == (0, ())
+    assert library.primitive("and", 2).pins["out"].function is not None
+
+
+def test_troubles_of_all_files_come_together(tmp_path):
+    """Every file is read before the errors are raised, sorted by file and line."""
+    paths = files(
+        tmp_path,
+        a_lib=LIBERTY[:-3],
+        b_lib="",
+        c_toml=TABLE.replace("outputs", "output") + "area = -1\n",
+        d_v="module m; endmodule\n",
+        e_lib="module m; endmodule\n",
+        f_toml="x = 1\n",
+        g_lib=LIBERTY,
+    )
+    with pytest.raises(InputError) as caught:
+        read_cells([*reversed(paths), tmp_path / "h.lib"])
+    assert str(caught.value).replace(f"{tmp_path}/", "").splitlines() == [
+        "a.lib:3: the file ends inside the group that opens at line 1; give the whole file, or add the missing brace",
+        "b.lib: the file is empty; give a Liberty file or a cell table",
+        "c.toml:3: unknown key cell.INV.output; did you mean outputs?",
+        "c.toml:4: cell.INV.area is not a number from 0 on; make it a number from 0 on",
+        "d.v: this is neither a Liberty file nor a cell table; give one of these",
+        'e.lib:1: no Liberty statement can be read at "module m; endmodule"; '
+        "write it as name : value; or name (values) { ... }, or mend the braces before it",
+        "f.toml:1: unknown key x; use cell",
+        "h.lib: no such file; mend its name",
+    ]
+
+
+def test_cells_are_made_when_asked_for_and_once(tmp_path, monkeypatch):
+    """Reading makes no cell; asking makes each once; an unknown name is a KeyError, a default where one is given."""
+    made = []
+    original = read_module.liberty_cell
+    monkeypatch.setattr(read_module, "liberty_cell", lambda *a: made.append(a[0].arguments[0]) or original(*a))
+    cells = read_cells(files(tmp_path, a_lib=LIBERTY)).cells
+    assert ("INV" in cells, len(cells), list(cells), made) == (True, 2, ["INV", "BUF"], [])
+    assert cells["BUF"] is cells["BUF"]
+    assert made == ["BUF"]
+    assert cells.get("none") is None
+    with pytest.raises(KeyError, match="none"):
+        cells["none"]
+
+
+def without_test_cells(text):
+    """Return the lines of a Liberty text outside test_cell groups; both libraries open and close on lines apart."""
+    lines, depth = [], 0
+    for line in text.splitlines():
+        if depth or line.lstrip().startswith("test_cell"):
+            depth += line.count("{") - line.count("}")
+        else:
+            lines.append(line)
+    return "\n".join(lines)
+
+
+@needs_libraries
+@pytest.mark.parametrize(
+    ("path", "not_understood"),
+    [
+        (SKY, {"latch_posedge": 3, "latch_posedge_precontrol": 3}),
+        (IHP, {"latch_posedge": 1, "latch_posedge_precontrol": 1}),
+    ],
+    ids=["sky130", "sg13g2"],
+)
+def test_real_libraries_are_understood(path, not_understood):
+    """Every function is read and every stored bit settled; only the clock gates with a state table are not understood.
+
+    The numbers of cells, functions and stored bits are counted in the text by its statement lines.
+    """
+    library = read_cells([path])
+    made = list(library.cells.values())
+    text = without_test_cells(gzip.decompress(path.read_bytes()).decode())
+
+    def count(statement):
+        return len(re.findall(rf"^\s*{statement}", text, re.MULTILINE))
+
+    assert len(made) == count(r"cell \(")
+    assert library.notes == ()
+    assert Counter(cell.not_understood for cell in made if cell.not_understood) == {
+        f"it is an integrated clock gate ({style}) and its behaviour is given as a state table, which is not read": n
+        for style, n in not_understood.items()
+    }
+    outputs = [pin for cell in made for pin in cell.pins.values() if pin.function]
+    assert len(outputs) == count("function :")
+    assert all(set(support(pin.function)) == set(pin.function.inputs) for pin in outputs)
+    bits = [bit for cell in made for bit in cell.storage]
+    assert Counter(bit.kind for bit in bits) == {"flip-flop": count(r"ff \("), "latch": count(r"latch \(")}
+    assert all(bit.both == ("1" if bit.clear and bit.preset else "") for bit in bits)  # both libraries say H, L
+    assert all(pin.limit_ff for pin in outputs)
+    inputs = [pin for cell in made for pin in cell.pins.values() if pin.direction == "input"]
+    assert all(0.1 < pin.capacitance_ff < 500 for pin in inputs)
+
+
+@needs_libraries
+def test_some_cells_of_the_real_libraries():
+    """Cells whose function everyone knows: XOR, multiplexer, scan flip-flop with QN, falling clock, three-state."""
+    cells = read_cells([SKY, IHP]).cells
+    assert truth_table(cells["sg13g2_xor2_1"].pins["X"].function) == 0b0110
+    assert truth_table(cells["sky130_fd_sc_hd__xnor3_1"].pins["X"].function) == 0b01101001
+    assert cells["sky130_fd_sc_hd__ebufn_1"].pins["Z"].three_state.inputs == ("TE_B",)
+    (bit,) = cells["sky130_fd_sc_hd__sdfrtn_1"].storage
+    assert (bit.clock.inputs, bit.clock.program) == (("CLK_N",), ("$0", "!"))
+    assert set(bit.data.inputs) == {"D", "SCE", "SCD"}
+    (bit,) = cells["sg13g2_sdfbbp_1"].storage
+    assert (truth_table(bit.clear), truth_table(bit.preset), bit.both) == (0b01, 0b01, "1")
+    assert cells["sg13g2_sdfbbp_1"].pins["Q_N"].function.program == ("$0", "!")
+
+
+@needs_libraries
+@pytest.mark.parametrize(("path", "seconds"), [(SKY, 1.0), (IHP, 0.2)])
+def test_real_libraries_are_read_in_a_moment(path, seconds):
+    """12.8 MB take about 0.15 s; several times that is allowed on a loaded machine."""
+    best = min(timed(path) for _ in range(3))
+    assert best < seconds
+
+
+def timed(path):
+    start = time.process_time()
+    read_cells([path])
+    return time.process_time() - start
