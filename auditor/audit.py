@@ -27,7 +27,9 @@ from auditor.verilog.read import read_verilog
 
 Progress = Callable[[str], None]
 
-WINDOW = 1 << 20  # separations below this are found even where logarithms are out of reach
+# Separations below the window are found even where logarithms are out of reach: a larger one where the plan asks
+# for it, up to what memory and patience bear.
+WINDOW, LARGEST_WINDOW = 1 << 20, 1 << 28
 DEPENDENCIES = ("pyverilog", "networkx", "numpy", "rich", "dd")
 
 
@@ -83,7 +85,7 @@ def _solve(
     replayed = ReplayFacts(*replay(cone, library, machine), mismatches=0)
     tell("phases")
     asked = max(plan.chain_length or 0, plan.limits.separation or 0)
-    return replayed, find_phases(machine, plan.reference, max(WINDOW, asked), tell)
+    return replayed, find_phases(machine, plan.reference, min(max(WINDOW, asked), LARGEST_WINDOW), tell)
 
 
 def _input_files(plan: Plan) -> tuple[InputFile, ...]:

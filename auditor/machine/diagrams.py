@@ -19,15 +19,23 @@ NODE_LIMIT = 200_000  # new diagram nodes for one gate; ``--work-limit`` sets an
 SUPPORT_LIMIT = 300  # affine nets under one function; the package recurses once a level
 
 
-class _Manager(BDD):
-    """The package's diagrams without its last check, which would count references that are not kept here."""
-
-    def __del__(self) -> None:
-        """Leave without a check."""
-
-
 class TooLargeError(Exception):
     """A diagram passed the node or the support limit: the question is undecided."""
+
+
+class _Manager(BDD):
+    """The package's diagrams with a bound on their nodes, and without its last check for references kept."""
+
+    most_nodes = 1 << 62
+
+    def find_or_add(self, i: int, v: int, w: int) -> int:
+        """Return the node of level i with cofactors v and w; raise ``TooLargeError`` rather than pass the bound."""
+        if len(self) > self.most_nodes:
+            raise TooLargeError("the decision diagrams of one gate grew past the work limit")
+        return int(super().find_or_add(i, v, w))
+
+    def __del__(self) -> None:
+        """Leave without the check: nodes are ints here, and nobody counts references to them."""
 
 
 @dataclass(slots=True)
@@ -78,14 +86,11 @@ class Diagrams:
         support = self.support(condition) | self.support(then) | self.support(otherwise)
         if len(support) > SUPPORT_LIMIT:
             raise TooLargeError(f"{len(support)} affine nets under one function")
-        self.manager.max_nodes = len(self.manager) + self.node_limit
+        self.manager.most_nodes = len(self.manager) + self.node_limit
         try:
-            result = int(self.manager.ite(condition, then, otherwise))
-        except RuntimeError as full:
-            raise TooLargeError(f"more than {self.node_limit} diagram nodes for one gate") from full
+            return int(self.manager.ite(condition, then, otherwise))
         finally:
-            self.manager.max_nodes = 1 << 62
-        return result
+            self.manager.most_nodes = 1 << 62
 
     def support(self, diagram: int) -> frozenset[int]:
         """Return the numbers of the variables that a diagram depends on."""
