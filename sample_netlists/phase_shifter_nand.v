@@ -1,8 +1,8 @@
 // Limpet tide-gauge controller, echo correlator, second source: the function of phase_shifter.v made of NAND
 // and AOI cells only.
 //
-// The audit must pass it with the same register, the same taps and the same leads as phase_shifter.v: so[4]
-// and so[13] are nearest, 45918530 cycles apart.
+// The audit must pass it with the same register (period 4294967295), the same taps and the same leads as
+// phase_shifter.v: so[4] and so[13] are nearest, 45918530 cycles apart.
 
 module phase_shifter_nand (
   input clk,

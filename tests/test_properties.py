@@ -33,7 +33,7 @@ RECIPES = st.builds(
 )
 SHAPES = st.tuples(st.integers(1, 9), st.integers(1, 5), st.lists(st.integers(0, 3), max_size=3), st.integers(0, 2**32))
 MODERATE = settings(
-    max_examples=120, deadline=None, derandomize=True, database=None, suppress_health_check=[HealthCheck.too_slow]
+    max_examples=60, deadline=None, derandomize=True, database=None, suppress_health_check=[HealthCheck.too_slow]
 )
 
 
@@ -101,6 +101,45 @@ def test_registers_taps_and_leads_come_back(shape: tuple[int, int, list[int], in
             assert observed.xor_inputs == block.xor_inputs[i]
             assert observed.xor_depth == block.xor_depth[i]
     check_leads(facts, truth)
+
+
+@MODERATE
+@given(SHAPES, RECIPES, st.integers(0, 4))
+def test_a_spoiled_channel_is_refused_alone(
+    shape: tuple[int, int, list[int], int], recipe: Recipe, spoiled: int
+) -> None:
+    """A channel behind an AND of two different sums has no row, the AND is named; the other channels keep theirs."""
+    size, channels, _, seed = shape
+    rng = random.Random(seed)
+    machine = machines.random_machine(rng, size + 1, channels)
+    spoiled %= channels
+    block = draw(machine, recipe, rng, spoiled_channels={spoiled})
+    found = found_machine(audited(block))
+    observed = {row.name: row for row in found.observed if not row.cut_from}
+    for i, name in enumerate(block.channels):
+        row = observed[name]
+        if i == spoiled:
+            assert row.row is None
+            assert row.refusal is not None
+            assert row.refusal.gate == block.spoilers[name]
+            assert not row.refusal.undecided
+        else:
+            assert row.row is not None
+            assert by_name(row.row.state, found.storage) == by_name(block.machine.channels[i], block.names)
+
+
+@MODERATE
+@given(st.integers(2, 9), st.integers(0, 2**32), RECIPES)
+def test_a_spoiled_register_is_refused(size: int, seed: int, recipe: Recipe) -> None:
+    """An element of a ring whose next state is an AND of two different sums refuses the machine, by name and gate."""
+    rng = random.Random(seed)
+    ring = machines.with_channels(machines.fibonacci((size, rng.randint(1, size - 1)), size), [[0]])
+    spoiled = rng.randrange(size)
+    block = draw(ring, recipe, rng, spoiled_elements={spoiled})
+    extraction = audited(block).extraction
+    assert extraction.machine is None
+    name = block.names[spoiled]
+    assert [(refusal.what, refusal.gate) for refusal in extraction.refusals] == [(name, block.spoilers[name])]
 
 
 def check_leads(facts: AuditFacts, truth: machines.Machine) -> None:

@@ -5,6 +5,7 @@ from the drawing alone, what is stored at every Q.
 """
 
 import random
+from collections.abc import Container
 from dataclasses import dataclass
 from pathlib import Path
 from typing import Literal
@@ -81,6 +82,7 @@ class Block:
     ``machine``   as the flip-flops store it; element k is the flip-flop ``names[k]``
     ``resets``    by element: what the reset stores, None where there is none
     ``xor_inputs``, ``xor_depth``   by channel, of the tree between it and the storage
+    ``spoilers``  spoiled element or channel -> the AND gate that spoils it
     """
 
     text: str
@@ -92,6 +94,7 @@ class Block:
     resets: tuple[int | None, ...]
     xor_inputs: tuple[int, ...]
     xor_depth: tuple[int, ...]
+    spoilers: dict[str, str]
 
 
 @dataclass
@@ -115,6 +118,7 @@ class _Drawing:
         self.machine, self.recipe, self.rng = machine, recipe, rng
         self.sheet = Sheet(rng, recipe.names, recipe.styles, recipe.hierarchy, recipe.shuffled)
         self.mode: dict[str, int] = {}
+        self.spoilers: dict[int, Gate] = {}
         self.clock = self._port("ck")
         self.ports: dict[str, str] = {}
         self.elements = self._elements()
@@ -163,10 +167,19 @@ class _Drawing:
         """Draw the sum of the elements of a row."""
         return add(self.sheet, part, self.recipe.forms, [self.read(k, part) for k in bits_of(row)])
 
-    def next_state(self, k: int) -> str:
+    def spoil(self, signal: Signal, row: int, part: Part, key: int) -> Signal:
+        """Draw an AND of a sum with an element that is not the sum itself: no affine function."""
+        other = self.read(next(k for k in range(self.machine.size) if row != 1 << k), part)
+        output = self.sheet.net()
+        self.spoilers[key] = self.sheet.cell("and2", part, A=signal.net, B=other.net, Y=output)
+        return Signal(output, signal.inverted)
+
+    def next_state(self, k: int, spoiled: bool) -> str:
         """Draw what element k takes: the row, the encoding, the enable and the scan multiplexer; return the net."""
-        sheet, element = self.sheet, self.elements[k]
-        total = self.add_row(self.machine.rows[k], "register").signal
+        sheet, element, row = self.sheet, self.elements[k], self.machine.rows[k]
+        total = self.add_row(row, "register").signal
+        if spoiled:
+            total = self.spoil(total, row, "register", k)
         inverted = bool(self.machine.offset >> k & 1) ^ element.complemented
         net = true_net(sheet, "register", total, inverted)
         if self.recipe.enable and self.rng.random() < 0.7:
@@ -203,10 +216,10 @@ class _Drawing:
         port = self.port("reset" if high else "reset_n")
         return port if active == high else self.sheet.gate("inv", "register", port)
 
-    def flip_flop(self, k: int) -> Gate:
+    def flip_flop(self, k: int, spoiled: bool = False) -> Gate:
         """Draw element k and return its instance."""
         element = self.elements[k]
-        pins = {"CK": self.clock_net(element.cell), "D": self.next_state(k)} | element.outputs
+        pins = {"CK": self.clock_net(element.cell), "D": self.next_state(k, spoiled)} | element.outputs
         if "enable" in element.cell:
             pins["EN"] = self.port("enable", 1)
         if "scan" in element.cell:
@@ -221,9 +234,12 @@ class _Drawing:
             pins |= {pin: "1'b1" for pin in ("RN", "SN") if pin not in pins}
         return self.sheet.cell(element.cell, "register", ("Q", "QN"), f"ff{k}_", **pins)
 
-    def channel(self, i: int, port: str) -> Sum:
+    def channel(self, i: int, port: str, spoiled: bool = False) -> Sum:
         """Draw channel i up to its port."""
         sheet, total = self.sheet, self.add_row(self.machine.channels[i], "shifter")
+        if spoiled:
+            spoiled_signal = self.spoil(total.signal, self.machine.channels[i], "shifter", self.machine.size + i)
+            total = total._replace(signal=spoiled_signal)
         inverted = bool(self.machine.constants >> i & 1)
         drawn = {net for element in self.elements for net in element.outputs.values()}
         net = true_net(sheet, "shifter", total.signal, inverted)
@@ -237,29 +253,38 @@ class _Drawing:
         return total
 
 
-def draw(machine: Machine, recipe: Recipe, rng: random.Random, top: str = "block") -> Block:
-    """Draw the machine by the recipe. Every element takes its place in the text; the cone may hold fewer."""
-    drawing = _Drawing(machine, recipe, rng)
+def draw(
+    machine: Machine,
+    recipe: Recipe,
+    rng: random.Random,
+    spoiled_elements: Container[int] = (),
+    spoiled_channels: Container[int] = (),
+) -> Block:
+    """Draw the machine by the recipe, all elements of it; spoiled ones are given a next state that is not affine."""
+    drawing, top = _Drawing(machine, recipe, rng), "block"
     sheet, count = drawing.sheet, len(machine.channels)
-    gates = [drawing.flip_flop(k) for k in range(machine.size)]
+    gates = [drawing.flip_flop(k, k in spoiled_elements) for k in range(machine.size)]
     if recipe.vectors:
         ports = sheet.vector("so", count)
         sheet.outputs.append(next(name for name, (_, _, keys) in sheet.vectors.items() if keys == ports))
     else:
         ports = [sheet.net(f"so{i}") for i in range(count)]
         sheet.outputs += ports
-    sums = [drawing.channel(i, port) for i, port in enumerate(ports)]
+    sums = [drawing.channel(i, port, i in spoiled_channels) for i, port in enumerate(ports)]
     complemented = sum(1 << k for k, element in enumerate(drawing.elements) if element.complemented)
+    names = [sheet.path(gate) for gate in gates]
+    channels = [_channel_name(port) for port in ports]
     return Block(
         text=verilog(sheet, top),
         top=top,
         mode=drawing.mode,
-        channels=tuple(_channel_name(port) for port in ports),
-        names=tuple(sheet.path(gate) for gate in gates),
+        channels=tuple(channels),
+        names=tuple(names),
         machine=stored(machine, complemented),
         resets=tuple(element.reset for element in drawing.elements),
         xor_inputs=tuple(total.leaves for total in sums),
         xor_depth=tuple(total.depth for total in sums),
+        spoilers={[*names, *channels][key]: sheet.path(gate) for key, gate in drawing.spoilers.items()},
     )
 
 
