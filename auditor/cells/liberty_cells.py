@@ -9,7 +9,7 @@ from typing import Literal
 
 from auditor.cells.expression import ExpressionError, parse_expression
 from auditor.cells.liberty import Group
-from auditor.cells.liberty_pins import DeclaredPins, LibraryDefaults, NotUnderstood, declared_pins, number
+from auditor.cells.liberty_pins import MOST_BITS, DeclaredPins, LibraryDefaults, NotUnderstood, declared_pins, number
 from auditor.cells.library import Cell, Function, Pin, Storage
 from auditor.cells.storage import Described, rewrite, settle
 from auditor.notation import SourcePlace
@@ -155,7 +155,7 @@ class _Bank:
         names, width = group.arguments[-2:], "0"
         if group.kind.endswith("_bank"):
             names, width = group.arguments[:2], "".join(group.arguments[2:3])
-        if not names or not width.isdecimal():
+        if not names or not width.isdecimal() or int(width) > MOST_BITS:
             raise NotUnderstood(f"its {group.kind} group does not name its variables and width")
         return cls(group, names, int(width))
 

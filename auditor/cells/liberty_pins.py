@@ -17,6 +17,7 @@ _DIRECTIONS: dict[str, Direction] = {
     "inout": "inout",
     "internal": "internal",
 }
+MOST_BITS = 65536  # of a bus or a bank; more is a slip of the pen
 _RANGE = re.compile(r"(.*)\[(-?\d+):(-?\d+)\]")
 
 
@@ -125,6 +126,9 @@ def _names(arguments: tuple[str, ...]) -> list[str]:
 
 
 def _range(vector: str, first: int, last: int) -> list[str]:
+    """Return the names of the bits from ``first`` to ``last``, in that order."""
+    if abs(last - first) >= MOST_BITS:
+        raise NotUnderstood(f"its {vector} has more than {MOST_BITS} bits")
     step = 1 if last >= first else -1
     return [f"{vector}[{k}]" for k in range(first, last + step, step)]
 

@@ -4,7 +4,7 @@ import random
 import time
 
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from auditor.cells.expression import ExpressionError, is_read_differently, parse_expression
@@ -52,6 +52,7 @@ def value(tree, bits):
     return {"&": min(operands), "|": max(operands), "^": sum(operands) % 2}[tree[0]]
 
 
+@settings(deadline=None)
 @given(TREES, st.integers(0, 2**32))
 def test_random_expressions_mean_their_tree(tree, seed):
     """Whatever the spelling and however few the parentheses, the truth table is that of the tree."""

@@ -3,7 +3,7 @@
 import itertools
 
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from auditor.cells.expression import parse_expression
@@ -46,6 +46,7 @@ def assignments(names=NAMES):
         yield dict(zip(names, row, strict=True))
 
 
+@settings(deadline=None)
 @given(functions())
 def test_truth_table_lists_every_assignment(function):
     """Bit k is the value for the assignment in which inputs[j] is bit j of k."""
@@ -56,6 +57,7 @@ def test_truth_table_lists_every_assignment(function):
     assert table >> 16 == 0
 
 
+@settings(deadline=None)
 @given(functions(), st.dictionaries(st.sampled_from(NAMES), st.integers(0, 1)))
 def test_restrict_fixes_inputs_and_leaves_no_constant(function, fixed):
     """The restricted function agrees wherever the fixed inputs have their values, and holds no constant but itself."""
@@ -87,6 +89,7 @@ def test_restrict_folds(text, fixed, inputs, program):
     assert restrict(parse_expression(text), fixed) == Function(inputs, program)
 
 
+@settings(deadline=None)
 @given(functions(), st.dictionaries(st.sampled_from(NAMES), functions()))
 def test_substitute_puts_functions_into_functions(function, replacements):
     """Substitution is simultaneous and agrees with evaluating the replacements first."""
@@ -96,6 +99,7 @@ def test_substitute_puts_functions_into_functions(function, replacements):
         assert value(whole, bits) == value(function, inner)
 
 
+@settings(deadline=None)
 @given(functions())
 def test_unateness_and_support_match_the_definition(function):
     """An input is positive where raising it can only raise the function, negative where it can only lower it."""
@@ -117,6 +121,7 @@ def test_unateness_of_many_inputs_is_syntactic_and_cautious():
     assert support(narrow) == ("P", "N")
 
 
+@settings(deadline=None)
 @given(functions())
 def test_ternary_unknown_covers_both_values(function):
     """Where three-valued evaluation gives 0 or 1, every completion of the unknown inputs gives the same."""
