@@ -3,6 +3,7 @@
 from collections.abc import Sequence
 from dataclasses import dataclass
 
+from auditor.errors import InternalError
 from auditor.gf2 import matrix
 from auditor.gf2.factorisation import factor
 from auditor.gf2.polynomial import remainder
@@ -29,7 +30,8 @@ def cyclic_spaces(streams: Streams) -> list[CyclicSpace]:
     """Return the spaces of all channels that are not constant in the long run, by first member.
 
     A channel outside the space of another, or inside but with a smaller annihilator, is no shift of it. A need not
-    be cyclic: two registers may have one polynomial, and then equal annihilators prove nothing.
+    be cyclic: two registers may have one polynomial, and then equal annihilators prove nothing. ``InternalError``
+    if a row is not steady.
     """
     step = streams.linear_step()
     pending = {channel: row >> 1 for channel, row in streams.steady.items() if row > 1}
@@ -38,6 +40,8 @@ def cyclic_spaces(streams: Streams) -> list[CyclicSpace]:
         row, span = next(iter(pending.values())), matrix.Span()
         while not (annihilator := span.add(row)):
             row = matrix.row_times(row, step)
+        if not annihilator & 1:
+            raise InternalError(f"a row is not steady after the transient: its annihilator is {annihilator:#x}")
         factors = factor(annihilator)
         units: dict[int, Polynomial] = {}
         for channel, steady in pending.items():

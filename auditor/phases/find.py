@@ -14,7 +14,7 @@ from auditor.phases.leads import Coordinates, Progress, coordinates
 from auditor.phases.links import Links, find_links, proved_pairs
 from auditor.phases.registers import register_facts
 from auditor.phases.separations import closest, nearest_neighbours
-from auditor.phases.streams import Orbit, Streams, read_streams
+from auditor.phases.streams import Orbit, Streams, reached, read_streams
 from auditor.phases.table import LeadKind, Phase, PhaseClass, PhaseTable
 
 _TOGGLE = 0b11
@@ -31,7 +31,7 @@ def find_phases(
     """
     search = _Search(machine, read_streams(machine), _numbered(machine, reference), window)
     for channel, observed in enumerate(machine.observed):
-        if reason := _without_lead(search.streams, channel, observed):
+        if reason := _without_lead(search, channel, observed):
             search.phases[channel] = Phase(None, None, "none", None, None, 0, reason)
     for space in cyclic_spaces(search.streams):
         _solve(search, space, progress)
@@ -55,23 +55,26 @@ class _Search:
 def _numbered(machine: LinearMachine, reference: str | None) -> int | None:
     if reference is None:
         return None
-    names = [observed.name for observed in machine.observed if not observed.cut_from]
-    if reference not in names:
-        remedy = near_misses(reference, names) or "name one of the channels"
+    numbers = {observed.name: i for i, observed in enumerate(machine.observed) if not observed.cut_from}
+    if reference not in numbers:
+        remedy = near_misses(reference, numbers) or "name one of the channels"
         raise fail(f"the reference {reference} is no channel", remedy)
-    return next(i for i, o in enumerate(machine.observed) if o.name == reference and not o.cut_from)
+    return numbers[reference]
 
 
-def _without_lead(streams: Streams, channel: int, observed: ObservedRow) -> str:
-    """Return why a channel can have no lead: it is refused, or constant in the long run. Empty if it can."""
-    if observed.refusal is not None:
-        return observed.refusal.because
-    steady, row = streams.steady[channel], streams.rows[channel]
+def _without_lead(search: _Search, channel: int, observed: ObservedRow) -> str:
+    """Return why a channel can have no lead: it is refused, or constant in the long run. Empty if it can have one."""
+    if observed.row is None:
+        return (observed.refusal and observed.refusal.because) or "not affine"
+    steady, row = search.streams.steady[channel], search.streams.rows[channel]
     if steady > 1:
         return ""
+    seen = reached(search.machine.transition, [observed.row.state])
+    if observed.row.inputs or any(search.machine.input_matrix[element] for element in seen):
+        return "no register in it, only free inputs"
     start = 0
     while row > 1:
-        row, start = matrix.row_times(row, streams.step), start + 1
+        row, start = matrix.row_times(row, search.streams.step), start + 1
     return f"constant {steady}" + (f" from cycle {start} on" if start else "")
 
 

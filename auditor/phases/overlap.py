@@ -57,7 +57,9 @@ def overlap(table: PhaseTable, i: int, j: int, length_i: int, length_j: int) -> 
     if one.group is not None and other.group is not None and one.group != other.group:
         return Overlap(0, None)
     group = None if one.group is None else table.classes[one.group]
-    if one.lead is not None and other.lead is not None and group:
+    if i == j:
+        difference, complement = 0, False
+    elif one.lead is not None and other.lead is not None and group:
         difference, complement = one.lead - other.lead, one.inverted != other.inverted
     elif pair := find_close_pair(table, i, j):
         difference, complement = pair[2] if pair[:2] == (i, j) else -pair[2], pair[3]
@@ -65,7 +67,7 @@ def overlap(table: PhaseTable, i: int, j: int, length_i: int, length_j: int) -> 
         return Overlap(0, None) if table.decides(max(length_i, length_j)) else None
     turn = group.turn if group else None
     found = shared_cells(difference, turn, length_i, length_j)
-    if not found.pairs and not turn:
+    if not found.pairs and not turn and abs(difference) < max(length_i, length_j):
         return None  # an unknown modulus could be so short that the pair meets the other way round
     if group and group.half_turn and turn and found.example:
         turns = (difference - found.example[0] + found.example[1]) // turn

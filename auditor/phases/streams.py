@@ -43,9 +43,9 @@ class Alignment:
 def read_streams(machine: LinearMachine) -> Streams:
     """Return the streams of all channels that have a row."""
     raw = {i: observed.row for i, observed in enumerate(machine.observed) if observed.row is not None}
-    seen = _reached(machine.transition, (row.state for row in raw.values()))
+    seen = reached(machine.transition, (row.state for row in raw.values()))
     looping = (element for register in machine.registers for element in register if element in seen)
-    core = _reached(machine.transition, (1 << element for element in looping))
+    core = reached(machine.transition, (1 << element for element in looping))
     place = {element: k for k, element in enumerate([*sorted(core), *sorted(seen - core)], start=1)}
 
     def packed(state: Vector, constant: int) -> Vector:
@@ -54,10 +54,11 @@ def read_streams(machine: LinearMachine) -> Streams:
     step = [1] + [packed(machine.transition[i], machine.offset >> i & 1) for i in place]
     rows = {i: packed(row.state, row.constant) for i, row in raw.items()}
     settled = matrix.power(step, machine.transient)
-    return Streams(step, machine.transient, rows, {i: matrix.row_times(row, settled) for i, row in rows.items()})
+    steady = {i: matrix.row_times(row, settled) for i, row in rows.items()}
+    return Streams(step, machine.transient, rows, steady)
 
 
-def _reached(transition: Sequence[Vector], rows: Iterable[Vector]) -> set[int]:
+def reached(transition: Sequence[Vector], rows: Iterable[Vector]) -> set[int]:
     """Return the elements that the rows see, directly or through next states."""
     found: set[int] = set()
     pending = list(rows)
