@@ -8,7 +8,16 @@ import pytest
 from auditor.phases.table import RegisterFacts
 from tests.support.audits import audit_block
 from tests.support.gates import Recipe, draw
-from tests.support.machines import Machine, automaton, berlekamp_massey, bits_of, fibonacci, galois, with_channels
+from tests.support.machines import (
+    Machine,
+    automaton,
+    berlekamp_massey,
+    beside,
+    bits_of,
+    fibonacci,
+    galois,
+    with_channels,
+)
 from tests.support.published import (
     CELLULAR_AUTOMATA,
     MAXIMAL_STAGES,
@@ -22,14 +31,27 @@ from tests.support.published import (
 MIXED = Recipe(forms=("xor_gate", "xnor_gate", "four_nands"), complemented=True, all_storage=True, buffers=True)
 
 
-def audited_register(folder: Path, machine: Machine, observed: int = 0) -> RegisterFacts:
-    """Draw a register with one channel, audit it and return what it says of the register."""
-    block = draw(with_channels(machine, [[observed]]), MIXED, random.Random(machine.size))
+def audited_registers(folder: Path, machines: list[Machine]) -> list[RegisterFacts]:
+    """Draw registers beside each other in one block, audit it and return what it says of each, in their order."""
+    block = draw(beside([with_channels(machine, [[0]]) for machine in machines]), MIXED, random.Random(1))
     facts = audit_block(folder, block)
     assert facts.phases is not None
-    (register,) = facts.phases.registers
-    assert register.cycling_degree == machine.size
-    return register
+    assert facts.extraction.machine is not None
+    storage = facts.extraction.machine.storage
+    of_element = {storage[k]: register for register in facts.phases.registers for k in register.elements}
+    first, found = 0, []
+    for machine in machines:
+        names = block.names[first : first + machine.size]
+        (register,) = {id(of_element[name]): of_element[name] for name in names}.values()
+        assert len(register.elements) == register.cycling_degree == machine.size
+        found.append(register)
+        first += machine.size
+    return found
+
+
+def audited_register(folder: Path, machine: Machine) -> RegisterFacts:
+    """Return what an audit says of one register."""
+    return audited_registers(folder, [machine])[0]
 
 
 @pytest.mark.parametrize("form", [1, 2], ids=["fibonacci", "distributed"])
@@ -45,23 +67,24 @@ def test_every_stage_has_its_phase(tmp_path: Path, exponents: tuple[int, ...], f
     assert tuple(bits_of(facts.phases.registers[0].characteristic_polynomial)) == tuple(sorted(exponents))
 
 
-@pytest.mark.parametrize("rules", CELLULAR_AUTOMATA)
-def test_published_cellular_automata_are_maximal(tmp_path: Path, rules: str) -> None:
+def test_published_cellular_automata_are_maximal(tmp_path: Path) -> None:
     """Hortensius et al. (1989): the rule vectors of 4 to 28 sites have the period 2^n - 1."""
-    machine = automaton(rules)
-    register = audited_register(tmp_path, machine)
-    assert register.primitive is True
-    assert register.period == (1 << len(rules)) - 1
-    stream = with_channels(machine, [[0]]).stream(0, 1, 2 * len(rules))
-    assert register.characteristic_polynomial == berlekamp_massey(stream)
+    machines = [automaton(rules) for rules in CELLULAR_AUTOMATA]
+    for machine, register in zip(machines, audited_registers(tmp_path, machines), strict=True):
+        assert register.primitive is True
+        assert register.period == (1 << machine.size) - 1
+        stream = with_channels(machine, [[0]]).stream(0, 1, 2 * machine.size)
+        assert register.characteristic_polynomial == berlekamp_massey(stream)
 
 
-@pytest.mark.parametrize("stages", [row for row in MAXIMAL_STAGES if row[0] <= 40 or row[0] % 16 == 0], ids=str)
-def test_tabled_stages_are_maximal(tmp_path: Path, stages: tuple[int, ...]) -> None:
-    """The stage-number table prints connection polynomials, and its rows are primitive."""
-    register = audited_register(tmp_path, fibonacci(stages, stages[0]))
-    assert tuple(bits_of(register.connection_polynomial)) == (0, *sorted(stages))
-    assert register.primitive is True
+@pytest.mark.parametrize("sizes", [range(3, 65), range(65, 105), range(105, 141), range(141, 169)], ids=str)
+def test_tabled_stages_are_maximal(tmp_path: Path, sizes: range) -> None:
+    """The stage-number table prints connection polynomials; all rows but the misprint are primitive."""
+    rows = [row for row in MAXIMAL_STAGES if row[0] in sizes and row[0] != MISPRINT]
+    registers = audited_registers(tmp_path, [fibonacci(row, row[0]) for row in rows])
+    for row, register in zip(rows, registers, strict=True):
+        assert tuple(bits_of(register.connection_polynomial)) == (0, *sorted(row))
+        assert register.primitive is True
 
 
 def test_the_misprinted_row_is_not_maximal(tmp_path: Path) -> None:
@@ -76,14 +99,13 @@ def test_the_misprinted_row_is_not_maximal(tmp_path: Path) -> None:
     assert audited_register(tmp_path, fibonacci(MISPRINT_MENDED, MISPRINT)).primitive is True
 
 
-@pytest.mark.parametrize("name", STANDARD_POLYNOMIALS)
-def test_registers_of_standards_have_their_order(tmp_path: Path, name: str) -> None:
+def test_registers_of_standards_have_their_order(tmp_path: Path) -> None:
     """PRBS, scrambler and CRC polynomials: period and factor degrees of the register that the standard draws."""
-    exponents, order, degrees = STANDARD_POLYNOMIALS[name]
-    size = max(exponents)
-    register = audited_register(tmp_path, fibonacci([e for e in exponents if e], size))
-    assert tuple(bits_of(register.connection_polynomial)) == tuple(sorted(exponents))
-    assert register.period == order
-    found = [f.polynomial.bit_length() - 1 for f in register.factors for _ in range(f.multiplicity)]
-    assert tuple(sorted(found)) == degrees
-    assert register.primitive is (order == (1 << size) - 1)
+    rows = list(STANDARD_POLYNOMIALS.values())
+    machines = [fibonacci([e for e in exponents if e], max(exponents)) for exponents, _, _ in rows]
+    for (exponents, order, degrees), register in zip(rows, audited_registers(tmp_path, machines), strict=True):
+        assert tuple(bits_of(register.connection_polynomial)) == tuple(sorted(exponents))
+        assert register.period == order
+        found = [f.polynomial.bit_length() - 1 for f in register.factors for _ in range(f.multiplicity)]
+        assert tuple(sorted(found)) == degrees
+        assert register.primitive is (order == (1 << max(exponents)) - 1)

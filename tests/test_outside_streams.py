@@ -22,6 +22,7 @@ from tests.support.machines import (
     with_pipelines,
 )
 
+STATES = 8
 REGISTERS = {
     "fibonacci-23": fibonacci((23, 18), 23),
     "distributed-24": galois((24, 7, 2, 1, 0)),
@@ -30,7 +31,7 @@ REGISTERS = {
 
 
 def clocked(facts: AuditFacts, cycles: int) -> list[list[list[int]]]:
-    """Clock the gates from 64 random states and return, by channel and state, the bits that the channel shows."""
+    """Clock the gates from random states and return, by channel and state, the bits that the channel shows."""
     cone = facts.cone
     simulator = Simulator(cone, facts.library, 1)
     before_edge = 0 if cone.clock_edge == "rising" else 1
@@ -44,7 +45,7 @@ def clocked(facts: AuditFacts, cycles: int) -> list[list[list[int]]]:
         shown.append([int(word) for word in simulator.values[slots][:, 0]])
         simulator.toggle(1 - before_edge)
         simulator.toggle(before_edge)
-    return [[[words[i] >> lane & 1 for words in shown] for lane in range(64)] for i in range(len(cone.channels))]
+    return [[[words[i] >> lane & 1 for words in shown] for lane in range(STATES)] for i in range(len(cone.channels))]
 
 
 @pytest.mark.parametrize("name", REGISTERS)
@@ -59,7 +60,7 @@ def test_the_stream_of_the_gates_has_the_reported_polynomial(tmp_path: Path, nam
         assert {berlekamp_massey(stream) for stream in streams} == {reported}
 
 
-@pytest.mark.parametrize("seed", range(12))
+@pytest.mark.parametrize("seed", range(8))
 def test_streams_of_any_block_obey_the_reported_registers(tmp_path: Path, seed: int) -> None:
     """A recurrence divides (x + 1) times a power of x times the registers' polynomials, however the block is made."""
     rng = random.Random(seed)
@@ -69,4 +70,4 @@ def test_streams_of_any_block_obey_the_reported_registers(tmp_path: Path, seed: 
     registers = [register.characteristic_polynomial for register in facts.phases.registers]
     everything = product([0b11, 1 << machine.size, *registers])
     for streams in clocked(facts, 2 * everything.bit_length()):
-        assert [remainder(everything, berlekamp_massey(stream)) for stream in streams[:8]] == [0] * 8
+        assert [remainder(everything, berlekamp_massey(stream)) for stream in streams] == [0] * STATES

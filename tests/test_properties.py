@@ -23,7 +23,7 @@ RECIPES = st.builds(
     enable=st.sampled_from(("", "multiplexer", "gates")),
     scan_multiplexer=st.booleans(),
     buffers=st.booleans(),
-    clock=st.sampled_from(("direct", "buffered", "inverted")),
+    clock=st.sampled_from(("direct", "buffered", "gated", "inverted")),
     reset=st.sampled_from(("none", "some", "all")),
     reset_high=st.booleans(),
     names=st.sampled_from(("plain", "random", "escaped")),
@@ -103,7 +103,7 @@ def test_registers_taps_and_leads_come_back(shape: tuple[int, int, list[int], in
     check_leads(facts, truth)
 
 
-@MODERATE
+@settings(MODERATE, max_examples=25)
 @given(SHAPES, RECIPES, st.integers(0, 4))
 def test_a_spoiled_channel_is_refused_alone(
     shape: tuple[int, int, list[int], int], recipe: Recipe, spoiled: int

@@ -49,7 +49,7 @@ class Recipe:
     enable: Literal["", "multiplexer", "gates"] = ""
     scan_multiplexer: bool = False
     buffers: bool = False
-    clock: Literal["direct", "buffered", "inverted"] = "direct"
+    clock: Literal["direct", "buffered", "gated", "inverted"] = "direct"
     reset: Literal["none", "some", "all"] = "none"
     reset_high: bool = False
     names: Literal["plain", "random", "escaped"] = "plain"
@@ -202,10 +202,12 @@ class _Drawing:
         return sheet.gate("nand", "register", *terms)
 
     def clock_net(self, cell: str) -> str:
-        """Return the clock for a cell; inverted where the recipe says so, buffered at random."""
+        """Return the clock for a cell; inverted where the recipe says so, buffered or gated at random."""
         sheet, net = self.sheet, self.clock
         if self.recipe.clock == "buffered" and self.rng.random() < 0.5:
             return sheet.gate("buf", "register", net)
+        if self.recipe.clock == "gated" and self.rng.random() < 0.5:
+            return sheet.gate("and", "register", net, self.port("clock_on", 1))
         if self.recipe.clock == "inverted" and cell != "ff_falling":
             return sheet.gate("inv", "register", net)
         return net

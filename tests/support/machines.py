@@ -92,6 +92,20 @@ def with_channels(machine: Machine, channels: Iterable[Iterable[int]], constants
     return replace(machine, channels=tuple(row_of(elements) for elements in channels), constants=constants)
 
 
+def beside(parts: Sequence[Machine]) -> Machine:
+    """Return machines beside each other in one, which share nothing."""
+    rows: list[int] = []
+    channels: list[int] = []
+    offset = constants = 0
+    for part in parts:
+        offset |= part.offset << len(rows)
+        constants |= part.constants << len(channels)
+        first = len(rows)
+        channels += [row << first for row in part.channels]
+        rows += [row << first for row in part.rows]
+    return Machine(tuple(rows), tuple(channels), offset, constants)
+
+
 def with_pipelines(machine: Machine, depths: Sequence[int]) -> Machine:
     """Return the machine with ``depths[i]`` pipeline elements behind channel i; new elements follow the old ones."""
     rows, channels, offset, constants = list(machine.rows), list(machine.channels), machine.offset, machine.constants
