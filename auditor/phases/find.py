@@ -18,6 +18,8 @@ from auditor.phases.streams import Orbit, Streams, reached, read_streams
 from auditor.phases.table import LeadKind, Phase, PhaseClass, PhaseTable
 
 _TOGGLE = 0b11
+# Channels squared times window: the search of so many costs a few seconds and some hundred megabytes.
+_SEARCH_LIMIT = 1 << 46
 
 
 def find_phases(
@@ -26,10 +28,11 @@ def find_phases(
     """Return the registers, the classes and the phase of every channel.
 
     ``reference`` names the reference of the class it is in. Where logarithms are out of reach, all pairs closer
-    than ``window`` cycles are still found. ``InputError`` if no channel has the name; ``InternalError`` if a lead
-    fails its proof.
+    than ``window`` cycles are still found; the table says so if many channels made it less. ``InputError`` if no
+    channel has the name; ``InternalError`` if a lead fails its proof.
     """
-    search = _Search(machine, read_streams(machine), _numbered(machine, reference), window)
+    affordable = min(window, _SEARCH_LIMIT // max(1, len(machine.observed)) ** 2)
+    search = _Search(machine, read_streams(machine), _numbered(machine, reference), affordable)
     for channel, observed in enumerate(machine.observed):
         if reason := _without_lead(search, channel, observed):
             search.phases[channel] = Phase(None, None, "none", None, None, 0, reason)

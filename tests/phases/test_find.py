@@ -1,4 +1,5 @@
 import random
+from dataclasses import replace
 
 import pytest
 
@@ -221,6 +222,14 @@ def test_channels_without_a_stream_say_why() -> None:
     assert reasons == ["constant 1", "constant 1 from cycle 1 on", "the function is not affine", ""]
     assert [phase.group for phase in table.phases] == [None, None, None, 0]
     assert separation(table, 0, 3) is None
+
+
+def test_a_channel_of_free_inputs_alone_is_not_called_constant() -> None:
+    """With the inputs at 0 it has no stream of its own; the reason says that it has no register, not a value."""
+    machine = linear_machine([0b01, 0b00], [(0b01, 0), (0b10, 0)])
+    machine = replace(machine, free_inputs=("si",), input_matrix=(0, 1))
+    table = find_phases(machine)
+    assert (table.phases[1].kind, table.phases[1].no_lead_because) == ("none", "no register in it, only free inputs")
 
 
 def test_the_reference_is_named_or_the_first_that_is_a_channel() -> None:

@@ -7,7 +7,7 @@ import pytest
 from auditor.gf2.logarithm import logarithms
 from auditor.gf2.matrix import row_times
 from auditor.machine.machine import LinearMachine
-from auditor.phases import leads
+from auditor.phases import find, leads
 from auditor.phases.find import find_phases
 from auditor.phases.overlap import overlap
 from auditor.phases.separations import pairs_closer_than, separation
@@ -139,3 +139,13 @@ def test_an_unknown_period_leaves_membership_open() -> None:
     assert pairs_closer_than(table, 8) == [(0, 1, 3, True)]
     assert separation(table, 0, 2) is None
     assert replace(table, window=None).decides(9)
+
+
+def test_many_channels_narrow_the_window_and_the_table_says_so(monkeypatch: pytest.MonkeyPatch) -> None:
+    """A search that would not end in some seconds is made smaller; what lies beyond it is not called decided."""
+    monkeypatch.setattr(leads, "logarithms", partial(logarithms, max_prime_bits=2))
+    monkeypatch.setattr(find, "_SEARCH_LIMIT", 3 * 3 * 50)
+    register = fibonacci((127, 126, 0))
+    channels = [(0b1011, 0), (1 << 60 | 1 << 7, 0), (1 << 90 | 1 << 8 | 1, 0)]
+    table = find_phases(linear_machine(register, channels, registers=[range(127)]), window=1 << 60)
+    assert (table.window, table.certified_at_least, table.decides(51)) == (50, 50, False)
