@@ -141,12 +141,3 @@ class CellLibrary:
 
     cells: Mapping[str, Cell]
     notes: tuple[str, ...] = ()
-
-    def primitive(self, name: str, inputs: int) -> Cell:
-        """Return the gate primitive ``name`` with ``inputs`` inputs, pins ``out``, ``in0``, ``in1`` ...
-
-        Raises ``KeyError`` for a name that is not a gate primitive with a direction from inputs to one output.
-        """
-        from auditor.cells.primitives import primitive_cell  # noqa: PLC0415 - the verb builds on this noun
-
-        return primitive_cell(name, inputs)

@@ -6,7 +6,7 @@ a continuous assignment.
 
 from functools import cache
 
-from auditor.cells.library import Cell, Function, Pin
+from auditor.cells.library import Cell, CellLibrary, Function, Pin
 
 # operator between the inputs, and whether the output is inverted
 _SYMMETRIC = {
@@ -45,3 +45,8 @@ def primitive_cell(name: str, inputs: int) -> Cell:
         raise KeyError(f"{name} with {inputs} inputs")
     output = Pin("out", "output", function, three_state)
     return Cell(name, {"out": output, **{pin: Pin(pin, "input") for pin in pins}})
+
+
+def find_cell(library: CellLibrary, name: str, primitive_inputs: int) -> Cell | None:
+    """Return the cell of an instance: a primitive where it has ``primitive_inputs``, else what the library has."""
+    return primitive_cell(name, primitive_inputs) if primitive_inputs else library.cells.get(name)

@@ -6,6 +6,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from auditor.cells.library import Cell, CellLibrary
+from auditor.cells.primitives import find_cell
 from auditor.netlist.netlist import OPEN, Column, Netlist
 
 NO_DRIVER = -1
@@ -56,10 +57,7 @@ class Wiring:
 
 def find_cells(netlist: Netlist, library: CellLibrary) -> tuple[Cell | None, ...]:
     """Return the cell of every cell type of the netlist, None where there is no description."""
-    return tuple(
-        library.primitive(kind.name, kind.primitive_inputs) if kind.primitive_inputs else library.cells.get(kind.name)
-        for kind in netlist.cell_types
-    )
+    return tuple(find_cell(library, *kind) for kind in netlist.cell_types)
 
 
 def connect(netlist: Netlist, library: CellLibrary) -> Wiring:

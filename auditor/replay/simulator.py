@@ -12,6 +12,7 @@ import numpy as np
 import numpy.typing as npt
 
 from auditor.cells.library import Cell, CellLibrary, Function, Storage
+from auditor.cells.primitives import find_cell
 from auditor.cone.cone import Cone, Gate, StorageElement
 from auditor.errors import InternalError
 from auditor.netlist.netlist import OPEN
@@ -170,10 +171,10 @@ class Simulator:
         return self.slots.setdefault(wire, len(self.slots))
 
     def _cell(self, instance: int) -> Cell:
-        kind = self.cone.netlist.cell_of(instance)
-        if kind.primitive_inputs:
-            return self.library.primitive(kind.name, kind.primitive_inputs)
-        return self.library.cells[kind.name]
+        cell = find_cell(self.library, *self.cone.netlist.cell_of(instance))
+        if cell is None:
+            raise InternalError(f"{self.cone.netlist.instance_names[instance]} is in the cone without a description")
+        return cell
 
     def _storage(self, element: StorageElement) -> Storage:
         return self._cell(element.instance).storage[element.bit]

