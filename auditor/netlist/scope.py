@@ -166,7 +166,7 @@ class Scope:
         for name, inside in self.module.ports:
             self.line = self.module.place.line
             parts = inside.parts if isinstance(inside, Concatenation) else (inside,)
-            nets = [net for part in parts for net in self.bits_of(part, implicit=False)]
+            nets = [net for part in parts for net in self.bits_of(part, implicit=True)]
             first = parts[0].net if isinstance(parts[0], Select) else parts[0]
             direction = self.module.directions.get(first) if isinstance(first, str) else None
             _, bounds = self.declared.get(inside, (0, None)) if isinstance(inside, str) else (0, None)

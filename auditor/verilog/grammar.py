@@ -26,8 +26,12 @@ from auditor.verilog.tree import Parameters, RefusedError, expression_of, intege
 
 PIECE = 300
 
-# pyverilog takes `^~a` for `^(~a)` and wants literals without blanks.
-_NORMALISED = re.compile(r"\\\S++\s|\^~|(\d?)\s*'\s*([sS]?[bBoOdDhH])\s*([\w?])")
+# pyverilog takes `^~a` for `^(~a)`, wants literals without blanks, and knows no empty position in a list of
+# connections: a string, which no connection may be, holds its place.
+_NORMALISED = re.compile(
+    r"""\\\S++\s|"(?:[^"\\\n]|\\.)*+"|\^~|(\d?)\s*'\s*([sS]?[bBoOdDhH])\s*([\w?])|([(,])\s*(?=,)|(,)\s*(?=\))"""
+)
+_EMPTY = '"an empty position"'
 _COORDINATE = re.compile(r'line:(\d+)(?: column:\d+)?: (?:before: "(.*)"|(.*))', re.DOTALL)
 _REMEDY = "mend the text, or give it as plain structural Verilog"
 
@@ -84,9 +88,11 @@ def _parse(piece: Sequence[Waiting]) -> Sequence[Any]:
 
 
 def _normal(match: re.Match[str]) -> str:
-    size, base, digit = match.groups()
+    size, base, digit, sign, last = match.groups()
     if base:
         return f"{size}'{base}{digit}"
+    if sign or last:
+        return match[0] + _EMPTY
     return "~^" if match[0] == "^~" else match[0]
 
 
@@ -99,6 +105,8 @@ def _explain(wait: Waiting, message: str) -> tuple[str, int]:
     # The item begins on the second line of what pyverilog was given.
     line = wait.item.line + min(int(match[1]) - 2, wait.item.text.count("\n"))
     token = match[2] if match[2] is not None else match[3]
+    if token.startswith("Illegal character"):
+        return f"syntax error: illegal character {token.split()[-1][1:-1]}", line
     if token in (";", "endmodule"):
         return f"syntax error: the {wait.kind} ends too early", line
     return f"syntax error at {token}", line
@@ -107,7 +115,7 @@ def _explain(wait: Waiting, message: str) -> tuple[str, int]:
 def _element(wait: Waiting, node: Any, parameters: Parameters) -> Declared | Instance | Assign | None:
     """Return what an item says, or None for a parameter, which is entered. Raises RefusedError."""
     kind = type(node).__name__
-    if kind == "InstanceList" and wait.kind == "instance":
+    if kind == "InstanceList" and wait.kind == "instance" and _EMPTY not in wait.item.text:
         return _instance(node, wait.item.line, parameters)
     if kind == "Assign" and wait.kind == "assign":
         left = expression_of(node.left.var, parameters)
@@ -128,13 +136,17 @@ def _instance(node: Any, line: int, parameters: Parameters) -> Instance:
     connections = tuple(
         Connection(
             plain_name(port.portname) if port.portname else None,
-            expression_of(port.argname, parameters) if port.argname is not None else None,
+            None if _is_open(port.argname) else expression_of(port.argname, parameters),
         )
         for port in one.portlist
     )
     array = _range(one.array, parameters) if one.array else None
     primitive = node.module in GATES
     return Instance(plain_name(node.module), plain_name(one.name), connections, line, primitive, array)
+
+
+def _is_open(value: Any) -> bool:
+    return value is None or getattr(value, "value", None) == _EMPTY.strip('"')
 
 
 def _declared(nodes: Sequence[Any], line: int, parameters: Parameters) -> Declared:

@@ -20,20 +20,21 @@ from auditor.verilog.plain import (
 )
 from auditor.verilog.statements import Assign, Connection, Direction, Expression, HeaderPort, Instance, Range
 
+# No group stands inside a possessive repeat: some versions of Python answer that with a SystemError.
 S = SPACE
 _VALUE = r"(?>[^()\\;]++|\\\S++\s)*+"
 _PIN_ONLY = rf"\.{S}{NAME}{S}\({_VALUE}\)"
 NAMED_BODY = rf"{S}{_PIN_ONLY}{S}(?:,{S}{_PIN_ONLY}{S})*+"
 PINS = re.compile(rf"\.{S}({NAME}){S}\(({_VALUE})\)")
-BOUNDS = rf"\[{S}(-?\d++){S}:{S}(-?\d++){S}\]"
+BOUNDS = rf"\[{S}(-?\d{{1,9}}){S}:{S}(-?\d{{1,9}}){S}\]"
 _NAMED_BODY = re.compile(NAMED_BODY)
-_ONE_INSTANCE = re.compile(rf"({NAME}){S}(?:({NAME}){S})?+\((.*)\){S}", re.DOTALL)
+_ONE_INSTANCE = re.compile(rf"({NAME}){S}({NAME}|){S}\((.*)\){S}", re.DOTALL)
 _DELAY = r"#\s*(?:[\d.]+|\([^()]*\)|[A-Za-z_]\w*)"
 _CELL_HEAD = re.compile(rf"({NAME}){S}(?:{_DELAY})?")
 _ASSIGN_HEAD = re.compile(rf"assign\b{S}(?:{_DELAY})?")
 _DECLARED = re.compile(
-    rf"(?:(input|output|inout)\b{S})?+(?:(wire|tri|uwire|reg|supply0|supply1)\b{S})?+(signed\b{S})?+"
-    rf"(\[[^\]\\]*+\]{S})?+(?:{_DELAY}{S})?+({NAME}){S}(?:=(.*))?",
+    rf"(?:(input|output|inout)\b{S})?(?:(wire|tri|uwire|reg|supply0|supply1)\b{S})?(signed\b{S})?"
+    rf"(\[[^\]\\]*+\]{S})?(?:{_DELAY}{S})?({NAME}){S}(?:=(.*))?",
     re.DOTALL,
 )
 _RANGE = re.compile(rf"{BOUNDS}{S}")

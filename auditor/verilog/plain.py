@@ -70,6 +70,8 @@ def literal(text: str) -> Constant:
     bits = _bits_of_digits(digits, (base or "d").lower())
     if not bits:
         raise ValueError(f"{text} has digits that its base does not know")
+    if size is None and len(bits) > width:
+        raise ValueError(f"{text} does not fit {width} bits")
     fill = bits[0] if bits[0] in "xz" else "0"
     return Constant(bits[-width:].rjust(width, fill), sized=size is not None)
 
@@ -106,10 +108,10 @@ class PlainValues(dict[str, Expression | None]):
     Plain are a net, a bit or part of one, a literal, and a concatenation of these.
     """
 
-    _part = rf"{SPACE}(?:({NAME}){SPACE}(?:\[\s*(-?\d+)\s*(?::\s*(-?\d+)\s*)?\]\s*)?|(\d[\d_]*|\d*\s*'[\w?\s]+)){SPACE}"
+    _select = r"\[\s*(-?\d{1,9})\s*(?::\s*(-?\d{1,9})\s*)?\]\s*"
+    _number = r"\d*\s*'[\w?\s]+|\d[\d_]*"
+    _part = rf"{SPACE}(?:({NAME}){SPACE}(?:{_select})?|({_number})){SPACE}"
     _one = re.compile(_part)
-    _several = re.compile(rf"\s*\{{({_part}(?:,{_part})*+)\}}\s*")
-    _parts = re.compile(rf"{_part}(?:,|\Z)")
 
     def __missing__(self, text: str) -> Expression | None:
         value: Expression | None
@@ -117,14 +119,23 @@ class PlainValues(dict[str, Expression | None]):
             value = text
         elif match := self._one.fullmatch(text):
             value = self._value(*match.groups())
-        elif match := self._several.fullmatch(text):
-            value = Concatenation(tuple(self._value(*groups) for groups in self._parts.findall(match[1])))
         elif not text.strip():
             value = None
         else:
-            raise NotPlainError
+            value = self._concatenation(text.strip())
         self[text] = value
         return value
+
+    def _concatenation(self, text: str) -> Concatenation:
+        if text[0] != "{" or text[-1] != "}":
+            raise NotPlainError
+        parts = []
+        for item in split_list(text[1:-1], 0):
+            part = None if item.text.startswith("{") else self[item.text]
+            if part is None:  # an empty part, or one of parts
+                raise NotPlainError
+            parts.append(part)
+        return Concatenation(tuple(parts))
 
     @staticmethod
     def _value(name: str, left: str, right: str, number: str) -> Expression:

@@ -29,7 +29,7 @@ from auditor.verilog.statements import Range
 S = SPACE
 _POSITION = r"(?>[^(),{}\\;.]++|\\\S++\s)++"
 _POSITIONS = re.compile(_POSITION)
-_INSTANCE = re.compile(rf"{S}({NAME}){S}(?:({NAME}){S})?+\((?:({NAMED_BODY})|({_POSITION}(?:,{_POSITION})*+))\){S};")
+_INSTANCE = re.compile(rf"{S}({NAME}){S}({NAME}|){S}\((?:({NAMED_BODY})|({_POSITION}(?:,{_POSITION})*+))\){S};")
 _WORD = re.compile(rf"{S}(?:([A-Za-z_][\w$]*+)|(\\\S++\s)|(.))")
 _STATEMENT = re.compile(r'(?>[^;\\"]++|\\\S++\s|"(?:[^"\\\n]|\\.)*+")*+;')
 _MODULE_WORD = re.compile(r"\\\S++|\b(endmodule|module|macromodule)\b")
@@ -37,7 +37,7 @@ _SPECIFY_END = re.compile(r"\\\S++|\b(endspecify)\b")
 _HEAD = re.compile(rf"(?:macro)?module\b{S}({NAME}){S}")
 _LABEL = re.compile(rf"{S}:{S}{NAME}")
 _NAME_LIST = re.compile(
-    rf"{S}(input|output|inout|wire|tri|supply0|supply1)\b{S}(?:(wire|tri)\b{S})?+(?:{BOUNDS}{S})?+"
+    rf"{S}(input|output|inout|wire|tri|supply0|supply1)\b{S}(?:(wire|tri)\b{S})?(?:{BOUNDS}{S})?"
     rf"({NAME}{S}(?:,{S}{NAME}{S})*+);"
 )
 _BARE_NAME = re.compile(r"[A-Za-z_][\w$]*+|\\\S++")
@@ -100,7 +100,7 @@ class _Scanner:
                     connections = tuple([connect((None, values[value])) for value in _POSITIONS.findall(by_position)])
             except NotPlainError:
                 break
-            own = name if name and name[0] != "\\" else plain_name(name or "")
+            own = plain_name(name) if name[:1] == "\\" else name
             append(instantiate((names[cell], own, connections, line, primitive, None)))
             position = match.end()
         self.position, self.counted, self.line = position, counted, line

@@ -181,8 +181,8 @@ def _words(node: Any) -> str:
 
 
 def _bounded(number: int) -> int:
-    if abs(number) >> 64:
-        raise RefusedError("a constant passes 64 bits", "write a smaller number")
+    if abs(number) >> 40:
+        raise RefusedError("a constant passes 40 bits", "write a smaller number")
     return number
 
 
