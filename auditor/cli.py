@@ -9,6 +9,7 @@ from collections.abc import Iterator, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING, TextIO
 
+from auditor import __version__
 from auditor.arguments import COMMAND_LINE, Request, read_arguments
 from auditor.errors import InputError, InternalError, TroubleList, fail, near_misses
 from auditor.notation import SourcePlace
@@ -72,7 +73,7 @@ def _command(words: Sequence[str]) -> int:
     if command == "audit":
         return _audit(read_arguments(words[1:]))
     if command == "--version":
-        print(f"auditor {_version()}")
+        print(f"auditor {__version__}")
         return 0
     if command in ("--help", "-h", "help"):
         print(HELP, end="")
@@ -108,16 +109,6 @@ def _audit(request: Request) -> int:
             print_audit(facts, Console(file=screen, highlight=False))
             screen.flush()
     return status
-
-
-def _version() -> str:
-    """Return the version of the installed distribution."""
-    from importlib import metadata  # noqa: PLC0415 - only asked for by --version and after an internal error
-
-    try:
-        return metadata.version("auditor")
-    except metadata.PackageNotFoundError:
-        return "unknown (not installed)"
 
 
 def _check(plan: Plan, json: str | None) -> None:
@@ -212,7 +203,7 @@ def _internal_text(error: Exception) -> str:
     return (
         f"{trace}internal error: {contradiction}, no verdict: {what}{where}\n"
         "  This is a defect of auditor, not of your files. Please send this message, the command line,\n"
-        f"  version {_version()}, and what AUDITOR_TRACEBACK=1 adds to the message.\n"
+        f"  version {__version__}, and what AUDITOR_TRACEBACK=1 adds to the message.\n"
     )
 
 

@@ -45,9 +45,7 @@ class SourcePlace:
 
 def natural_order(name: str) -> tuple[tuple[int, int | str], ...]:
     """Sort key under which q[2] comes before q[10]: runs of digits compare as numbers."""
-    return tuple(
-        (0, int(part)) if part.isdecimal() else (1, part) for part in _DIGITS.split(name) if part
-    )
+    return tuple((0, int(part)) if part.isdecimal() else (1, part) for part in _DIGITS.split(name) if part)
 
 
 def state_hex(state: Vector, width: int) -> str:

@@ -8,6 +8,7 @@ import json
 from collections.abc import Sequence
 from typing import Any, TypeAlias
 
+from auditor import __version__
 from auditor.cone.cone import Load
 from auditor.machine.machine import LinearMachine
 from auditor.notation import Polynomial, Vector, state_hex
@@ -34,7 +35,7 @@ def as_json(facts: AuditFacts) -> Json:
     table, netlist = facts.phases, facts.cone.netlist
     return {
         "schema": SCHEMA,
-        "tool": {"name": "auditor", "version": _version()},
+        "tool": {"name": "auditor", "version": __version__},
         "environment": dict(facts.environment),
         "inputs": [source._asdict() for source in facts.inputs],
         "top": netlist.top,
@@ -52,15 +53,6 @@ def as_json(facts: AuditFacts) -> Json:
         "undecided": list(facts.undecided),
         "cautions": list(CAUTIONS),
     }
-
-
-def _version() -> str:
-    from importlib.metadata import PackageNotFoundError, version  # noqa: PLC0415 - reads files; only this writer pays
-
-    try:
-        return version("auditor")
-    except PackageNotFoundError:
-        return "not installed"
 
 
 def _decimal(number: int | None) -> str | None:
