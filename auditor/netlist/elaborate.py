@@ -89,7 +89,8 @@ class _Compiler:
             return None
         if None in pins and len(pins) > len(interface or ()):
             trouble(
-                f"{len(pins)} connections by position to {cell}, which has {len(interface or ())} ports", "drop some"
+                f"{len(pins)} connections by position to {cell}, which has {len(interface or ())} ports",
+                "leave some out",
             )
             return None
         named = [pin or order for pin, order in zip(pins, [*(interface or ()), *[""] * len(pins)], strict=False)]

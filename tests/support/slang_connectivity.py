@@ -144,7 +144,15 @@ def _port_ties(instance: Any, path: str, below: str) -> Iterator[tuple[list[Any]
     for connection in instance.portConnections:
         bits = _outside(connection, path)
         if bits is not None:
-            yield _bits(_Net(connection.port.internalSymbol), below), bits
+            yield _inside(connection.port, below), bits
+
+
+def _inside(port: Any, path: str) -> list[Any]:
+    """Return what a port is connected to within its module."""
+    if type(port).__name__ == "MultiPortSymbol":
+        return [bit for part in reversed(list(port.ports)) for bit in _inside(part, path)]
+    expression = port.internalExpr
+    return _bits(_Net(port.internalSymbol) if expression is None else expression, path)
 
 
 def _assignments(member: Any, path: str) -> Iterator[tuple[list[Any], list[Any]]]:
@@ -158,6 +166,9 @@ def _bits(expression: Any, path: str) -> list[Any]:
     kind = type(expression).__name__
     if kind in ("NamedValueExpression", "_Net"):
         symbol = expression.symbol
+        supply = getattr(getattr(symbol, "netType", None), "name", "").removeprefix("supply")
+        if supply in ("0", "1"):
+            return [f"constant {supply}"] * symbol.type.bitWidth
         return [(path, symbol.name, bit) for bit in range(symbol.type.bitWidth)]
     if kind == "ConversionExpression":
         width = expression.type.bitWidth
