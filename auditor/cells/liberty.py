@@ -101,7 +101,8 @@ def parse_liberty(text: str, file: str) -> list[Group]:
             open_groups.pop()
         else:
             break
-    if found is None or close:
+    in_last_words = not set("}\n") & set(text[position:].strip())
+    if (found is None or close) and not (in_last_words and len(open_groups) > 1):
         raise _syntax_error(text, position - bool(found), file)
     if len(open_groups) > 1:
         raise _cut_off(text, open_groups[-1].line, file)

@@ -161,8 +161,22 @@ def test_comment_signs_inside_strings_are_no_comments():
             "f.lib:4: a comment opens here and is not closed; close it with */",
         ),
         ("cell (A) { }", "f.lib: there is no library group in it; give a Liberty file"),
+        (
+            "library (l) {\n  cell (A) {\n    pg_pin ",
+            "f.lib:3: the file ends inside the group that opens at line 2; give the whole file, or add the missing brace",
+        ),
     ],
-    ids=["cut in a cell", "cut in a table", "no colon", "brace too many", "no )", "no quote", "no */", "no library"],
+    ids=[
+        "cut in a cell",
+        "cut in a table",
+        "no colon",
+        "brace too many",
+        "no )",
+        "no quote",
+        "no */",
+        "no library",
+        "cut in a word",
+    ],
 )
 def test_a_broken_file_is_told_with_its_line(text, expected):
     """Each syntax error and each cut gives one message with place and remedy."""
