@@ -163,7 +163,8 @@ def test_comment_signs_inside_strings_are_no_comments():
         ("cell (A) { }", "f.lib: there is no library group in it; give a Liberty file"),
         (
             "library (l) {\n  cell (A) {\n    pg_pin ",
-            "f.lib:3: the file ends inside the group that opens at line 2; give the whole file, or add the missing brace",
+            "f.lib:3: the file ends inside the group that opens at line 2; "
+            "give the whole file, or add the missing brace",
         ),
     ],
     ids=[
