@@ -177,12 +177,12 @@ def _fold_pair(program: list[str], operator: str, a: int, b: int) -> int:
 def truth_table(function: Function) -> int:
     """Return 2^n bits for n inputs: bit k is the value where inputs[j] is bit j of k."""
     algebra = BitAlgebra(1 << len(function.inputs))
-    columns = [_column(algebra, j) for j in range(len(function.inputs))]
+    columns = [column(algebra, j) for j in range(len(function.inputs))]
     return function.evaluate(columns, algebra)
 
 
-def _column(algebra: BitAlgebra, j: int) -> int:
-    """Return the int whose bit k is bit j of k: 2^j zeros and 2^j ones by turns."""
+def column(algebra: BitAlgebra, j: int) -> int:
+    """Return the int whose bit k is bit j of k, over the whole width: 2^j zeros and 2^j ones by turns."""
     half = 1 << j
     return algebra.mask // ((1 << half) + 1) << half
 
@@ -199,8 +199,8 @@ def unateness(function: Function) -> dict[str, Dependence]:
     table, algebra = truth_table(function), BitAlgebra(1 << len(function.inputs))
     result = {}
     for j, name in enumerate(function.inputs):
-        column = _column(algebra, j)
-        at_1, at_0 = (table & column) >> (1 << j), table & ~column
+        ones = column(algebra, j)
+        at_1, at_0 = (table & ones) >> (1 << j), table & ~ones
         result[name] = _dependence(at_1 & ~at_0, at_0 & ~at_1)
     return result
 

@@ -11,6 +11,7 @@ from auditor.cells.expression import ExpressionError, parse_expression
 from auditor.cells.liberty import Group
 from auditor.cells.liberty_pins import MOST_BITS, DeclaredPins, LibraryDefaults, NotUnderstood, declared_pins, number
 from auditor.cells.library import Cell, Function, Pin, Storage
+from auditor.cells.state_table import state_table
 from auditor.cells.storage import Described, rewrite, settle
 from auditor.notation import SourcePlace
 
@@ -37,20 +38,25 @@ def liberty_cell(group: Group, defaults: LibraryDefaults) -> Cell:
 
 def _behaviour(group: Group, declared: DeclaredPins) -> tuple[dict[str, Pin], tuple[Storage, ...]]:
     """Return the pins with their functions and the stored bits, all in terms of input pins and state variables."""
-    _refuse_state_tables(group, declared)
+    table = state_table(group, declared.pins)
+    shown = table.functions if table else {}
     banks = [_Bank.of(storage) for storage in group.inside("ff", "latch", "ff_bank", "latch_bank")]
     reader = _Reader(
         declared.vectors | {name: bank.bits_of(name) for bank in banks if bank.width for name in bank.names}
     )
     written = {
-        name: reader.read(pin.function, f"function of pin {name}", pin.bit)
+        name: reader.read(pin.function or shown[name], f"function of pin {name}", pin.bit)
         for name, pin in declared.pins.items()
-        if pin.function
+        if pin.function or name in shown
     }
     variables = {variable for bank in banks for name in bank.names for variable in bank.bits_of(name)}
+    if table and table.bit:
+        variables.add(table.bit.first)
     functions = _put_into_each_other(written, variables)
     inner = {name: function for name, function in functions.items() if name not in variables}
     described = [bit for bank in banks for bit in bank.described(reader, inner)]
+    if table and table.bit:
+        described.append(table.bit)
     storage, meaning = settle(described, declared.pins)
     pins = {}
     for name, pin in declared.pins.items():
@@ -62,20 +68,6 @@ def _behaviour(group: Group, declared: DeclaredPins) -> tuple[dict[str, Pin], tu
         pins[name] = replace(pin.pin, function=function, three_state=three_state)
     _refuse_unknown_names(pins, storage)
     return pins, storage
-
-
-def _refuse_state_tables(group: Group, declared: DeclaredPins) -> None:
-    """Raise ``NotUnderstood`` where the behaviour is given by a table or by ``state_function``."""
-    gate = group.value("clock_gating_integrated_cell")
-    what = f"it is an integrated clock gate ({gate}) and its" if gate else "its"
-    if any(group.inside("statetable")):
-        raise NotUnderstood(f"{what} behaviour is given as a state table, which is not read")
-    for name, pin in declared.pins.items():
-        if pin.state_function:
-            raise NotUnderstood(f"{what} pin {name} has a state_function, which is not read")
-    outputs = [pin for pin in declared.pins.values() if pin.pin.direction == "output"]
-    if gate and not any(pin.function for pin in outputs):
-        raise NotUnderstood(f"{what} behaviour is given by that word alone")
 
 
 def _refuse_unknown_names(pins: Mapping[str, Pin], storage: tuple[Storage, ...]) -> None:

@@ -17,6 +17,7 @@ _DIRECTIONS: dict[str, Direction] = {
     "inout": "inout",
     "internal": "internal",
 }
+GATE_ROLES = ("clock", "enable", "test", "obs", "out")  # as in clock_gate_enable_pin
 MOST_BITS = 65536  # of a bus or a bank; more is a slip of the pen
 _RANGE = re.compile(r"(.*)\[(-?\d+):(-?\d+)\]")
 
@@ -39,12 +40,17 @@ class LibraryDefaults:
 
 @dataclass(frozen=True, slots=True)
 class DeclaredPin:
-    """A pin with the texts of its functions ("" if it has none); ``bit`` is its position in its bus or bundle."""
+    """A pin with the texts of its functions ("" if it has none); ``bit`` is its position in its bus or bundle.
+
+    ``internal_node`` is the node of the state table that the pin shows; ``roles`` what a clock gate uses it for.
+    """
 
     pin: Pin
-    function: str
-    three_state: str
-    state_function: bool
+    function: str = ""
+    three_state: str = ""
+    state_function: str = ""
+    internal_node: str = ""
+    roles: frozenset[str] = frozenset()
     bit: int | None = None
 
 
@@ -84,7 +90,7 @@ def declared_pins(cell: Group, defaults: LibraryDefaults) -> DeclaredPins:
     for group in cell.groups:
         if group.kind == "pg_pin":
             for name in _names(group.arguments):
-                declared.pins[name] = DeclaredPin(Pin(name, "power"), "", "", False)
+                declared.pins[name] = DeclaredPin(Pin(name, "power"))
         elif group.kind == "pin":
             for name in _names(group.arguments):
                 declared.pins[name] = _pin(name, (group,), None, defaults)
@@ -150,7 +156,8 @@ def _pin(name: str, levels: tuple[Group, ...], bit: int | None, defaults: Librar
         limit = _scaled(number(value("max_capacitance")), defaults.unit_ff)
         limit = defaults.limit_ff if limit is None else limit
     pin = Pin(name, direction, capacitance_ff=capacitance, limit_ff=limit)
-    return DeclaredPin(pin, function, value("three_state"), value("state_function") != "", bit)
+    roles = frozenset(role for role in GATE_ROLES if value(f"clock_gate_{role}_pin").lower() == "true")
+    return DeclaredPin(pin, function, value("three_state"), value("state_function"), value("internal_node"), roles, bit)
 
 
 def _capacitance(value: Callable[[str], str], unit_ff: float) -> float | None:

@@ -242,20 +242,6 @@ GATE = "clock_gating_integrated_cell : latch_posedge;"
 @pytest.mark.parametrize(
     ("body", "reason"),
     [
-        ('statetable ("D CK", "IQ") { table : "x"; }', "its behaviour is given as a state table, which is not read"),
-        (
-            GATE + 'statetable ("D CK", "IQ") { table : "x"; }',
-            "it is an integrated clock gate (latch_posedge) and its behaviour is given as a state table, "
-            "which is not read",
-        ),
-        (
-            GATE + 'pin (G) { direction : output; state_function : "CK IQ"; }',
-            "it is an integrated clock gate (latch_posedge) and its pin G has a state_function, which is not read",
-        ),
-        (
-            GATE + "pin (G) { direction : output; }",
-            "it is an integrated clock gate (latch_posedge) and its behaviour is given by that word alone",
-        ),
         (
             'ff (IQ, IQN) { next_state : "D"; clocked_on : "CK"; clocked_on_also : "A"; }',
             "its ff has a second clock (clocked_on_also), which is not read",
