@@ -99,8 +99,8 @@ class _Search:
             return None
         free = ~(to_1 | to_0)
         data = function_between(self.names, ones & free, zeros & free)
-        if not data.inputs or data.inputs == (self.names[-1],):
-            return None  # a bit that no edge changes to anything else shows no clock
+        if data == self._literal(-1, 1):
+            return None  # a bit that no edge changes shows no clock
         return self._described("flip-flop", self._literal(clock, edge), data, forced)
 
     def _forced(self, where: Sequence[int]) -> _Forced | None:
