@@ -56,6 +56,7 @@ class Recipe:
     vectors: bool = False
     hierarchy: bool = False
     shuffled: bool = False
+    half_cycles: bool = False
 
 
 ANYTHING = Recipe(
@@ -82,6 +83,7 @@ class Block:
     ``machine``   as the flip-flops store it; element k is the flip-flop ``names[k]``
     ``resets``    by element: what the reset stores, None where there is none
     ``xor_inputs``, ``xor_depth``   by channel, of the tree between it and the storage
+    ``half_cycle``  storage behind a channel that passes its data on inside the cycle -> that channel; in order
     ``spoilers``  spoiled element or channel -> the AND gate that spoils it
     """
 
@@ -94,6 +96,7 @@ class Block:
     resets: tuple[int | None, ...]
     xor_inputs: tuple[int, ...]
     xor_depth: tuple[int, ...]
+    half_cycle: dict[str, int]
     spoilers: dict[str, str]
 
 
@@ -119,6 +122,7 @@ class _Drawing:
         self.sheet = Sheet(rng, recipe.names, recipe.styles, recipe.hierarchy, recipe.shuffled)
         self.mode: dict[str, int] = {}
         self.spoilers: dict[int, Gate] = {}
+        self.half_cycle: list[tuple[Gate, int]] = []
         self.clock = self._port("ck")
         self.ports: dict[str, str] = {}
         self.elements = self._elements()
@@ -236,6 +240,19 @@ class _Drawing:
             pins |= {pin: "1'b1" for pin in ("RN", "SN") if pin not in pins}
         return self.sheet.cell(element.cell, "register", ("Q", "QN"), f"ff{k}_", **pins)
 
+    def through_half_cycles(self, net: str, i: int) -> str:
+        """Draw storage that opens in order inside one cycle, so that the channel shows what it showed without."""
+        turned = self.recipe.clock == "inverted"  # the register then works at the falling edge
+        first, second = ("latch_low", "latch_high") if turned else ("latch_high", "latch_low")
+        for cell in (first, "ff_plain" if turned else "ff_falling", second):
+            if self.recipe.half_cycles and self.rng.random() < 0.4:
+                output = self.sheet.net()
+                clock_pin = "CK" if cell.startswith("ff") else "G"
+                pins = {clock_pin: self.clock, "D": net, "Q": output}
+                self.half_cycle.append((self.sheet.cell(cell, "shifter", ("Q",), "half", **pins), i))
+                net = output
+        return net
+
     def channel(self, i: int, port: str, spoiled: bool = False) -> Sum:
         """Draw channel i up to its port."""
         sheet, total = self.sheet, self.add_row(self.machine.channels[i], "shifter")
@@ -244,7 +261,7 @@ class _Drawing:
             total = total._replace(signal=spoiled_signal)
         inverted = bool(self.machine.constants >> i & 1)
         drawn = {net for element in self.elements for net in element.outputs.values()}
-        net = true_net(sheet, "shifter", total.signal, inverted)
+        net = self.through_half_cycles(true_net(sheet, "shifter", total.signal, inverted), i)
         own = net not in drawn and net not in sheet.inputs
         if own and port in sheet.outputs and self.rng.random() < 0.5:
             sheet.same[net] = port
@@ -286,6 +303,7 @@ def draw(
         resets=tuple(element.reset for element in drawing.elements),
         xor_inputs=tuple(total.leaves for total in sums),
         xor_depth=tuple(total.depth for total in sums),
+        half_cycle={sheet.path(gate): i for gate, i in drawing.half_cycle},
         spoilers={[*names, *channels][key]: sheet.path(gate) for key, gate in drawing.spoilers.items()},
     )
 
