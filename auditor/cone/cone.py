@@ -7,6 +7,7 @@ element. Everything here holds under the mode; the load figures alone come from 
 
 from collections.abc import Mapping
 from dataclasses import dataclass
+from typing import NamedTuple
 
 import networkx as nx
 
@@ -55,6 +56,14 @@ class StorageElement:
     outputs: tuple[tuple[int, bool], ...]
 
 
+class ClockLatch(NamedTuple):
+    """The stored bit of a clock gate that the mode holds open: it carries no data, but lets the clock pass."""
+
+    instance: int
+    bit: int
+    wire: int
+
+
 @dataclass(frozen=True, slots=True)
 class Channel:
     """A serial stream that feeds one scan chain: its name, and the wire that carries it or its constant."""
@@ -100,6 +109,7 @@ class Cone:
     """The cone of all channels under one mode.
 
     ``gates``, ``clock_gates``  in topological order, sources first; the clock gates run from the root to the clock pins
+    ``clock_latches``  the stored bits of the clock gates on that way; they are no elements
     ``elements``     in the natural order of their names; element k is bit k of every state vector
     ``free_inputs``  wires that nothing in the cone determines: input ports left open by the mode, in natural order
     ``constants``    net → 0 or 1: the mode, ties, and what follows from them
@@ -115,6 +125,7 @@ class Cone:
     channels: tuple[Channel, ...]
     gates: tuple[Gate, ...]
     clock_gates: tuple[Gate, ...]
+    clock_latches: tuple[ClockLatch, ...]
     elements: tuple[StorageElement, ...]
     free_inputs: tuple[int, ...]
     constants: Mapping[int, int]

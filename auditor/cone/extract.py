@@ -95,7 +95,7 @@ def _assemble(wiring: Wiring, closed: _Closed, wanted: list[tuple[str, int]], fo
         troubles.loop(loop)
     graph = cone_graph(walk.gates, {s.wire: (walk.data[s.wire], s.instance) for s in stored})
     feedback = feedback_parts(graph, {s.wire: number for number, s in enumerate(stored)})
-    tree = ClockTree(wiring, walk.known, walk.ports, troubles)
+    tree = ClockTree(walk)
     clocking = clock_all(tree, stored, feedback, graph)
     clock_order, clock_loop = gates_in_order(tree.gates)
     if clock_loop:
@@ -107,6 +107,7 @@ def _assemble(wiring: Wiring, closed: _Closed, wanted: list[tuple[str, int]], fo
         channels=tuple(Channel(name, net, walk.known.get(net)) for name, net in wanted),
         gates=tuple(Gate(net, *walk.gates[net][0], walk.gates[net][1]) for net in order),
         clock_gates=tuple(Gate(net, *tree.gates[net][0], tree.gates[net][1]) for net in clock_order),
+        clock_latches=tuple(latch for wire, latch in tree.latches.items() if wire not in walk.data),
         elements=elements,
         free_inputs=tuple(sorted(walk.free, key=lambda net: natural_order(netlist.net_names[net]))),
         constants=walk.known,

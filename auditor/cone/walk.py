@@ -4,6 +4,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass, field
 
 from auditor.cells.library import Cell, Function, Storage
+from auditor.cone.buses import driver_of
 from auditor.cone.fold import OPEN_PIN, Folded, fold
 from auditor.cone.trouble import ConeTroubles
 from auditor.cone.wiring import NO_DRIVER, SEVERAL_DRIVERS, Wiring
@@ -54,7 +55,7 @@ class Walk:
         """Return the wires that decide ``wire``, and note what stands between."""
         if wire >= len(self.wiring.netlist.net_names):
             return self._behind_storage(self._by_wire[wire - len(self.wiring.netlist.net_names)])
-        driver = int(self.wiring.driver[wire])
+        driver = driver_of(self.wiring, wire, self.known)
         if wire in self.ports and driver == NO_DRIVER:
             self.free[wire] = None
             return ()

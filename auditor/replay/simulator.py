@@ -13,7 +13,7 @@ import numpy.typing as npt
 
 from auditor.cells.library import Cell, CellLibrary, Function, Storage
 from auditor.cells.primitives import find_cell
-from auditor.cone.cone import Cone, Gate, StorageElement
+from auditor.cone.cone import ClockLatch, Cone, Gate, StorageElement
 from auditor.errors import InternalError
 from auditor.netlist.netlist import OPEN
 
@@ -64,11 +64,15 @@ class Batch:
 
 @dataclass(slots=True)
 class Simulator:
-    """Holds a value for every net and stored bit of a cone; ``words`` words of 64 lanes each."""
+    """Holds a value for every net and stored bit of a cone; ``words`` words of 64 lanes each.
+
+    ``bits`` are the elements of the cone, then the latches of its clock gates: their values are the first slots.
+    """
 
     cone: Cone
     library: CellLibrary
     words: int
+    bits: tuple[StorageElement | ClockLatch, ...] = field(init=False)
     slots: dict[int, int] = field(default_factory=dict)
     values: Words = field(init=False)
     noise: npt.NDArray[np.intp] = field(init=False)
@@ -81,10 +85,10 @@ class Simulator:
     _stored: dict[int, dict[str, int]] = field(default_factory=dict)  # instance → state variable → wire
 
     def __post_init__(self) -> None:
-        elements = self.cone.elements
-        for element in elements:
-            self._slot(element.wire)
-            self._stored.setdefault(element.instance, {})[self._storage(element).variable] = element.wire
+        self.bits = (*self.cone.elements, *self.cone.clock_latches)
+        for bit in self.bits:
+            self._slot(bit.wire)
+            self._stored.setdefault(bit.instance, {})[self._storage(bit).variable] = bit.wire
         self._clock_gates = self._batches(self.cone.clock_gates)
         self._gates = self._batches(self.cone.gates)
         self._clocks = self._storage_batches(lambda storage: storage.clock)
@@ -93,7 +97,7 @@ class Simulator:
             (1, self._storage_batches(lambda storage: storage.preset)),
             (0, self._storage_batches(lambda storage: storage.clear)),
         ]
-        latches = [self._storage(element).kind == "latch" for element in elements]
+        latches = [self._storage(bit).kind == "latch" for bit in self.bits]
         self._is_latch = np.where(latches, ALL_ONES, np.uint64(0))[:, None].astype(np.uint64)
         self._fill()
 
@@ -103,7 +107,7 @@ class Simulator:
         for net in (*cone.free_inputs, cone.clock, *(channel.wire for channel in cone.channels)):
             self._slot(net)
         computed = {gate.output for gate in (*cone.gates, *cone.clock_gates)}
-        computed.update(element.wire for element in cone.elements)
+        computed.update(bit.wire for bit in self.bits)
         self.values = np.zeros((len(self.slots), self.words), dtype=np.uint64)
         noise = []
         for net, slot in self.slots.items():
@@ -119,7 +123,9 @@ class Simulator:
 
     def settle(self) -> None:
         """Let the gates, the asynchronous pins and the open latches come to rest."""
-        for _ in range(len(self.cone.elements) + 2):
+        for _ in range(len(self.bits) + 2):
+            if self.cone.clock_latches:
+                self._evaluate(self._clock_gates)
             self._evaluate(self._gates)
             before = self._state().copy()
             is_open = self._clock_values() & self._is_latch
@@ -139,10 +145,10 @@ class Simulator:
         self.settle()
 
     def _state(self) -> Words:
-        return self.values[: len(self.cone.elements)]
+        return self.values[: len(self.bits)]
 
     def _set_state(self, state: Words) -> None:
-        self.values[: len(self.cone.elements)] = state
+        self.values[: len(self.bits)] = state
 
     def _clock_values(self) -> Words:
         return self._gather(self._clocks)
@@ -151,7 +157,7 @@ class Simulator:
         return self._gather(self._data)
 
     def _gather(self, batches: Sequence[Batch]) -> Words:
-        result = np.empty((len(self.cone.elements), self.words), dtype=np.uint64)
+        result = np.empty((len(self.bits), self.words), dtype=np.uint64)
         for batch in batches:
             result[batch.outputs] = batch.value(self.values)
         return result
@@ -176,8 +182,8 @@ class Simulator:
             raise InternalError(f"{self.cone.netlist.instance_names[instance]} is in the cone without a description")
         return cell
 
-    def _storage(self, element: StorageElement) -> Storage:
-        return self._cell(element.instance).storage[element.bit]
+    def _storage(self, stored: StorageElement | ClockLatch) -> Storage:
+        return self._cell(stored.instance).storage[stored.bit]
 
     def _batches(self, gates: Sequence[Gate]) -> list[Batch]:
         """Group gates by level, then by function; the level is that of the folded cone, sources first."""
@@ -191,12 +197,12 @@ class Simulator:
         return [_batch(function, groups[depth, function]) for depth, function in sorted(groups, key=lambda g: g[0])]
 
     def _storage_batches(self, choose: Callable[[Storage], Function | None]) -> list[Batch]:
-        """Group one function of every element, such as its data; the outputs are element numbers."""
+        """Group one function of every stored bit, such as its data; the outputs are places in ``bits``."""
         groups: dict[Function, list[tuple[tuple[int, ...], int]]] = {}
-        for number, element in enumerate(self.cone.elements):
-            function = choose(self._storage(element))
+        for number, bit in enumerate(self.bits):
+            function = choose(self._storage(bit))
             if function is not None:
-                groups.setdefault(function, []).append((self._inputs(function, element.instance), number))
+                groups.setdefault(function, []).append((self._inputs(function, bit.instance), number))
         return [_batch(function, places) for function, places in groups.items()]
 
     def _function_of(self, gate: Gate) -> Function:
