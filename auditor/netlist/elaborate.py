@@ -12,6 +12,8 @@ from auditor.netlist.scope import MAX_OBJECTS, PortBits, Scope, SingleBits, Wide
 from auditor.netlist.template import Child, Registry, Template
 from auditor.verilog.statements import Assign, Concatenation, Constant, Expression, Instance, Module, Select
 
+_ONE_INPUT = frozenset({"buf", "not"})
+_TWO_INPUTS = frozenset({"bufif0", "bufif1", "notif0", "notif1"})
 _LEAVES = frozenset({str, Select, Constant, type(None)})
 Pins = Sequence[tuple[str | None, list[int], int]]  # pin, bits, own width; the bits are [OPEN] where open
 
@@ -28,7 +30,7 @@ class _Compiler:
         self.module, self.registry = module, registry
         self.scope = Scope(module, troubles)
         self.template = Template(self.scope, self.scope.ports())
-        self.shapes: dict[tuple[str, tuple[str | None, ...]], tuple[int, list[int]] | None] = {}
+        self.shapes: dict[tuple[str, tuple[str | None, ...], bool], tuple[int, list[int]] | None] = {}
 
     def run(self) -> Template:
         """Lay down the instances, then the assigns: a net that an instance implies may be read by an assign."""
@@ -49,7 +51,7 @@ class _Compiler:
         for instance in self.module.instances:
             cell, name, connections, scope.line, primitive, array = instance
             pins, values = zip(*connections, strict=True) if connections else ((), ())
-            key = (cell, pins)
+            key = (cell, pins, primitive)
             if key not in shapes:
                 shapes[key] = self._shape(cell, pins, primitive)
             shape = shapes[key]
@@ -60,6 +62,8 @@ class _Compiler:
             try:
                 nets = list(map(net_of, values))
             except WideError:
+                nets = []
+            if len(nets) != len(pins) or (primitive and (OPEN in nets or nets[0] <= CONSTANT_1)):
                 self._by_hand(instance)
                 continue
             add_name(name)
@@ -71,13 +75,20 @@ class _Compiler:
 
     def _shape(self, cell: str, pins: tuple[str | None, ...], primitive: bool) -> tuple[int, list[int]] | None:
         """Return the type and the pin numbers of a cell so connected, None where it must be done by hand."""
-        if primitive or cell in self.registry.expanded:
-            return None
-        interface = self.registry.interface(cell)
-        named = self._pin_names(cell, pins, interface)
-        if named is None or (interface and any(len(interface[pin].nets) != 1 for pin in named)):
-            return None
-        return self.registry.type_number(CellType(cell)), [self.registry.pin_number(pin) for pin in named]
+        if primitive:
+            inputs = len(pins) - 1
+            if any(pins) or inputs < 1 or (inputs != 1 and cell in _ONE_INPUT) or (inputs != 2 and cell in _TWO_INPUTS):
+                return None
+            named, cell_type = _gate_pins(inputs), CellType(cell, inputs)
+        else:
+            if cell in self.registry.expanded:
+                return None
+            interface = self.registry.interface(cell)
+            found = self._pin_names(cell, pins, interface)
+            if found is None or (interface and any(len(interface[pin].nets) != 1 for pin in found)):
+                return None
+            named, cell_type = found, CellType(cell)
+        return self.registry.type_number(cell_type), [self.registry.pin_number(pin) for pin in named]
 
     def _pin_names(
         self, cell: str, pins: Sequence[str | None], interface: Mapping[str, PortBits] | None
@@ -174,13 +185,13 @@ class _Compiler:
                 self.scope.trouble(f"a terminal of gate {name} is {width}", "connect one bit to each terminal")
                 return
         nets = [bits[0] for bits in terminals]
-        least, most = (3, 3) if gate.startswith(("bufif", "notif")) else (2, len(nets))
+        least, most = (3, 3) if gate in _TWO_INPUTS else (2, len(nets))
         if not least <= len(nets) <= most:
             self.scope.trouble(f"gate {name} has {len(nets)} terminals", f"give {gate} its output and its inputs")
             return
-        outputs = nets[:-1] if gate in ("buf", "not") else nets[:1]
+        outputs = nets[:-1] if gate in _ONE_INPUT else nets[:1]
         inputs = nets[len(outputs) :]
-        pin_names = ["out", *(f"in{k}" for k in range(len(inputs)))]
+        pin_names = _gate_pins(len(inputs))
         for number, output in enumerate(outputs):
             if output <= CONSTANT_1:
                 self.scope.trouble(f"gate {name} drives a constant", "connect its output to a net")
@@ -191,7 +202,7 @@ class _Compiler:
         """Lay down a gate that stands for an operator and return its output, named as the gate."""
         name = self.scope.generate_name("assign")
         net = self.scope.generate_net("assign", name)
-        pin_names = ["out", *(f"in{k}" for k in range(len(inputs)))]
+        pin_names = _gate_pins(len(inputs))
         self._lay(name, CellType(gate, len(inputs)), self.scope.line, pin_names, [net, *inputs])
         return net
 
@@ -289,6 +300,10 @@ class _Compiler:
                 found = f"instance {name} of module {self.module.name} is there again, first on line {first[name]}"
                 self.scope.trouble(found, "give one of them another name")
             first.setdefault(name, self.scope.line)
+
+
+def _gate_pins(inputs: int) -> list[str]:
+    return ["out", *(f"in{k}" for k in range(inputs))]
 
 
 def _share(bits: list[int], width: int, place: int, count: int) -> list[int]:

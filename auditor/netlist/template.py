@@ -47,6 +47,8 @@ class Registry:
 
     def interface(self, cell: str) -> dict[str, PortBits] | None:
         """Return the ports of a cell or module in order, or None where no module describes it."""
+        if cell in self.templates:
+            return self.templates[cell].ports
         if cell not in self.interfaces:
             module = self.modules.get(cell)
             self.interfaces[cell] = None if module is None else Scope(module, TroubleList()).ports()

@@ -18,6 +18,7 @@ from importlib.metadata import version
 from pathlib import Path
 from typing import Any
 
+from auditor.errors import InternalError
 from auditor.verilog.draft import Declared, Draft, Waiting
 from auditor.verilog.items import direction_of
 from auditor.verilog.plain import GATES, plain_name
@@ -84,6 +85,8 @@ def _parse(piece: Sequence[Waiting]) -> Sequence[Any]:
     with contextlib.redirect_stdout(io.StringIO()), contextlib.redirect_stderr(io.StringIO()):
         tree = parser.parse("module m;\n" + "".join(f"{text};\n" for text in texts) + "endmodule\n")
     items: Sequence[Any] = tree.description.definitions[0].items
+    if len(items) != len(piece):
+        raise InternalError(f"pyverilog made {len(items)} of {len(piece)} items")
     return items
 
 

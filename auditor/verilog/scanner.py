@@ -197,7 +197,9 @@ class _Scanner:
         if match and not inner:
             self.position = match.end()
             return begun[:-1]
-        self._trouble(f"the statement that begins with {begun.split()[0]} is not ended", "end it with ;", line)
+        self._trouble(
+            f"the statement that begins with {begun.split(maxsplit=1)[0]} is not ended", "end it with ;", line
+        )
         self.position += inner.start() if inner else len(begun)
         return None
 

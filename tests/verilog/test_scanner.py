@@ -1,0 +1,81 @@
+"""The fast lane: what it reads by itself, what it leaves waiting, and that no text throws it."""
+
+import contextlib
+from pathlib import Path
+
+import pytest
+from hypothesis import HealthCheck, given, settings
+from hypothesis import strategies as st
+
+from auditor.errors import InputError, TroubleList
+from auditor.netlist.flatten import flatten
+from auditor.verilog.read import read_verilog
+from auditor.verilog.scanner import scan
+from tests.support.structural_texts import structural_texts
+
+_HEAD = "module m(input a, input [3:0] v, output y);\n"
+
+
+@pytest.mark.parametrize(
+    "text",
+    [
+        "INV u(.A(a), .Y(y));",
+        "INV \\u/1[0] ( .A ( \\v[3] [2] ) ,\n.Y( ) );",
+        "DFF u(a, v[1], {a, v[3:2]}, );",
+        "nand (y, a, v[0]), g(y, a, a); buf #(1,2) b(y, a);",
+        "assign y = a, {y, v[0]} = {v[1], 1'b0};",
+        "wire [7:-1] w, \\x(*y ; wire z = a; supply0 g; tri t; uwire u;",
+        "INV u(.A({a, v[1:0], 2'b1x}));",
+        "specify (a => y) = 1; endspecify;",
+    ],
+)
+def test_plain_text_never_waits_for_the_grammar(text: str) -> None:
+    """All that gate-level netlists are made of is read by the fast lane alone."""
+    troubles = TroubleList()
+    (draft,) = scan(_HEAD + text + "\nendmodule\n", "f.v", troubles)
+    assert not draft.waiting
+    assert not troubles.troubles
+
+
+def test_only_what_is_not_plain_waits() -> None:
+    """Of a statement only the items that are not plain wait, each with its place among the others."""
+    text = _HEAD + "INV a1(.A(a)), a2(.A(~a)), a3(.A(y));\nassign y = a, v[0] = a ^ y;\nwire [3-1:0] w;\nendmodule"
+    (draft,) = scan(text, "f.v", TroubleList())
+    assert [(wait.kind, wait.instances_before, wait.assigns_before) for wait in draft.waiting] == [
+        ("instance", 1, 0),
+        ("assign", 2, 1),
+        ("declaration", 2, 1),
+    ]
+    assert [instance.name for instance in draft.instances] == ["a1", "a3"]
+
+
+def test_after_a_parameter_nothing_is_plain() -> None:
+    """A name may then be a number, so that the fast lane must not take it for a net."""
+    (draft,) = scan(_HEAD + "INV u(.A(a));\nparameter P = 1;\nINV w(.A(P));\nendmodule", "f.v", TroubleList())
+    assert [instance.name for instance in draft.instances] == ["u"]
+    assert [wait.kind for wait in draft.waiting] == ["parameter", "instance"]
+
+
+@settings(deadline=None, max_examples=150, suppress_health_check=[HealthCheck.function_scoped_fixture])
+@given(
+    text=structural_texts(),
+    wounds=st.lists(
+        st.tuples(
+            st.integers(0, 10**6),
+            st.integers(0, 9),
+            st.sampled_from(["", ";", ")", "(", "[", "]", "{", "}", ",", ".", "\\", "'", '"', "=", "~", "\n", "0", "x",
+                             " wire ", " endmodule ", " module ", "/*", "(*", "*)", "//", "`", "#", ":", "assign "]),
+        ),
+        min_size=1,
+        max_size=4,
+    ),
+)  # fmt: skip
+def test_a_damaged_text_is_read_or_refused(tmp_path: Path, text: str, wounds: list[tuple[int, int, str]]) -> None:
+    """Whatever is cut out of a text or put into it, the answer is a netlist or an InputError."""
+    for place, length, inserted in wounds:
+        start = place % len(text)
+        text = text[:start] + inserted + text[start + length :]
+    (tmp_path / "n.v").write_text(text)
+    with contextlib.suppress(InputError):
+        netlist = flatten(read_verilog([tmp_path / "n.v"]), None)
+        assert len(netlist.first_pin) == len(netlist.instance_names) + 1
