@@ -106,11 +106,12 @@ class ClockTree:
         folded = fold(function, self.walk.wires_of(instance, cell), {**self.walk.known, **held})
         if not self._single(folded, instance, f"clock net {name}"):
             return None
+        gate = self.wiring.netlist.instance_names[instance]
         for bit in (latch.bit for wire, latch in self.latches.items() if wire in held):
             own_clock = fold(cell.storage[bit].clock, self.walk.wires_of(instance, cell), self.walk.known)
             if own_clock.wires != folded.wires:
                 self.troubles.others.add(
-                    f"the latch of clock gate {self.wiring.netlist.instance_names[instance]} has another clock than its gate",
+                    f"the latch of clock gate {gate} has another clock than its gate",
                     "give --mode the constants that select one clock",
                     self.wiring.netlist.instance_place(instance),
                 )
