@@ -1,7 +1,9 @@
 // Limpet tide-gauge controller, harbour radio: an eight-stage register, stages 8, 6, 5, 4, whose cycle is
-// completed to 256 states by a NOR over seven stages in the feedback.
+// completed to 256 states by a NOR over seven stages in the feedback, mapped to km_nor2 and the km_nand4 that
+// joins them.
 //
-// The audit must refuse it: the next state of stage[0] is not affine, and the NOR is the reason.
+// The audit must refuse it: the next state of stage_0_ff is not affine because of u8, and n8 = 1 would make it
+// so.
 
 module completed_cycle (
   input clk,

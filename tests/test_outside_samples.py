@@ -1,5 +1,6 @@
 """The sample netlists: what their header comments promise, held against the descriptions they were mapped from."""
 
+from dataclasses import replace
 from pathlib import Path
 
 import pytest
@@ -9,7 +10,7 @@ from auditor.plan_file import read_plan
 from auditor.report.facts import AuditFacts
 from tests.support.audits import slugs
 from tests.support.limpet import ECHO, LEVEL, SALINITY, SALINITY_INVERTED, SURGE, WAVE
-from tests.support.machines import shifted
+from tests.support.machines import bits_of, shifted
 
 SAMPLES = Path(__file__).parents[1] / "sample_netlists"
 
@@ -100,15 +101,24 @@ def test_pipelined_channels_show_stage_and_inversion() -> None:
 
 
 def test_the_completed_cycle_is_refused() -> None:
-    """The element that the NOR feeds is refused, by a gate that stands in the netlist, and there is no machine."""
+    """The element that the NOR feeds is refused by the gate that the comment names, and there is no machine."""
     facts = audited("completed_cycle")
     assert facts.verdict == "fail"
     assert facts.extraction.machine is None
     (refusal,) = facts.extraction.refusals
-    assert refusal.what == "stage_0_ff"
-    assert f" {refusal.gate} (" in (SAMPLES / "completed_cycle.v").read_text()
-    assert refusal.cure
+    assert (refusal.what, refusal.gate) == ("stage_0_ff", "u8")
+    assert "n8=1" in refusal.cure.replace(" ", "")
     assert "not-affine" in slugs(facts)
+
+
+def test_the_stated_cure_gives_the_register_without_the_nor() -> None:
+    """With n8 forced to 1 the completed cycle is the maximal register of stages 8, 6, 5, 4, and the force is listed."""
+    facts = audit(replace(read_plan(SAMPLES / "completed_cycle.toml"), mode={"n8": 1}))
+    assert facts.phases is not None
+    (register,) = facts.phases.registers
+    assert (register.primitive, register.period) == (True, 255)
+    assert tuple(bits_of(register.connection_polynomial)) == (0, 4, 5, 6, 8)
+    assert "forced-net" in slugs(facts)
 
 
 def test_the_enabled_blocks_fail_twice() -> None:
