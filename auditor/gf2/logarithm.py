@@ -1,15 +1,20 @@
 """Logarithms to base x in a field GF(2)[x]/(f), of many values at once: how far apart two streams are.
 
-Pohlig and Hellman (1978): a logarithm modulo the order of x is put together from logarithms in the small groups
-whose orders are the prime powers of it. Large primes are left out on demand, and then the logarithm is known
-modulo the rest.
+Pohlig and Hellman (1978): a logarithm modulo the order of x is put together from logarithms modulo the prime powers
+of it. Small ones have a group of their own that is searched (``steps``). Where one is too large for that, the index
+calculus (``calculus``) gives the logarithm modulo all of the larger ones at once. Primes can be left out on demand or
+for want of work allowed, and then the logarithm is known modulo the rest.
 """
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
+from math import gcd, prod
 
 from auditor.errors import InternalError
 from auditor.gf2.batch import Elements, Ring
+from auditor.gf2.calculus.field import field_logarithms
+from auditor.gf2.calculus.table import LARGEST_DEGREE, TableSource, make_factor_base
+from auditor.gf2.calculus.work import OutOfWork, Work
 from auditor.gf2.factorisation import is_irreducible
 from auditor.gf2.order import factors_of_mersenne, order_of_x
 from auditor.gf2.polynomial import degree, power_modulo, remainder
@@ -19,6 +24,8 @@ from auditor.notation import Polynomial
 _X = 0b10
 # One group of this many bits costs less than the powers that take the values into several smaller groups.
 _GROUP_BITS = 26
+# The largest group that is searched: with 1,000 values it takes about as long as an index calculus of degree 128.
+_SEARCHED_BITS = 38
 
 
 @dataclass(frozen=True, slots=True)
@@ -40,11 +47,23 @@ class Logarithms:
         return self.modulus == self.order
 
 
-def logarithms(values: Sequence[Polynomial], f: Polynomial, max_prime_bits: int = 38) -> Logarithms:
+def logarithms(
+    values: Sequence[Polynomial],
+    f: Polynomial,
+    max_prime_bits: int | None = None,
+    *,
+    progress: Callable[[str], None] | None = None,
+    work_limit: int | None = None,
+    tables: TableSource = make_factor_base,
+) -> Logarithms:
     """Return the logarithms to base x of the values modulo the irreducible f.
 
-    Prime powers of the order with more than ``max_prime_bits`` bits are left out. Every logarithm is verified by
-    exponentiation. ``ValueError`` if f is x, is reducible or has a degree for which the order of x is unknown.
+    Up to degree ``LARGEST_DEGREE`` all of them are complete unless ``max_prime_bits`` leaves out the prime powers of
+    the order with more bits, or the index calculus would take more than ``work_limit`` pair tests. Beyond that degree
+    only prime powers that can be searched are in the modulus. ``progress`` is told in short phrases what is being
+    done; ``tables`` makes or finds the factor base. Every logarithm is verified by exponentiation.
+
+    ``ValueError`` if f is x, is reducible or has a degree for which the order of x is unknown.
     """
     if not f & 1 or not is_irreducible(f):
         raise ValueError("logarithms need an irreducible polynomial other than x")
@@ -55,21 +74,36 @@ def logarithms(values: Sequence[Polynomial], f: Polynomial, max_prime_bits: int 
     elements = ring.pack(remainder(value, f) for value in values)
     # Zero to any power is zero, so this test refuses it as well.
     is_power = (ring.power(elements, order) == ring.pack([1])).all(axis=1)
-    found, modulus = _pohlig_hellman(ring, elements[is_power], order, max_prime_bits)
-    _verify(ring, elements[is_power], found, order // modulus)
+    members = elements[is_power]
+    parts = _prime_powers(order, ring.degree)
+    if max_prime_bits is not None:
+        parts = [part for part in parts if part.bit_length() <= max_prime_bits]
+    known = _large_part(ring, members, parts, Work(work_limit, progress), tables)
+    searched = _SEARCHED_BITS if max_prime_bits is None else max_prime_bits
+    for group in _groups([part for part in parts if known[1] % part and part.bit_length() <= searched]):
+        known = _combined(known, _searched(ring, members, order, group), group)
+    found, modulus = known
+    _verify(ring, members, found, order // modulus)
     remaining = iter(found)
     return Logarithms(tuple(next(remaining) if ok else None for ok in is_power.tolist()), modulus, order)
 
 
-def _groups(order: int, n: int, max_prime_bits: int) -> list[int]:
-    """Return pairwise coprime divisors of the order: its prime powers, small ones merged, too large ones dropped."""
-    groups: list[int] = []
+def _prime_powers(order: int, n: int) -> list[int]:
+    """Return the prime powers whose product is the order, primes ascending."""
+    powers = []
     for prime in factors_of_mersenne(n) or {}:
         part = 1
         while order % (part * prime) == 0:
             part *= prime
-        if part == 1 or part.bit_length() > max_prime_bits:
-            continue
+        if part > 1:
+            powers.append(part)
+    return powers
+
+
+def _groups(parts: Sequence[int]) -> list[int]:
+    """Return the parts with small ones merged."""
+    groups: list[int] = []
+    for part in parts:
         if groups and (groups[-1] * part).bit_length() <= _GROUP_BITS:
             groups[-1] *= part
         else:
@@ -77,20 +111,34 @@ def _groups(order: int, n: int, max_prime_bits: int) -> list[int]:
     return groups
 
 
-def _pohlig_hellman(ring: Ring, elements: Elements, order: int, max_prime_bits: int) -> tuple[list[int], int]:
-    """Return logarithms of elements of <x>, and the modulus to which they are known."""
-    results, modulus = [0] * len(elements), 1
-    for group in _groups(order, ring.degree, max_prime_bits):
-        cofactor = order // group
-        generator = power_modulo(_X, cofactor, ring.f)
-        residues = shared_logarithms(ring, ring.power(elements, cofactor), generator, group)
-        scale = pow(modulus, -1, group)
-        results = [
-            known + modulus * ((residue - known) * scale % group)
-            for known, residue in zip(results, residues, strict=True)
-        ]
-        modulus *= group
-    return results, modulus
+def _large_part(
+    ring: Ring, members: Elements, parts: Sequence[int], work: Work, tables: TableSource
+) -> tuple[list[int], int]:
+    """Return logarithms by index calculus and their modulus: 1 if it is not needed, not possible or not allowed."""
+    nothing = [0] * len(members), 1
+    if ring.degree > LARGEST_DEGREE or not len(members) or max(parts, default=1).bit_length() <= _SEARCHED_BITS:
+        return nothing
+    # The table holds for all polynomials of the degree, so it is made modulo all large primes, whatever this order.
+    whole = prod(part for part in _prime_powers((1 << ring.degree) - 1, ring.degree) if part.bit_length() > _GROUP_BITS)
+    modulus = gcd(whole, prod(parts))
+    try:
+        return field_logarithms(ring.unpack(members), ring.f, tables(ring.degree, whole, work), modulus, work), modulus
+    except OutOfWork:
+        return nothing
+
+
+def _searched(ring: Ring, members: Elements, order: int, group: int) -> list[int]:
+    """Return logarithms modulo one divisor of the order by a search of the group of that order."""
+    generator = power_modulo(_X, order // group, ring.f)
+    return shared_logarithms(ring, ring.power(members, order // group), generator, group)
+
+
+def _combined(known: tuple[list[int], int], residues: Sequence[int], group: int) -> tuple[list[int], int]:
+    """Return what is known when residues modulo a coprime number are added (Chinese remainders)."""
+    found, modulus = known
+    scale = pow(modulus, -1, group)
+    joined = [old + modulus * ((new - old) * scale % group) for old, new in zip(found, residues, strict=True)]
+    return joined, modulus * group
 
 
 def _verify(ring: Ring, elements: Elements, results: Sequence[int], cofactor: int) -> None:

@@ -1,0 +1,108 @@
+"""Logarithms of arbitrary elements from those of a factor base.
+
+An element is written as a fraction of two polynomials that have factors of moderate degree. Those beyond the base
+are brought down by one relation each in which the other factors are in the base (Coppersmith 1984).
+"""
+
+from collections.abc import Sequence
+
+from auditor.gf2.calculus.divisors import Divisors
+from auditor.gf2.calculus.factor_base import FactorBase, irreducibles
+from auditor.gf2.calculus.lattice import Search, find_smooth, short_fractions
+from auditor.gf2.calculus.sieve import Shape
+from auditor.gf2.calculus.work import OutOfWork, Work
+from auditor.gf2.factorisation import factor
+from auditor.gf2.polynomial import degree, divide, multiply_modulo
+from auditor.notation import Polynomial
+
+_BEYOND = 5  # an element is split into factors of the base degree and this much more
+_ATTEMPTS = 40
+
+Product = dict[Polynomial, int]
+
+
+class Descent:
+    """Finds logarithms in the canonical field of one factor base, modulo its modulus."""
+
+    def __init__(self, base: FactorBase, work: Work) -> None:
+        self._base, self._work = base, work
+        self._primes = irreducibles(base.degree).tolist()
+        self._divisors = Divisors(base.degree, 128)
+        self._known = {p: log for p, log in zip(self._primes, base.logs, strict=True) if log is not None}
+
+    def logarithms(self, elements: Sequence[Polynomial]) -> list[int]:
+        """Return the logarithms of elements of the field other than zero; ``OutOfWork`` if the search ends before.
+
+        An element that resists is multiplied by one after another of the base.
+        """
+        found: dict[int, int] = {}
+        for prime in [1, *list(self._known)[:_ATTEMPTS]]:
+            numbers = [number for number in range(len(elements)) if number not in found]
+            if not numbers:
+                return [found[number] for number in range(len(elements))]
+            multiples = [multiply_modulo(elements[number], prime, self._base.field) for number in numbers]
+            splits = self._split(multiples)
+            self._solve_beyond({p for product in splits.values() for p in product if p not in self._known})
+            for k, product in splits.items():
+                log = self._log(product)
+                if log is not None:
+                    found[numbers[k]] = (log - self._known.get(prime, 0)) % self._base.modulus
+        raise OutOfWork
+
+    def _log(self, product: Product) -> int | None:
+        if not all(p in self._known for p in product):
+            return None
+        return sum(exponent * self._known[p] for p, exponent in product.items()) % self._base.modulus
+
+    def _factors(self, polynomial: Polynomial) -> Product:
+        factors = self._divisors.of(polynomial)
+        product = {self._primes[index]: exponent for index, exponent in factors.exponents.items()}
+        if degree(factors.rest) > self._base.degree:
+            # Below twice the bound it can be no product.
+            single = degree(factors.rest) < 2 * (self._base.degree + 1)
+            product.update({factors.rest: 1} if single else factor(factors.rest))
+        return product
+
+    def _split(self, elements: Sequence[Polynomial]) -> dict[int, Product]:
+        """Return elements as products, by number; some may be left out."""
+        searches = []
+        for element in elements:
+            (r0, s0), (r1, s1) = short_fractions(element, self._base.field)
+            searches.append(Search((r0, r1), (s0, s1)))
+        products: dict[int, Product] = {}
+
+        def accept(number: int, above: Polynomial, below: Polynomial) -> bool:
+            products[number] = _divided(self._factors(above), self._factors(below))
+            self._work.report(f"elements split {len(products)}/{len(elements)}")
+            return True
+
+        find_smooth(searches, self._base.degree + _BEYOND, accept, self._work)
+        return products
+
+    def _solve_beyond(self, primes: set[Polynomial]) -> None:
+        """Find logarithms of irreducible polynomials beyond the base, where a relation with only known ones exists."""
+        shape = Shape(self._base.field)
+        wanted = sorted(primes)
+        searches = [_through(shape, p) for p in wanted]
+        quarter = pow(4, -1, self._base.modulus)
+
+        def accept(number: int, cofactor: Polynomial, right: Polynomial) -> bool:
+            rest, fourfold = self._log(self._factors(cofactor)), self._log(self._factors(right))
+            if rest is None or fourfold is None:
+                return False
+            self._known[wanted[number]] = (fourfold * quarter - rest) % self._base.modulus
+            return True
+
+        self._work.report(f"{len(wanted)} factors beyond the base")
+        find_smooth(searches, self._base.degree, accept, self._work)
+
+
+def _divided(above: Product, below: Product) -> Product:
+    return {p: above.get(p, 0) - below.get(p, 0) for p in above | below}
+
+
+def _through(shape: Shape, p: Polynomial) -> Search:
+    """Return the search among the relations in which p divides C; its left part is C / p."""
+    (v0, u0), (v1, u1) = short_fractions(shape.power(p), p)
+    left0, left1 = (divide(shape.left(u, v), p)[0] for u, v in ((u0, v0), (u1, v1)))
+    return Search((left0, left1), (shape.right(u0, v0), shape.right(u1, v1)), power=4)
