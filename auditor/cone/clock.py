@@ -103,7 +103,8 @@ class ClockTree:
         held = self._held_open(instance, cell, function, name)
         if held is None:
             return None
-        folded = fold(function, self.walk.wires_of(instance, cell), {**self.walk.known, **held})
+        known = {**self.walk.known, **held} if held else self.walk.known
+        folded = fold(function, self.walk.wires_of(instance, cell), known)
         if not self._single(folded, instance, f"clock net {name}"):
             return None
         gate = self.wiring.netlist.instance_names[instance]

@@ -4,9 +4,9 @@ from collections import deque
 from collections.abc import Iterable, Mapping
 
 from auditor.cells.function import TERNARY
-from auditor.cells.library import Cell, Function
+from auditor.cells.library import Function
 from auditor.cone.names import find_net
-from auditor.cone.wiring import INPUT, NO_DRIVER, Wiring
+from auditor.cone.wiring import NO_DRIVER, Wiring, gate_functions
 from auditor.errors import TroubleList
 from auditor.netlist.netlist import CONSTANT_0, CONSTANT_1, Netlist
 
@@ -40,11 +40,9 @@ def spread(wiring: Wiring, known: dict[int, int], fresh: Iterable[int]) -> None:
     """
     waiting = deque(fresh)
     while waiting:
-        for pin in wiring.pins_on(waiting.popleft(), INPUT):
-            instance, _ = wiring.pin_of(pin)
+        for instance in wiring.gate_inputs_on(waiting.popleft()):
             cell = wiring.cell(instance)
-            if cell is None or not (functions := _gate_functions(cell)):
-                continue
+            functions = gate_functions(cell) if cell else []
             nets = wiring.nets_of(instance)
             for output, function in functions:
                 net = nets.get(output)
@@ -80,14 +78,3 @@ def check_forced(wiring: Wiring, mode: Mapping[int, int], ports: frozenset[int],
         elif net not in known:
             forced.append(net)
     return forced
-
-
-def _gate_functions(cell: Cell) -> list[tuple[str, Function]]:
-    """Return the outputs that depend on input pins at all: those of a flip-flop mostly do not."""
-    return [
-        (pin.name, pin.function)
-        for pin in cell.pins.values()
-        if pin.function is not None
-        and pin.three_state is None
-        and any(name in cell.pins for name in pin.function.inputs)
-    ]

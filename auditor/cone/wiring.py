@@ -4,8 +4,9 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 
 import numpy as np
+import numpy.typing as npt
 
-from auditor.cells.library import Cell, CellLibrary
+from auditor.cells.library import Cell, CellLibrary, Function
 from auditor.cells.primitives import find_cell
 from auditor.netlist.netlist import OPEN, Column, Netlist
 
@@ -22,6 +23,7 @@ class Wiring:
     """The netlist with directions. Shapes: P pins, N nets, T cell types.
 
     ``cells``      (T,) the cell of each type, None where no description has it
+    ``has_gate``   (T,) whether an output of the cell is a function of input pins
     ``role``       (P,) INPUT, OUTPUT, POWER, UNLISTED (the cell is known, the pin is not) or UNKNOWN_CELL
     ``instance``   (P,) the instance of each pin
     ``driver``     (N,) the output pin that drives the net, NO_DRIVER or SEVERAL_DRIVERS
@@ -30,6 +32,7 @@ class Wiring:
 
     netlist: Netlist
     cells: tuple[Cell | None, ...]
+    has_gate: npt.NDArray[np.bool_]
     role: Column
     instance: Column
     driver: Column
@@ -46,6 +49,13 @@ class Wiring:
             if self.role[pin] == role:
                 yield pin
 
+    def gate_inputs_on(self, net: int) -> list[int]:
+        """Return the instances that read a net and have an output which input pins decide: no plain flip-flop."""
+        pins = self.by_net[self.net_first[net] : self.net_first[net + 1]]
+        instances = self.instance[pins[self.role[pins] == INPUT]]
+        gates = instances[self.has_gate[self.netlist.instance_type[instances]]]
+        return list(dict.fromkeys(gates.tolist()))
+
     def pin_of(self, pin: int) -> tuple[int, str]:
         """Return the instance and the name of a pin."""
         return int(self.instance[pin]), self.netlist.pin_names[int(self.netlist.pin_name[pin])]
@@ -60,6 +70,17 @@ def find_cells(netlist: Netlist, library: CellLibrary) -> tuple[Cell | None, ...
     return tuple(find_cell(library, *kind) for kind in netlist.cell_types)
 
 
+def gate_functions(cell: Cell) -> list[tuple[str, Function]]:
+    """Return the outputs that input pins decide, with their functions; three-state outputs are left out."""
+    return [
+        (pin.name, pin.function)
+        for pin in cell.pins.values()
+        if pin.function is not None
+        and pin.three_state is None
+        and any(name in cell.pins for name in pin.function.inputs)
+    ]
+
+
 def connect(netlist: Netlist, library: CellLibrary) -> Wiring:
     """Find the role of every pin and the driver of every net."""
     cells = find_cells(netlist, library)
@@ -68,7 +89,8 @@ def connect(netlist: Netlist, library: CellLibrary) -> Wiring:
     role = _pin_roles(netlist, cells, instance)
     by_net = np.argsort(netlist.pin_net, kind="stable").astype(np.int32)
     net_first = np.searchsorted(netlist.pin_net[by_net], np.arange(nets + 1)).astype(np.int32)
-    return Wiring(netlist, cells, role, instance, _drivers(netlist, role), by_net, net_first)
+    has_gate = np.array([cell is not None and bool(gate_functions(cell)) for cell in cells], dtype=np.bool_)
+    return Wiring(netlist, cells, has_gate, role, instance, _drivers(netlist, role), by_net, net_first)
 
 
 def _pin_roles(netlist: Netlist, cells: tuple[Cell | None, ...], instance: Column) -> Column:
