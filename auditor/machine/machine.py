@@ -74,8 +74,8 @@ class LinearMachine:
     ``transition``    (n,) rows of A, n bits each          ``input_matrix``  (n,) rows of B, k bits each
     ``offset``        the vector a as an int, bit i = row i
     ``registers``     the feedback registers: tuples of element numbers, ascending
-    ``half_cycle``    elements that take their data inside the cycle (steps 1 to 3): a row that reads one was
-                      already replaced by what it holds, so such a column of A and c may be zero
+    ``half_cycle``    elements that take their data inside the cycle (steps 1 to 3); a next state that reads one of an
+                      earlier step has what it takes in its place, so such a column of A may be zero
     ``reset_known``, ``reset_state``   which elements the asynchronous pins set, and to what (n bits each)
     ``transient``     T, the nilpotency index of A         ``cycling_degree``  rank of A^n
     ``xor_fan_out``   (n,) pairs (XOR node, input) reached from the element

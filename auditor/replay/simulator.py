@@ -58,8 +58,8 @@ class Batch:
 
     def value(self, values: Words) -> Words:
         """Return (g, words)."""
-        operands = [values[row] for row in self.inputs]
-        return np.broadcast_to(self.function.evaluate(operands, _WORDS), (len(self.outputs), values.shape[1]))
+        value = self.function.evaluate([values[row] for row in self.inputs], _WORDS)
+        return value if value.ndim else np.full((len(self.outputs), values.shape[1]), value)
 
 
 @dataclass(slots=True)
@@ -82,6 +82,7 @@ class Simulator:
     _data: list[Batch] = field(init=False)
     _forces: list[tuple[int, list[Batch]]] = field(init=False)
     _is_latch: Words = field(init=False)
+    _clock_is_data: bool = field(init=False)
     _stored: dict[int, dict[str, int]] = field(default_factory=dict)  # instance → state variable → wire
 
     def __post_init__(self) -> None:
@@ -99,6 +100,7 @@ class Simulator:
         ]
         latches = [self._storage(bit).kind == "latch" for bit in self.bits]
         self._is_latch = np.where(latches, ALL_ONES, np.uint64(0))[:, None].astype(np.uint64)
+        self._clock_is_data = self.cone.clock in self.cone.free_inputs
         self._fill()
 
     def _fill(self) -> None:
@@ -141,8 +143,9 @@ class Simulator:
         self.values[self.slots[self.cone.clock]] = ALL_ONES if level else 0
         self._evaluate(self._clock_gates)
         rises = np.bitwise_not(before | self._is_latch) & self._clock_values()
-        self._set_state(_select(rises, taken, self._state()))
-        self.settle()
+        if rises.any() or self._is_latch.any() or self._clock_is_data:
+            self._set_state(_select(rises, taken, self._state()))
+            self.settle()
 
     def _state(self) -> Words:
         return self.values[: len(self.bits)]
