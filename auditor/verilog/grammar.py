@@ -20,7 +20,7 @@ from typing import Any
 
 from auditor.errors import InternalError
 from auditor.verilog.draft import Declared, Draft, Waiting
-from auditor.verilog.items import direction_of
+from auditor.verilog.items import DECLARED, direction_of
 from auditor.verilog.plain import GATES, plain_name
 from auditor.verilog.statements import Assign, Connection, Direction, Instance, Range
 from auditor.verilog.tree import Parameters, RefusedError, expression_of, integer_of, parameter_of
@@ -123,7 +123,8 @@ def _element(wait: Waiting, node: Any, parameters: Parameters) -> Declared | Ins
     if kind == "Assign" and wait.kind == "assign":
         left = expression_of(node.left.var, parameters)
         return Assign(left, expression_of(node.right.var, parameters), wait.item.line)
-    if kind == "Decl" and wait.kind == "declaration":
+    # pyverilog takes more for a declaration than the language does, and arrays of nets.
+    if kind == "Decl" and wait.kind == "declaration" and DECLARED.fullmatch(wait.item.text.lstrip()):
         return _declared(node.list, wait.item.line, parameters)
     if kind == "Decl" and wait.kind == "parameter":
         name, value = parameter_of(node.list[0], parameters)

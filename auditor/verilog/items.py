@@ -32,7 +32,7 @@ _ONE_INSTANCE = re.compile(rf"({NAME}){S}({NAME}|){S}\((.*)\){S}", re.DOTALL)
 _DELAY = r"#\s*(?:[\d.]+|\([^()]*\)|[A-Za-z_]\w*)"
 _CELL_HEAD = re.compile(rf"({NAME}){S}(?:{_DELAY})?")
 _ASSIGN_HEAD = re.compile(rf"assign\b{S}(?:{_DELAY})?")
-_DECLARED = re.compile(
+DECLARED = re.compile(
     rf"(?:(input|output|inout)\b{S})?(?:(wire|tri|uwire|reg|supply0|supply1)\b{S})?(signed\b{S})?"
     rf"(\[[^\]\\]*+\]{S})?(?:{_DELAY}{S})?({NAME}){S}(?:=(.*))?",
     re.DOTALL,
@@ -77,7 +77,7 @@ class Items:
         prefix: tuple[str, ...] | None = None
         for text, line in items:
             pin = _NAMED_BODY.fullmatch(text) and PINS.match(text)
-            declared = _DECLARED.fullmatch(text)
+            declared = DECLARED.fullmatch(text)
             if pin or declared is None:
                 name = plain_name(pin[1]) if pin else text.strip()
                 try:
@@ -100,16 +100,17 @@ class Items:
         """Read a declaration that is no plain list of names."""
         prefix: list[str] | None = None
         for item in split_list(statement, line):
-            match = _DECLARED.fullmatch(item.text)
+            match = DECLARED.fullmatch(item.text)
             if not match:
                 draft.wait("declaration", item)
                 continue
             *head, name, value = match.groups(default="")
             if prefix is None:
                 prefix = head
-            self._declare(draft, (*prefix, name), item.line)
+            own_line = item.line + item.text.count("\n", 0, match.start(5))
+            self._declare(draft, (*prefix, name), own_line)
             if value:
-                self._assign_item(draft, Item(f"assign {name} = {value}", item.line))
+                self._assign_item(draft, Item(f"assign {name} = {value}", own_line))
 
     def _declare(self, draft: Draft, parts: tuple[str, ...], line: int) -> None:
         """Enter one declared name given as direction, kind, ``signed``, range and name, each as written."""
@@ -191,7 +192,7 @@ class Items:
                 pairs = []
         except NotPlainError:
             return None
-        return Instance(self.names[cell], self.names[name], tuple(map(connect, pairs)), item.line, primitive)
+        return Instance(plain_name(cell), plain_name(name), tuple(map(connect, pairs)), item.line, primitive)
 
 
 def direction_of(word: str) -> Direction | None:

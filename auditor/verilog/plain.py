@@ -95,9 +95,11 @@ def _bits_of_digits(digits: str, base: str) -> str:
 
 
 class PlainNames(dict[str, str]):
-    """Names as written → names, computed once each."""
+    """Names as written → names, computed once each; raises NotPlainError for a keyword."""
 
     def __missing__(self, text: str) -> str:
+        if text in RESERVED:
+            raise NotPlainError
         name = self[text] = plain_name(text)
         return name
 

@@ -37,7 +37,7 @@ _SPECIFY_END = re.compile(r"\\\S++|\b(endspecify)\b")
 _HEAD = re.compile(rf"(?:macro)?module\b{S}({NAME}){S}")
 _LABEL = re.compile(rf"{S}:{S}{NAME}")
 _NAME_LIST = re.compile(
-    rf"{S}(input|output|inout|wire|tri|supply0|supply1)\b{S}(?:(wire|tri)\b{S})?(?:{BOUNDS}{S})?"
+    rf"{S}(?:(input|output|inout)\b{S}(?:(wire|tri)\b{S})?|(wire|tri|supply0|supply1)\b{S})(?:{BOUNDS}{S})?"
     rf"({NAME}{S}(?:,{S}{NAME}{S})*+);"
 )
 _BARE_NAME = re.compile(r"[A-Za-z_][\w$]*+|\\\S++")
@@ -101,7 +101,7 @@ class _Scanner:
             except NotPlainError:
                 break
             own = plain_name(name) if name[:1] == "\\" else name
-            append(instantiate((names[cell], own, connections, line, primitive, None)))
+            append(instantiate((cell if primitive else names[cell], own, connections, line, primitive, None)))
             position = match.end()
         self.position, self.counted, self.line = position, counted, line
 
@@ -168,10 +168,10 @@ class _Scanner:
         match = _NAME_LIST.match(self.text, self.position)
         if not match:
             return False
-        word, kind, left, right, names = match.groups()
-        direction, kind = direction_and_kind(word, kind)
+        word, port_kind, kind, left, right, names = match.groups()
+        direction, kind = direction_and_kind(word or kind, port_kind)
         bounds = Range(int(left), int(right)) if left else None
-        line = self._line_at(match.start(5))
+        line = self._line_at(match.start(6))
         for number, chunk in enumerate(names.split("\n"), line):
             written = _BARE_NAME.findall(chunk)
             if not RESERVED.isdisjoint(written):

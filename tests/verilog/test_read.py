@@ -61,12 +61,12 @@ def test_ports_may_have_another_inside(tmp_path: Path) -> None:
 def test_items_of_a_statement_have_their_own_lines(tmp_path: Path) -> None:
     """Instances, assigns and names of one statement stand on the lines on which they are written."""
     gates = "nand #(1,2)\n g(y, a, v[0]),\n h(y, a,\n v[1]);\n"
-    text = _HEAD + gates + "assign #1 y = a,\n v[2] = ~a;\nwire b = a,\n c;\nendmodule"
+    text = _HEAD + gates + "assign #1 y = a,\n v[2] = ~a;\nwire\n b = a,\n c; wire\n d;\nendmodule"
     module = _read(tmp_path, text)
     assert [(instance.name, instance.line) for instance in module.instances] == [("g", 2), ("h", 4)]
-    assert [assign.line for assign in module.assigns] == [6, 7, 8]
-    assert module.assigns[2] == Assign("b", "a", 8)
-    assert (module.nets["b"].line, module.nets["c"].line) == (8, 9)
+    assert [assign.line for assign in module.assigns] == [6, 7, 9]
+    assert module.assigns[2] == Assign("b", "a", 9)
+    assert [module.nets[name].line for name in "bcd"] == [9, 10, 11]
 
 
 def test_unnamed_gates_get_names_that_nobody_has(tmp_path: Path) -> None:
@@ -153,6 +153,9 @@ _PLAIN = "mend the text, or give it as plain structural Verilog"
         (_HEAD + "X u(.A(a);\nX w(.A(a)) b;\nendmodule", [
             f"n.v:2: syntax error: the instance ends too early; {_PLAIN}", f"n.v:3: syntax error at b; {_PLAIN}"]),
         (_HEAD + "wire a b;\nendmodule", [f"n.v:2: syntax error at b; {_PLAIN}"]),
+        (_HEAD + "wire wire b;\nwire c [3:0];\nendmodule", [
+            f"n.v:2: found wire where an item of a netlist should stand; {_PLAIN}",
+            f"n.v:3: found wire where an item of a netlist should stand; {_PLAIN}"]),
         (_HEAD + "3;\nendmodule", ["n.v:2: found 3 where a statement should begin; mend the text"]),
         (_HEAD + "assign y = a + a;\nendmodule", [
             "n.v:2: found +, which is not structural; write it with ~ & | ^ ?: or as gates"]),

@@ -49,6 +49,14 @@ def test_only_what_is_not_plain_waits() -> None:
     assert [instance.name for instance in draft.instances] == ["a1", "a3"]
 
 
+@pytest.mark.parametrize("text", ["INV u(.wire(a));", "INV u(.A(wire));", "INV wire(.A(a));", "nand wire(y, a, a);"])
+def test_keywords_are_never_names(text: str) -> None:
+    """The fast lane leaves a statement that uses a keyword as a name to the grammar, which refuses it."""
+    (draft,) = scan(_HEAD + text + "\nendmodule", "f.v", TroubleList())
+    assert not draft.instances
+    assert len(draft.waiting) == 1
+
+
 def test_after_a_parameter_nothing_is_plain() -> None:
     """A name may then be a number, so that the fast lane must not take it for a net."""
     (draft,) = scan(_HEAD + "INV u(.A(a));\nparameter P = 1;\nINV w(.A(P));\nendmodule", "f.v", TroubleList())
