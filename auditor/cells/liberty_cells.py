@@ -3,19 +3,19 @@
 What cannot be taken from the description ends up in words in ``not_understood``: such a cell still loads its nets.
 """
 
-from collections.abc import Collection, Mapping
+from collections.abc import Mapping
 from dataclasses import dataclass, replace
 from typing import Literal
 
+from auditor.cells.compose import NotUnderstood, put_into_each_other
 from auditor.cells.expression import ExpressionError, parse_expression
 from auditor.cells.liberty import Group
-from auditor.cells.liberty_pins import MOST_BITS, DeclaredPins, LibraryDefaults, NotUnderstood, declared_pins, number
+from auditor.cells.liberty_pins import MOST_BITS, DeclaredPins, LibraryDefaults, declared_pins, number
 from auditor.cells.library import Cell, Function, Pin, Storage
 from auditor.cells.state_table import state_table
 from auditor.cells.storage import Described, rewrite, settle
 from auditor.notation import SourcePlace
 
-_LONGEST_PROGRAM = 100_000  # internal pins are put into the functions that use them; what grows beyond is no cell
 _CLOCK_AND_DATA = {"ff": ("clocked_on", "next_state"), "latch": ("enable", "data_in")}
 _FORCED: dict[str, Literal["0", "1", ""]] = {"H": "1", "L": "0"}
 _OPPOSITE: dict[str, Literal["0", "1", ""]] = {"H": "0", "L": "1"}
@@ -52,7 +52,7 @@ def _behaviour(group: Group, declared: DeclaredPins) -> tuple[dict[str, Pin], tu
     variables = {variable for bank in banks for name in bank.names for variable in bank.bits_of(name)}
     if table and table.bit:
         variables.add(table.bit.first)
-    functions = _put_into_each_other(written, variables)
+    functions = put_into_each_other(written, variables)
     inner = {name: function for name, function in functions.items() if name not in variables}
     described = [bit for bank in banks for bit in bank.described(reader, inner)]
     if table and table.bit:
@@ -85,28 +85,6 @@ def _refuse_unknown_names(pins: Mapping[str, Pin], storage: tuple[Storage, ...])
             if name not in known:
                 why = "a pin without a function" if name in pins else "neither a pin nor a state variable"
                 raise NotUnderstood(f"{what} uses {name}, which is {why}")
-
-
-def _put_into_each_other(functions: Mapping[str, Function], variables: Collection[str]) -> dict[str, Function]:
-    """Return the functions of pins with the functions of other (internal, output) pins put in for their names.
-
-    A name that is also a state variable means the variable. Raises ``NotUnderstood`` where pins depend in a circle.
-    """
-    waiting, done = dict(functions), dict[str, Function]()
-    while waiting:
-        ready = [
-            name
-            for name, function in waiting.items()
-            if not any(used in waiting and used not in variables for used in function.inputs)
-        ]
-        if not ready:
-            raise NotUnderstood(f"the functions of its pins {', '.join(waiting)} depend on each other in a circle")
-        usable = {name: function for name, function in done.items() if name not in variables}
-        for name in ready:
-            done[name] = rewrite(waiting.pop(name), usable)
-            if len(done[name].program) > _LONGEST_PROGRAM:
-                raise NotUnderstood(f"the function of its pin {name} has more than {_LONGEST_PROGRAM} terms")
-    return done
 
 
 @dataclass(frozen=True, slots=True)

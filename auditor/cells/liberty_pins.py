@@ -6,6 +6,7 @@ from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from typing import Literal, TypeAlias
 
+from auditor.cells.compose import NotUnderstood
 from auditor.cells.liberty import Group
 from auditor.cells.library import Pin
 
@@ -20,10 +21,6 @@ _DIRECTIONS: dict[str, Direction] = {
 GATE_ROLES = ("clock", "enable", "test", "obs", "out")  # as in clock_gate_enable_pin
 MOST_BITS = 65536  # of a bus or a bank; more is a slip of the pen
 _RANGE = re.compile(r"(.*)\[(-?\d+):(-?\d+)\]")
-
-
-class NotUnderstood(Exception):  # noqa: N818 - it is an answer, not a failure
-    """Why a cell's behaviour cannot be taken from its description: a clause that fits after the cell's name."""
 
 
 @dataclass(frozen=True, slots=True)

@@ -1,5 +1,6 @@
 """Reads the files that describe cells into a ``CellLibrary``: the main verb of this room."""
 
+import re
 from collections.abc import Callable, Iterator, Mapping, Sequence
 from functools import partial
 from pathlib import Path
@@ -11,11 +12,17 @@ from auditor.cells.liberty import Group, library_start, parse_liberty
 from auditor.cells.liberty_cells import liberty_cell
 from auditor.cells.liberty_pins import library_defaults
 from auditor.cells.library import Cell, CellLibrary
+from auditor.cells.model import ModuleText, Primitive
+from auditor.cells.model_cells import model_cell
+from auditor.cells.model_split import split_models
+from auditor.cells.model_text import Preprocessor
 from auditor.cells.source_text import read_text
-from auditor.errors import InputError, Trouble, fail
+from auditor.errors import InputError, Trouble, TroubleList, fail
 from auditor.notation import SourcePlace
 
 _EXPRESSIONS = ("function", "three_state", "next_state", "clocked_on", "enable", "data_in", "clear", "preset")
+_VERILOG = (".v", ".v.gz", ".sv", ".vh")
+_MODELS = re.compile(r"^[ \t]*+(?:(?:macro)?module[ \t]++[\w\\]|primitive[ \t]++[\w\\]|`[a-z])", re.MULTILINE)
 
 
 class _Source(NamedTuple):
@@ -47,20 +54,24 @@ class _CellsOnDemand(Mapping[str, Cell]):
         return len(self._sources)
 
 
-def read_cells(paths: Sequence[Path]) -> CellLibrary:
-    """Return the cells that Liberty files and cell tables describe; of several descriptions the last counts.
+def read_cells(
+    paths: Sequence[Path], defines: Mapping[str, str] | None = None, folders: Sequence[Path] = ()
+) -> CellLibrary:
+    """Return the cells that Liberty files, Verilog cell models and cell tables describe; the last description counts.
 
-    What a file is is decided by its content. A Liberty cell whose behaviour cannot be read is ``not_understood``.
+    What a file is is decided by its content. ``defines`` are the macros that hold in cell models, ``folders`` where
+    their includes are sought besides their own. A cell whose behaviour cannot be read is ``not_understood``.
 
-    Raises ``InputError`` with the troubles of all files: what cannot be opened or is no such file, syntax errors,
-    and everything that is wrong in a cell table.
+    Raises ``InputError`` with the troubles of all files: what cannot be opened or is no such file, syntax errors, wrong
+    directives and primitives, and everything that is wrong in a cell table.
     """
     sources: dict[str, _Source] = {}
     notes: list[str] = []
     troubles: list[Trouble] = []
+    models = _ModelReader(defines or {}, folders)
     for path in paths:
         try:
-            described, more_notes = _read_file(path)
+            described, more_notes = _read_file(path, models)
         except InputError as error:
             troubles += error.troubles
             continue
@@ -72,11 +83,35 @@ def read_cells(paths: Sequence[Path]) -> CellLibrary:
     return CellLibrary(_CellsOnDemand(sources), tuple(notes))
 
 
-def _read_file(path: Path) -> tuple[dict[str, _Source], list[str]]:
+class _ModelReader:
+    """Reads files of cell models, which share their macros and may hold parts of each other."""
+
+    def __init__(self, defines: Mapping[str, str], folders: Sequence[Path]) -> None:
+        self._preprocessor = Preprocessor(defines, folders)
+        self._models: dict[str, Primitive | ModuleText] = {}
+
+    def read(self, path: Path, text: str) -> tuple[dict[str, _Source], list[str]]:
+        """Return the cells of one file and notes on it. Raises ``InputError``."""
+        troubles = TroubleList()
+        sources: dict[str, _Source] = {}
+        notes: list[str] = []
+        for model in split_models(self._preprocessor.read(path, text, troubles), troubles):
+            source = _Source(model.place, partial(model_cell, model.name, self._models))
+            notes += _overridden(sources, {model.name: source})
+            sources[model.name] = source
+            self._models[model.name] = model
+        troubles.raise_any()
+        return sources, notes if sources else [f"{path} describes no cells"]
+
+
+def _read_file(path: Path, models: _ModelReader) -> tuple[dict[str, _Source], list[str]]:
     """Return the cells of one file and notes on it."""
     text, file = read_text(path), str(path)
     start = library_start(text)
-    if looks_like_table(text if start < 0 else text[:start]):
+    head = text if start < 0 else text[:start]
+    if path.name.lower().endswith(_VERILOG) or _MODELS.search(head):
+        return models.read(path, text)
+    if looks_like_table(head):
         cells = table_cells(text, file)
         whole = SourcePlace(file)
         return {
@@ -88,7 +123,8 @@ def _read_file(path: Path) -> tuple[dict[str, _Source], list[str]]:
     if name.endswith(".toml"):
         table_cells(text, file)  # tells what is wrong with it, if anything is
         return {}, [f"{file} describes no cells"]
-    raise fail("this is neither a Liberty file nor a cell table", "give one of these", SourcePlace(file))
+    found = "this is neither a Liberty file nor cell models nor a cell table"
+    raise fail(found, "give one of these", SourcePlace(file))
 
 
 def _liberty_sources(libraries: Sequence[Group], file: str) -> tuple[dict[str, _Source], list[str]]:

@@ -30,11 +30,11 @@ def read_text(path: Path) -> str:
         except (EOFError, gzip.BadGzipFile, zlib.error):
             raise fail("the gz file is cut off or damaged", "fetch or pack it again", place) from None
     if b"\0" in data:
-        raise fail("this is a binary file", "give a Liberty file or a cell table", place)
+        raise fail("this is a binary file", "give a Liberty file, Verilog cell models or a cell table", place)
     try:
         text = data.decode("utf-8-sig")
     except UnicodeDecodeError:
         text = data.decode("latin-1")
     if not text.strip():
-        raise fail("the file is empty", "give a Liberty file or a cell table", place)
+        raise fail("the file is empty", "give a Liberty file, Verilog cell models or a cell table", place)
     return text.replace("\r\n", "\n").replace("\r", "\n") if "\r" in text else text

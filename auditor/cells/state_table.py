@@ -9,8 +9,9 @@ import re
 from collections.abc import Mapping, Sequence
 from typing import NamedTuple
 
+from auditor.cells.compose import NotUnderstood
 from auditor.cells.liberty import Group
-from auditor.cells.liberty_pins import DeclaredPin, NotUnderstood
+from auditor.cells.liberty_pins import DeclaredPin
 from auditor.cells.library import Function
 from auditor.cells.storage import Described
 from auditor.cells.transitions import MOST_INPUTS, Transitions, recognise
