@@ -50,7 +50,13 @@ def audit_parser() -> argparse.ArgumentParser:
     add("--plan", metavar="F", help="the reviewer's plan, a TOML file")
     add("--cells", action="append", default=[], metavar="F", help="cell library or cell table; may be repeated")
     add("--top", metavar="M", help="top module")
-    add("--mode", action="append", default=[], metavar="NET=0|1", help="hold a port or net; may be repeated")
+    add(
+        "--mode",
+        action="append",
+        default=[],
+        metavar="NET=0|1",
+        help="hold a port or net in every mode; may be repeated",
+    )
     add(
         "--channels",
         action="append",

@@ -2,14 +2,17 @@
 
 import hashlib
 import platform
-from collections.abc import Callable
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import replace
 from importlib.metadata import version
 from pathlib import Path
+from typing import TypeVar
 
 from auditor.cells.library import CellLibrary
 from auditor.cells.read import read_cells
 from auditor.cone.cone import Cone
 from auditor.cone.extract import extract_cone
+from auditor.errors import InputError, Trouble, fail
 from auditor.machine.machine import Extraction
 from auditor.machine.prove import prove_machine
 from auditor.netlist.flatten import flatten
@@ -26,6 +29,7 @@ from auditor.risks.verdict import verdict
 from auditor.verilog.read import read_verilog
 
 Progress = Callable[[str], None]
+Result = TypeVar("Result")
 
 # Separations below the window are found even where logarithms are out of reach: a larger one where the plan asks
 # for it, up to what memory and patience bear.
@@ -34,18 +38,59 @@ DEPENDENCIES = ("pyverilog", "networkx", "numpy", "rich", "dd")
 
 
 def audit(plan: Plan, progress: Progress | None = None) -> AuditFacts:
-    """Audit what the plan names and return all facts.
+    """Audit what a plan of one mode names and return all facts.
 
     ``progress`` is called with the name of each stage as it starts. Raises ``InputError`` where no machine can be
     formed, ``InternalError`` where the auditor contradicts itself; a defect of the design is a finding.
     """
+    if plan.modes:
+        raise fail("the plan has several modes", "audit each, or all by audit_modes")
+    return audit_modes(plan, progress)[""]
+
+
+def audit_modes(plan: Plan, progress: Progress | None = None) -> dict[str, AuditFacts]:
+    """Audit a plan under each of its modes; cells and netlist are read once, troubles of all modes told together."""
     tell = progress or _silent
     tell("cells")
     library = read_cells(plan.cells)
     tell("netlist")
-    netlist = _read_netlist(plan, library)
+    netlist = flatten(read_verilog(plan.netlists), plan.top, library.cells)
+    inputs, plans = _input_files(plan), plan.by_mode()
+
+    def in_mode(name: str) -> Progress:
+        return (lambda stage: tell(f"mode {name}: {stage}")) if name else tell
+
+    cones = _in_every_mode(plans, lambda name: _cone(plans[name], library, netlist, in_mode(name)))
+    return _in_every_mode(plans, lambda name: _facts(plans[name], library, cones[name], inputs, in_mode(name)))
+
+
+def _in_every_mode(plans: Mapping[str, Plan], carry_out: Callable[[str], Result]) -> dict[str, Result]:
+    """Return the results of a step by mode, or raise ``InputError`` with all troubles and the modes they are in."""
+    results: dict[str, Result] = {}
+    modes: dict[Trouble, list[str]] = {}
+    for name in plans:
+        try:
+            results[name] = carry_out(name)
+        except InputError as error:
+            for trouble in error.troubles:
+                modes.setdefault(trouble, []).append(name)
+    if modes:
+        raise InputError(replace(t, found=_under(names) + t.found) for t, names in modes.items())
+    return results
+
+
+def _under(modes: Sequence[str]) -> str:
+    """Return what stands before a trouble of these modes: nothing for the one without a name."""
+    return f"mode {', '.join(modes)}: " if any(modes) else ""
+
+
+def _cone(plan: Plan, library: CellLibrary, netlist: Netlist, tell: Progress) -> Cone:
     tell("cone")
-    cone = extract_cone(netlist, library, plan.mode, plan.channels)
+    return extract_cone(netlist, library, plan.mode, plan.channels)
+
+
+def _facts(plan: Plan, library: CellLibrary, cone: Cone, inputs: tuple[InputFile, ...], tell: Progress) -> AuditFacts:
+    """Return all facts of one mode."""
     tell("machine")
     extraction = prove_machine(cone, plan.work_limit)
     replayed, phases = _solve(plan, library, cone, extraction, tell)
@@ -55,7 +100,7 @@ def audit(plan: Plan, progress: Progress | None = None) -> AuditFacts:
     undecided = open_questions(evidence)
     return AuditFacts(
         plan=plan,
-        inputs=_input_files(plan),
+        inputs=inputs,
         mode=plan.mode,
         library=library,
         cone=cone,
@@ -68,10 +113,6 @@ def audit(plan: Plan, progress: Progress | None = None) -> AuditFacts:
         verdict=verdict(findings, undecided, plan.fail_at),
         environment=_environment(),
     )
-
-
-def _read_netlist(plan: Plan, library: CellLibrary) -> Netlist:
-    return flatten(read_verilog(plan.netlists), plan.top, library.cells)
 
 
 def _solve(

@@ -7,7 +7,7 @@ import textwrap
 import traceback
 from collections.abc import Iterator, Sequence
 from pathlib import Path
-from typing import TYPE_CHECKING, TextIO
+from typing import TextIO
 
 from auditor import __version__
 from auditor.arguments import COMMAND_LINE, Request, read_arguments
@@ -15,11 +15,7 @@ from auditor.errors import InputError, InternalError, TroubleList, fail, near_mi
 from auditor.notation import SourcePlace
 from auditor.plan import Plan, merge
 from auditor.plan_file import read_plan
-from auditor.risks.verdict import verdict
 from auditor.risks.waivers import check_waivers
-
-if TYPE_CHECKING:
-    from auditor.report.facts import AuditFacts
 
 WRONG_USE = 2
 INTERNAL = 4
@@ -62,11 +58,6 @@ def run(words: Sequence[str] | None = None) -> int:
         return INTERNAL
 
 
-def exit_status(facts: "AuditFacts", fail_at: str) -> int:
-    """Return the exit status of an audit that came to its end: 1 a finding that counts, 3 undecided, else 0."""
-    return STATUS[verdict(facts.findings, facts.undecided, fail_at)]
-
-
 def _command(words: Sequence[str]) -> int:
     """Carry out what the words ask for."""
     command = words[0] if words else ""
@@ -88,16 +79,16 @@ def _audit(request: Request) -> int:
     _check(plan, request.json)
     from rich.console import Console  # noqa: PLC0415 - an error above is told without loading it
 
-    from auditor.audit import audit  # noqa: PLC0415
+    from auditor.audit import audit_modes  # noqa: PLC0415
+    from auditor.report.facts import worst  # noqa: PLC0415
     from auditor.report.json_report import json_text  # noqa: PLC0415
     from auditor.report.progress import stages  # noqa: PLC0415
-    from auditor.report.terminal import print_audit  # noqa: PLC0415
+    from auditor.report.terminal import print_audits  # noqa: PLC0415
     from auditor.report.write import write_whole  # noqa: PLC0415
 
     with stages(Console(stderr=True), not request.quiet and sys.stderr.isatty()) as progress:
-        facts = audit(plan, progress=progress)
-        text = json_text(facts) if request.json else ""
-    status = exit_status(facts, plan.fail_at)
+        audits = audit_modes(plan, progress=progress)
+        text = json_text(audits) if request.json else ""
     with _closed_pipe_allowed():
         if request.json and request.json != "-":
             write_whole(Path(request.json), text)
@@ -106,9 +97,9 @@ def _audit(request: Request) -> int:
             sys.stdout.flush()
         if not request.quiet:
             screen = sys.stderr if request.json == "-" else sys.stdout
-            print_audit(facts, Console(file=screen, highlight=False))
+            print_audits(audits, Console(file=screen, highlight=False))
             screen.flush()
-    return status
+    return STATUS[worst(audits)]
 
 
 def _check(plan: Plan, json: str | None) -> None:

@@ -50,6 +50,7 @@ class Plan:
     """All that an audit is given. Paths are as they will be opened.
 
     ``mode``      net or port → 0 or 1        ``channels``  names, vectors or patterns; empty: all output ports
+    ``modes``     name → a mode, where the plan names several; ``mode`` is then empty
     ``chain_length``  scan cells of every chain, or None where not stated
     """
 
@@ -57,6 +58,7 @@ class Plan:
     cells: tuple[Path, ...] = ()
     top: str | None = None
     mode: Mapping[str, int] = field(default_factory=dict)
+    modes: Mapping[str, Mapping[str, int]] = field(default_factory=dict)
     channels: tuple[str, ...] = ()
     reference: str | None = None
     chain_length: int | None = None
@@ -66,6 +68,12 @@ class Plan:
     fail_at: str = "error"
     work_limit: int | None = None
     file: Path | None = None
+
+    def by_mode(self) -> dict[str, "Plan"]:
+        """Return a plan of one mode for each of the modes; the name is empty where the plan names none."""
+        if not self.modes:
+            return {"": self}
+        return {name: replace(self, mode=mode, modes={}) for name, mode in self.modes.items()}
 
 
 @dataclass(frozen=True, slots=True)
@@ -85,14 +93,18 @@ class Options:
 
 
 def merge(plan: Plan | None, options: Options) -> Plan:
-    """Return the plan under the options: a given list replaces the plan's, mode and limits do so key by key."""
+    """Return the plan under the options: a given list replaces the plan's, mode and limits do so key by key.
+
+    A net that the options hold is held in every mode of the plan.
+    """
     stated = plan or Plan(netlists=())
     return replace(
         stated,
         netlists=options.netlists or stated.netlists,
         cells=options.cells or stated.cells,
         top=stated.top if options.top is None else options.top,
-        mode={**stated.mode, **options.mode},
+        mode=stated.mode if stated.modes else {**stated.mode, **options.mode},
+        modes={name: {**mode, **options.mode} for name, mode in stated.modes.items()},
         channels=options.channels or stated.channels,
         reference=stated.reference if options.reference is None else options.reference,
         chain_length=stated.chain_length if options.chain_length is None else options.chain_length,

@@ -24,6 +24,7 @@ LATER_SECTIONS = ("capture", "claims", "seeds")
 LATER_KEYS = {"netlist": ("defines",), "chains": ("file", "scan_outputs")}
 
 _HEADER = re.compile(r"""\s*\[{1,2}\s*([\w."'-]+)\s*\]{1,2}\s*(?:\#.*)?$""")
+_MODE_NAME = re.compile(r"[A-Za-z0-9_-]+")
 _TOML_PLACE = re.compile(r"\s*\(at (?:line (\d+), column \d+|end of document)\)$")
 
 
@@ -33,11 +34,13 @@ def read_plan(path: Path) -> Plan:
     reader = _Reader(str(path), text.splitlines(), _parse(text, path), path.parent)
     reader.check_names()
     limits = {name: reader.number("limits", name, least) for name, least in LEAST_LIMIT.items()}
+    mode, modes = reader.modes()
     plan = Plan(
         netlists=reader.paths("netlist", "files"),
         cells=reader.paths("netlist", "cells"),
         top=reader.text("netlist", "top"),
-        mode=reader.mode(),
+        mode=mode,
+        modes=modes,
         channels=reader.texts("channels", "names"),
         reference=reader.text("channels", "reference"),
         chain_length=reader.number("chains", "length", 1, LONGEST_CHAIN),
@@ -106,7 +109,7 @@ class _Reader:
         current, tables = "", 1 if section == "" else 0
         for number, line in enumerate(self.lines, 1):
             if header := _HEADER.match(line):
-                current = header[1]
+                current = re.sub("[\"']", "", header[1])
                 tables += current == section
                 if key is None and current == section and tables > index:
                     return SourcePlace(self.file, number)
@@ -183,19 +186,35 @@ class _Reader:
         self.wrong(section, key, words, f"write {key} = {words}")
         return known[0]
 
-    def mode(self) -> dict[str, int]:
-        """Return the constants of [mode]."""
-        mode = {}
-        for net, value in self._table("mode").items():
+    def modes(self) -> tuple[dict[str, int], dict[str, dict[str, int]]]:
+        """Return the constants of [mode], or those of every [mode.NAME] by its name; a plan has either."""
+        table = self._table("mode")
+        named = {name: content for name, content in table.items() if isinstance(content, dict)}
+        for name in list(named):
+            if not self.place(f"mode.{name}").line or not _MODE_NAME.fullmatch(name):
+                remedy = (
+                    f'quote a net whose name has dots, as in "{name}.enable" = 0; a mode is a section [mode.NAME], its '
+                    "name made of letters, digits, _ and -"
+                )
+                self.troubles.add(f"{name} in [mode] is a table", remedy, self.place("mode", name))
+                del named[name]
+        plain = {net: value for net, value in table.items() if not isinstance(value, dict)}
+        if plain and named:
+            found = f"[mode] holds {next(iter(plain))} beside the named mode [mode.{next(iter(named))}]"
+            remedy = "state one mode under [mode], or each under a [mode.NAME] with all its constants"
+            self.troubles.add(found, remedy, self.place("mode", next(iter(plain))))
+        modes = {name: self._constants(f"mode.{name}", content) for name, content in named.items()}
+        return self._constants("mode", plain), modes
+
+    def _constants(self, section: str, table: dict[str, Any]) -> dict[str, int]:
+        """Return the nets of a mode with their values, 0 or 1."""
+        for net, value in table.items():
             if isinstance(value, dict):
-                place = self.place(f"mode.{net}")
-                remedy = f'state one mode under [mode]; a name with dots needs quotes there, as in "{net}.enable" = 0'
-                self._later(f"several modes ([mode.{net}])", remedy, place if place.line else self.place("mode", net))
-            elif isinstance(value, int) and not isinstance(value, bool) and value in (0, 1):
-                mode[net] = value
-            else:
-                self.wrong("mode", net, "0 or 1", "write the constant as 0 or 1, without quotes")
-        return mode
+                remedy = f'quote a net whose name has dots, as in "{net}.enable" = 0'
+                self.troubles.add(f"{net} in [{section}] is a table", remedy, self.place(section, net))
+            elif not isinstance(value, int) or isinstance(value, bool) or value not in (0, 1):
+                self.wrong(section, net, "0 or 1", "write the constant as 0 or 1, without quotes")
+        return table
 
     def patterns(self) -> Patterns | None:
         """Return [patterns], or None where the section is absent or wrong."""

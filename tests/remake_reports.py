@@ -10,10 +10,10 @@ from pathlib import Path
 
 from rich.console import Console
 
-from auditor.audit import audit
+from auditor.audit import audit_modes
 from auditor.plan_file import read_plan
 from auditor.report.json_report import json_text
-from auditor.report.terminal import print_audit
+from auditor.report.terminal import print_audits
 
 ROOT = Path(__file__).parents[1]
 SAMPLES = Path("sample_netlists")
@@ -23,10 +23,10 @@ def reports() -> Iterator[tuple[str, str]]:
     """Yield (file name, text) of every report; paths in them are relative to the clone."""
     with chdir(ROOT):
         for plan in sorted(SAMPLES.glob("*.toml")):
-            facts = audit(read_plan(plan))
+            audits = audit_modes(read_plan(plan))
             screen = io.StringIO()
-            print_audit(facts, Console(file=screen))
-            yield f"{plan.stem}.json", json_text(facts)
+            print_audits(audits, Console(file=screen))
+            yield f"{plan.stem}.json", json_text(audits)
             yield f"{plan.stem}.txt", screen.getvalue()
 
 

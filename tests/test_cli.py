@@ -17,6 +17,7 @@ from auditor.notation import SourcePlace
 from auditor.plan import Limits, Plan
 from auditor.report.facts import AuditFacts
 from auditor.risks.finding import Finding, Level
+from auditor.risks.verdict import verdict
 from tests.support.facts import small_facts
 
 Audit = Callable[..., AuditFacts]
@@ -27,7 +28,11 @@ def use(monkeypatch: pytest.MonkeyPatch) -> Callable[[Audit], None]:
     """Return a function that puts a stand-in in place of the audit."""
 
     def put(audit: Audit) -> None:
-        monkeypatch.setitem(sys.modules, "auditor.audit", SimpleNamespace(audit=audit))
+        monkeypatch.setitem(
+            sys.modules,
+            "auditor.audit",
+            SimpleNamespace(audit_modes=lambda plan, progress: {"": audit(plan, progress)}),
+        )
 
     return put
 
@@ -55,7 +60,7 @@ def gives(facts: AuditFacts, seen: list[Plan] | None = None) -> Audit:
         del progress
         if seen is not None:
             seen.append(plan)
-        return facts
+        return replace(facts, verdict=verdict(facts.findings, facts.undecided, plan.fail_at))
 
     return audit
 
@@ -86,7 +91,7 @@ def errors_of(words: list[str], capsys: pytest.CaptureFixture[str]) -> str:
 )
 def test_exit_status_takes_the_first_that_applies(facts: AuditFacts, fail_at: str, status: int) -> None:
     """A finding that counts gives 1 before an open question gives 3; a waived finding counts never."""
-    assert cli.exit_status(facts, fail_at) == status
+    assert cli.STATUS[verdict(facts.findings, facts.undecided, fail_at)] == status
 
 
 def test_an_audit_prints_the_screen_and_returns_its_status(
@@ -341,7 +346,7 @@ def test_a_closed_pipe_is_no_trouble() -> None:
     """A reader that leaves early gets the status of the verdict and no message."""
     code = (
         "import sys, types; from tests.support.facts import small_facts; from auditor import cli;"
-        "sys.modules['auditor.audit'] = types.SimpleNamespace(audit=lambda plan, progress: small_facts());"
+        "sys.modules['auditor.audit'] = types.SimpleNamespace(audit_modes=lambda plan, progress: {'': small_facts()});"
         "sys.stdin.readline(); sys.exit(cli.run(['audit', 'a.v']))"
     )
     reading, writing = os.pipe()
@@ -359,7 +364,7 @@ def test_a_full_disk_behind_the_screen_is_told() -> None:
     """Output that cannot be written is no defect of ours: status 2 and one message."""
     code = (
         "import sys, types; from tests.support.facts import small_facts; from auditor import cli;"
-        "sys.modules['auditor.audit'] = types.SimpleNamespace(audit=lambda plan, progress: small_facts());"
+        "sys.modules['auditor.audit'] = types.SimpleNamespace(audit_modes=lambda plan, progress: {'': small_facts()});"
         "sys.exit(cli.run(['audit', 'a.v']))"
     )
     with open("/dev/full", "w") as full:

@@ -1,5 +1,6 @@
 """A plan and the options over it."""
 
+from dataclasses import replace
 from pathlib import Path
 
 from auditor.plan import Limits, Options, Patterns, Plan, merge
@@ -46,6 +47,18 @@ def test_mode_and_limits_are_replaced_key_by_key() -> None:
     merged = merge(PLAN, Options(mode={"scan_en": 1, "test": 0}, limits={"taps": 5, "depth": 0}))
     assert merged.mode == {"scan_en": 1, "hold": 1, "test": 0}
     assert merged.limits == Limits(separation=100, taps=5, depth=0)
+
+
+def test_a_net_held_by_the_command_line_is_held_in_every_mode() -> None:
+    """The option overrides each named mode key by key, and each mode gives a plan of its own."""
+    stated = replace(PLAN, mode={}, modes={"shift": {"scan_en": 0, "hold": 1}, "rest": {}})
+    merged = merge(stated, Options(mode={"scan_en": 1}))
+    assert merged.modes == {"shift": {"scan_en": 1, "hold": 1}, "rest": {"scan_en": 1}}
+    assert merged.mode == {}
+    plans = merged.by_mode()
+    assert plans["shift"] == replace(PLAN, mode={"scan_en": 1, "hold": 1})
+    assert list(plans) == ["shift", "rest"]
+    assert PLAN.by_mode() == {"": PLAN}
 
 
 def test_options_alone_make_a_plan() -> None:

@@ -124,15 +124,13 @@ def test_unknown_names_suggest_known_ones(tmp_path: Path) -> None:
 
 def test_parts_that_come_later_are_refused(tmp_path: Path) -> None:
     """What the plan may hold one day is never ignored in silence."""
-    text = "[mode.shift]\nscan_en = 0\n[capture]\na = 1\n[claims]\n[seeds]\n"
+    text = "[mode]\nscan_en = 0\n[capture]\na = 1\n[claims]\n[seeds]\n"
     text += (
         '[netlist]\ndefines = { A = "1" }\n[chains]\nfile = "c.csv"\nscan_outputs = ["x"]\n'
         '[patterns]\ncount = 1\nshift_cycles = 1\nlaunch = "shift"\n'
     )
     later = "comes with a later version of auditor"
     assert troubles(tmp_path, text) == [
-        f"plan.toml:1: several modes ([mode.shift]) {later}; state one mode under [mode]; a name with dots needs "
-        'quotes there, as in "shift.enable" = 0',
         f"plan.toml:3: [capture] {later}; remove it",
         f"plan.toml:5: [claims] {later}; remove it",
         f"plan.toml:6: [seeds] {later}; remove it",
@@ -146,8 +144,34 @@ def test_parts_that_come_later_are_refused(tmp_path: Path) -> None:
 def test_a_dotted_name_without_quotes_is_explained(tmp_path: Path) -> None:
     """A hierarchical net written without quotes is a table to TOML; the message gives the line and the cure."""
     (message,) = troubles(tmp_path, "[mode]\nscan = 1\nu1.enable = 0\n")
-    assert message.startswith("plan.toml:3: several modes ([mode.u1])")
-    assert 'as in "u1.enable" = 0' in message
+    assert message == (
+        'plan.toml:3: u1 in [mode] is a table; quote a net whose name has dots, as in "u1.enable" = 0; a mode is a '
+        "section [mode.NAME], its name made of letters, digits, _ and -"
+    )
+    (message,) = troubles(tmp_path, "[mode.shift]\nscan = 1\nu1.enable = 0\n")
+    assert (
+        message == 'plan.toml:3: u1 in [mode.shift] is a table; quote a net whose name has dots, as in "u1.enable" = 0'
+    )
+
+
+def test_several_modes_are_read(tmp_path: Path) -> None:
+    """Each [mode.NAME] is a mode, in the order of the plan, one without constants too; [mode] itself is then empty."""
+    plan = tmp_path / "plan.toml"
+    plan.write_text('[mode.shift]\nscan = 1\n"u1.hold" = 0\n[mode."by-pass"]\n[mode.fast]\nscan = 0\n')
+    read = read_plan(plan)
+    assert list(read.modes.items()) == [("shift", {"scan": 1, "u1.hold": 0}), ("by-pass", {}), ("fast", {"scan": 0})]
+    assert read.mode == {}
+
+
+def test_wrong_modes_are_explained(tmp_path: Path) -> None:
+    """Constants beside named modes, names that are none, and wrong values are told with their lines."""
+    assert troubles(tmp_path, '[mode]\na = 0\nb = 1\n[mode.x]\nc = 2\n[mode."a b"]\n') == [
+        'plan.toml: a b in [mode] is a table; quote a net whose name has dots, as in "a b.enable" = 0; a mode is a '
+        "section [mode.NAME], its name made of letters, digits, _ and -",
+        "plan.toml:2: [mode] holds a beside the named mode [mode.x]; state one mode under [mode], or each under a "
+        "[mode.NAME] with all its constants",
+        "plan.toml:5: c in [mode.x] must be 0 or 1; write the constant as 0 or 1, without quotes",
+    ]
 
 
 def test_values_of_the_wrong_kind_are_listed_together(tmp_path: Path) -> None:

@@ -7,10 +7,10 @@ from pathlib import Path
 
 from rich.console import Console
 
-from auditor.audit import audit
+from auditor.audit import audit_modes
 from auditor.cells.read import read_cells
 from auditor.plan_file import read_plan
-from auditor.report.terminal import print_audit
+from auditor.report.terminal import print_audits
 
 ROOT = Path(__file__).parents[1]
 README = (ROOT / "README.md").read_text(encoding="utf-8")
@@ -26,9 +26,9 @@ def test_the_screen_is_a_real_one() -> None:
     """Every line of the screen in README is a line of the report on that sample, in the same order."""
     screen = io.StringIO()
     with chdir(ROOT):
-        facts = audit(read_plan(Path("sample_netlists/enabled_blocks.toml")))
+        audits = audit_modes(read_plan(Path("sample_netlists/enabled_blocks.toml")))
     console = Console(file=screen, width=118, force_terminal=True, color_system=None, highlight=False)
-    print_audit(facts, console)
+    print_audits(audits, console)
     real = iter([line.rstrip() for line in screen.getvalue().splitlines()])
     shown = next(block for block in blocks("text") if block.startswith("Verdict"))
     for line in shown.splitlines():

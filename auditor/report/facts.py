@@ -47,3 +47,13 @@ class AuditFacts:
     undecided: tuple[str, ...]
     verdict: Verdict
     environment: Mapping[str, str]
+
+
+# The audits of one plan by the name of their mode, in the plan's order; a plan that names none has one, under "".
+Audits: TypeAlias = Mapping[str, AuditFacts]
+
+
+def worst(audits: Audits) -> Verdict:
+    """Return the verdict over all modes: fail before undecided before pass."""
+    order: tuple[Verdict, ...] = ("fail", "undecided", "pass")
+    return min((facts.verdict for facts in audits.values()), key=order.index)

@@ -13,8 +13,9 @@ from auditor.cone.cone import Load
 from auditor.machine.machine import LinearMachine
 from auditor.notation import Polynomial, Vector, state_hex
 from auditor.phases.table import PhaseClass, RegisterFacts, ResetFacts
+from auditor.plan import Plan
 from auditor.report.digest import ChannelView, channel_views, cut_views, heaviest_output
-from auditor.report.facts import AuditFacts
+from auditor.report.facts import AuditFacts, Audits, worst
 from auditor.report.wording import CAUTIONS, decimal, exponents
 from auditor.risks.finding import Finding
 
@@ -25,20 +26,59 @@ _SHORT_LINE = 100
 Json: TypeAlias = dict[str, Any]
 
 
-def json_text(facts: AuditFacts) -> str:
+def json_text(audits: Audits) -> str:
     """Return the report as text: ASCII, laid out so that a change of one fact is a change of few lines."""
-    return _layout(as_json(facts), "") + "\n"
+    return _layout(as_json(audits), "") + "\n"
 
 
-def as_json(facts: AuditFacts) -> Json:
-    """Return the report as plain dicts, lists, strings and numbers, in the order in which they are written."""
-    table, netlist = facts.phases, facts.cone.netlist
-    return {
+def as_json(audits: Audits) -> Json:
+    """Return the report as plain dicts, lists, strings and numbers, in the order in which they are written.
+
+    What one audit found stands at the top level; the audits of named modes stand in ``modes``.
+    """
+    any_of_them = next(iter(audits.values()))
+    common = {
         "schema": SCHEMA,
         "tool": {"name": "auditor", "version": __version__},
-        "environment": dict(facts.environment),
-        "inputs": [source._asdict() for source in facts.inputs],
-        "top": netlist.top,
+        "environment": dict(any_of_them.environment),
+        "inputs": [source._asdict() for source in any_of_them.inputs],
+        "top": any_of_them.cone.netlist.top,
+        "asked": _asked(any_of_them.plan),
+    }
+    if "" in audits:
+        found = _found(audits[""])
+    else:
+        modes = [{"name": name, **_found(facts)} for name, facts in audits.items()]
+        found = {"verdict": worst(audits), "modes": modes}
+    return {**common, **found, "cautions": list(CAUTIONS)}
+
+
+def _asked(plan: Plan) -> Json:
+    """Return the bounds that the reviewer stated, null for each that was not."""
+    limits, patterns = plan.limits, plan.patterns
+    return {
+        "chain_length": plan.chain_length,
+        "limits": {
+            "separation": _decimal(limits.separation),
+            "fan_out": limits.fan_out,
+            "taps": limits.taps,
+            "depth": limits.depth,
+        },
+        "patterns": patterns
+        and {
+            "count": decimal(patterns.count),
+            "shift_cycles": decimal(patterns.shift_cycles),
+            "capture_cycles": decimal(patterns.capture_cycles),
+            "generator_in_capture": patterns.generator_in_capture,
+        },
+        "fail_at": plan.fail_at,
+    }
+
+
+def _found(facts: AuditFacts) -> Json:
+    """Return what the audit of one mode found."""
+    table, netlist = facts.phases, facts.cone.netlist
+    return {
         "clock": {"net": netlist.net_names[facts.cone.clock], "edge": facts.cone.clock_edge},
         "mode": dict(facts.mode),
         "verdict": facts.verdict,
@@ -51,7 +91,6 @@ def as_json(facts: AuditFacts) -> Json:
         "findings": [_finding(finding) for finding in facts.findings],
         "assumed": list(facts.assumed),
         "undecided": list(facts.undecided),
-        "cautions": list(CAUTIONS),
     }
 
 

@@ -6,25 +6,38 @@ from collections.abc import Sequence
 from rich.console import Console
 
 from auditor.report.digest import channel_views
-from auditor.report.facts import AuditFacts
+from auditor.report.facts import AuditFacts, Audits
+from auditor.report.modes import VERDICT_STYLE, finding_counts, say_modes
 from auditor.report.page import Page
 from auditor.report.sentences import bounded, name_runs, say_register
 from auditor.report.tables import MOST_ROWS, say_channels, say_classes, say_flip_flops, say_separations
-from auditor.report.wording import CAUTIONS, level_counts, plural
+from auditor.report.wording import CAUTIONS, plural
 from auditor.risks.finding import LEVELS, Finding
 
-_VERDICT_STYLE = {"pass": "bold green", "fail": "bold red", "undecided": "bold yellow"}
 _LEVEL_STYLE = {"error": "bold red", "warning": "bold yellow", "note": "bold"}
 _MOST_OF_ONE_KIND = 10
 _MOST_NAMES = 12
 
 
-def print_audit(facts: AuditFacts, console: Console) -> None:
-    """Print the audit: folded to the width of a terminal; in a pipe on wide lines, without colour.
+def print_audits(audits: Audits, console: Console) -> None:
+    """Print the audits: folded to the width of a terminal; in a pipe on wide lines, without colour.
 
-    Names are shown as plain text whatever they hold; nothing of a name reaches the terminal as a command.
+    Named modes stand side by side first, then each on its own. Names are shown as plain text whatever they hold;
+    nothing of a name reaches the terminal as a command.
     """
     page = Page(console)
+    if "" not in audits:
+        say_modes(page, audits)
+    for name, facts in audits.items():
+        if name:
+            page.heading(f"Mode {name}")
+        _say_audit(page, facts)
+    _say_list(page, "Cautions", CAUTIONS)
+    page.show()
+
+
+def _say_audit(page: Page, facts: AuditFacts) -> None:
+    """Add the page of one mode."""
     _say_verdict(page, facts)
     _say_audited(page, facts)
     _say_machine(page, facts)
@@ -35,16 +48,11 @@ def print_audit(facts: AuditFacts, console: Console) -> None:
     _say_findings(page, facts.findings)
     _say_list(page, "Assumed, not checked", facts.assumed)
     _say_list(page, "Not decided", facts.undecided)
-    _say_list(page, "Cautions", CAUTIONS)
-    page.show()
 
 
 def _say_verdict(page: Page, facts: AuditFacts) -> None:
-    counted = level_counts(finding.level for finding in facts.findings if finding.waived is None)
-    waived = sum(finding.waived is not None for finding in facts.findings)
-    aside = f", {waived} waived" if waived else ""
-    text = f"Verdict {facts.verdict}: {facts.cone.netlist.top}, {counted}{aside}"
-    page.say(text, margin=0, style=_VERDICT_STYLE[facts.verdict])
+    text = f"Verdict {facts.verdict}: {facts.cone.netlist.top}, {finding_counts(facts.findings)}"
+    page.say(text, margin=0, style=VERDICT_STYLE[facts.verdict])
 
 
 def _say_audited(page: Page, facts: AuditFacts) -> None:
@@ -77,7 +85,11 @@ def _say_machine(page: Page, facts: AuditFacts) -> None:
             page.say(f"Shown are {MOST_ROWS} of {len(facts.extraction.refusals)} refusals.")
         return
     if machine.free_inputs:
-        page.entry("external inputs", f"{len(machine.free_inputs)}: {name_runs(machine.free_inputs)}")
+        page.entry(
+            "free inputs",
+            f"{len(machine.free_inputs)}: {name_runs(machine.free_inputs)}; periods, leads and separations are given "
+            "for all of them at 0",
+        )
     if machine.transient:
         page.entry("transient", f"{plural(machine.transient, 'cycle')} until every state lies on a cycle")
     for number, register in enumerate(table.registers, 1):
@@ -102,8 +114,8 @@ def _say_findings(page: Page, findings: Sequence[Finding]) -> None:
 
 
 def _say_finding(page: Page, finding: Finding) -> None:
-    where = f"{finding.slug}: {bounded(finding.where, _MOST_NAMES)}"
-    page.say(where, first=f"{finding.level:<8}  ", first_style=_LEVEL_STYLE[finding.level], style="bold")
+    title = ": ".join(filter(None, (finding.slug, bounded(finding.where, _MOST_NAMES))))
+    page.say(title, first=f"{finding.level:<8}  ", first_style=_LEVEL_STYLE[finding.level], style="bold")
     page.say(finding.says, margin=12)
     told = [name for name, value in finding.figures.items() if _is_phrase(value) and str(value) in finding.says]
     fresh = [(name, value) for name, value in finding.figures.items() if name not in told]

@@ -6,6 +6,7 @@ from dataclasses import replace
 
 from auditor.cone.cone import Load
 from auditor.machine.machine import Extraction
+from auditor.plan import Limits, Patterns, Plan
 from auditor.report.json_report import as_json, json_text
 from auditor.report.wording import CAUTIONS
 from tests.support.facts import large_facts, refused_facts, small_facts
@@ -17,13 +18,23 @@ CHANNEL_KEYS = [
 ]  # fmt: skip
 
 
+def report_of(facts):
+    """Return the report on a plan that names no modes."""
+    return as_json({"": facts})
+
+
+def text_of(facts):
+    """Return the text of that report."""
+    return json_text({"": facts})
+
+
 def test_the_top_level_names_stand_in_the_agreed_order():
     """The agreed names are all there, in the agreed order; what is added stands between them."""
     agreed = ["schema", "tool", "environment", "inputs", "mode", "verdict", "machine", "classes", "certified_at_least",
               "channels", "flip_flops", "findings", "assumed", "undecided"]  # fmt: skip
-    report = as_json(small_facts())
+    report = report_of(small_facts())
     assert [key for key in report if key in agreed] == agreed
-    assert set(report) - set(agreed) == {"top", "clock", "cut_nets", "cautions"}
+    assert set(report) - set(agreed) == {"top", "asked", "clock", "cut_nets", "cautions"}
     assert report["cautions"] == list(CAUTIONS)
 
 
@@ -34,7 +45,7 @@ def test_the_matrices_come_back_from_their_indices():
     facts = replace(
         facts, extraction=Extraction(replace(facts.extraction.machine, offset=0b101, input_matrix=(1,) + (0,) * 8), ())
     )
-    machine, report = facts.extraction.machine, as_json(facts)["machine"]
+    machine, report = facts.extraction.machine, report_of(facts)["machine"]
     assert machine
     assert tuple(sum(1 << k for k in row) for row in report["transition"]) == machine.transition
     assert report["input_matrix"] == [[0]] + [[]] * 8
@@ -46,7 +57,7 @@ def test_the_matrices_come_back_from_their_indices():
 
 def test_counts_of_cycles_are_decimal_strings_and_small_numbers_plain():
     """What can pass 2^53 is a decimal string without loss; stages, degrees and replay figures are numbers."""
-    report = as_json(large_facts())
+    report = report_of(large_facts())
     register = report["machine"]["registers"][0]
     assert register["period"] == register["maximum_period"] == "170141183460469231731687303715884105727"
     assert register["lock_up"] == {"count": "1", "states": ["0" * 32]}
@@ -64,7 +75,7 @@ def test_numbers_longer_than_the_interpreter_converts_are_whole():
     facts = small_facts()
     assert facts.phases
     register = replace(facts.phases.registers[0], maximum_period=2**20000 - 1)
-    text = json_text(replace(facts, phases=replace(facts.phases, registers=(register,))))
+    text = text_of(replace(facts, phases=replace(facts.phases, registers=(register,))))
     digits = json.loads(text)["machine"]["registers"][0]["maximum_period"]
     assert len(digits) == 6021
     before = sys.get_int_max_str_digits()
@@ -77,7 +88,7 @@ def test_numbers_longer_than_the_interpreter_converts_are_whole():
 
 def test_polynomials_are_told_by_exponents_and_by_hexadecimal():
     """Characteristic 11d is x^8 + x^4 + x^3 + x^2 + 1, and the connection polynomial is its reciprocal."""
-    register = as_json(small_facts())["machine"]["registers"][0]
+    register = report_of(small_facts())["machine"]["registers"][0]
     assert register["characteristic_polynomial"] == {"exponents": [8, 4, 3, 2, 0], "hex": "11d"}
     connection = register["connection_polynomial"]
     assert sorted(8 - k for k in connection["exponents"]) == [0, 2, 3, 4, 8]
@@ -93,7 +104,7 @@ def test_a_reset_is_told_over_the_register_and_its_unknown_bits_by_index():
     assert register.reset
     reset = replace(register.reset, state=0x05, unknown=(6, 7), stuck=None, period=None)
     facts = replace(facts, phases=replace(facts.phases, registers=(replace(register, reset=reset),)))
-    report = as_json(facts)["machine"]["registers"][0]
+    report = report_of(facts)["machine"]["registers"][0]
     assert report["reset"] == {"state": "05", "unknown": [6, 7], "stuck": None, "period": None}
     assert [report["storage"][k] for k in report["reset"]["unknown"]] == ["q[6]", "q[7]"]
 
@@ -104,7 +115,7 @@ def test_every_channel_tells_its_row_and_phase():
     machine, table = facts.extraction.machine, facts.phases
     assert machine
     assert table
-    channels = {channel["name"]: channel for channel in as_json(facts)["channels"]}
+    channels = {channel["name"]: channel for channel in report_of(facts)["channels"]}
     assert list(channels) == [f"chain[{k}]" for k in range(6)]
     for row, phase in zip(machine.observed[:6], table.phases, strict=False):
         told = channels[row.name]
@@ -125,7 +136,7 @@ def test_every_channel_tells_its_row_and_phase():
 
 def test_a_refused_channel_names_its_gate_and_the_net_behind_it():
     """A refused row has no constant and no taps but the gate; the nets behind the gate stand in a list of their own."""
-    report = as_json(small_facts())
+    report = report_of(small_facts())
     refused = report["channels"][4]
     assert (refused["cut_at"], refused["constant"], refused["taps"]) == ("u_gen.U77", None, [])
     assert [channel["cut_at"] for k, channel in enumerate(report["channels"]) if k != 4] == [None] * 5
@@ -134,7 +145,7 @@ def test_a_refused_channel_names_its_gate_and_the_net_behind_it():
 
 def test_a_refused_machine_keeps_the_channels_and_loads():
     """Without a machine there is null, no class, and every channel and flip-flop with nothing claimed of it."""
-    report = as_json(refused_facts())
+    report = report_of(refused_facts())
     assert report["machine"] is None
     assert report["classes"] == []
     assert [channel["name"] for channel in report["channels"]] == [f"chain[{k}]" for k in range(6)]
@@ -148,7 +159,7 @@ def test_a_refused_machine_keeps_the_channels_and_loads():
 
 def test_classes_name_their_channels():
     """Reference, members and the smallest pair of a class are names, its cycles decimal strings."""
-    report = as_json(small_facts())["classes"][0]
+    report = report_of(small_facts())["classes"][0]
     assert report["reference"] == "chain[0]"
     assert report["channels"] == ["chain[0]", "chain[1]", "chain[2]", "n42"]
     assert report["minimum"] == {"channels": ["chain[0]", "n42"], "cycles": "3", "complement": False}
@@ -158,7 +169,7 @@ def test_a_flip_flop_is_told_by_its_most_used_output():
     """Fan-out adds up over the outputs; capacitance and limit are those of the output nearest to its limit."""
     facts = small_facts()
     load = Load(1, ("Q", "QN"), (7, 2), (9, 2), (30.00049999, 5.0), (60.0, 8.0))
-    told = as_json(replace(facts, cone=replace(facts.cone, loads=(load,))))["flip_flops"][0]
+    told = report_of(replace(facts, cone=replace(facts.cone, loads=(load,))))["flip_flops"][0]
     assert (told["name"], told["cell"], told["direct_fan_out"], told["fan_out"]) == ("q[0]", "DFFRX1", 9, 11)
     assert (told["capacitance_ff"], told["limit_ff"]) == (5.0, 8.0)
     assert told["xor_fan_out"] == 1
@@ -172,14 +183,14 @@ def test_capacitance_is_told_without_a_limit_and_null_without_capacitance():
         Load(1, ("Q", "QN"), (1, 1), (1, 1), (3.0, 5.0), (None, None)),
         Load(2, ("Q",), (1,), (1,), (None,), (60.0,)),
     )
-    first, second = as_json(replace(facts, cone=replace(facts.cone, loads=loads)))["flip_flops"]
+    first, second = report_of(replace(facts, cone=replace(facts.cone, loads=loads)))["flip_flops"]
     assert (first["capacitance_ff"], first["limit_ff"]) == (5.0, None)
     assert (second["capacitance_ff"], second["limit_ff"]) == (None, None)
 
 
 def test_findings_are_told_with_place_and_waiver():
     """A finding has exactly the agreed names; a waived one carries its reason, one without place null."""
-    first, second, third = as_json(small_facts())["findings"]
+    first, second, third = report_of(small_facts())["findings"]
     assert list(first) == ["slug", "level", "where", "figures", "says", "place", "waived"]
     assert first["place"] == {"file": "gen.v", "line": 120}
     assert second["waived"] == "sized by hand, see review 7"
@@ -191,19 +202,50 @@ def test_the_text_is_ascii_the_same_each_time_and_parses_back():
     """Two runs over equal facts give the same bytes, which parse to the report, whatever a name holds."""
     name = 'w\x1b[31m\u202e"é\n'
     facts = replace(small_facts(), mode={name: 1})
-    text = json_text(facts)
-    assert text == json_text(replace(small_facts(), mode={name: 1}))
+    text = text_of(facts)
+    assert text == text_of(replace(small_facts(), mode={name: 1}))
     assert text.isascii()
     assert text.endswith("}\n")
     assert "\x1b" not in text
-    assert json.loads(text) == as_json(facts)
+    assert json.loads(text) == report_of(facts)
     assert list(json.loads(text)["mode"]) == [name]
 
 
 def test_a_change_of_one_fact_changes_few_lines():
     """The text is laid out for comparison: another verdict is one other line, and a row of the matrix is one line."""
     facts = small_facts()
-    before, after = (json_text(f).splitlines() for f in (facts, replace(facts, verdict="pass")))
+    before, after = (text_of(f).splitlines() for f in (facts, replace(facts, verdict="pass")))
     assert sum(a != b for a, b in zip(before, after, strict=True)) == 1
     assert any(line.strip() == '"chain[1]",' for line in before) is False
     assert '"taps": ["q[0]", "q[3]", "q[5]"],' in [line.strip() for line in before]
+
+
+def test_what_was_asked_stands_beside_the_answers():
+    """Stated bounds are told, cycles as decimal strings; what was not stated is null."""
+    facts = small_facts()
+    limits, patterns = Limits(separation=10**17, fan_out=9), Patterns(20_000, 200, 1, "advances")
+    plan = Plan((), chain_length=200, limits=limits, patterns=patterns, fail_at="warning")
+    assert report_of(replace(facts, plan=plan))["asked"] == {
+        "chain_length": 200,
+        "limits": {"separation": str(10**17), "fan_out": 9, "taps": None, "depth": None},
+        "patterns": {
+            "count": "20000",
+            "shift_cycles": "200",
+            "capture_cycles": "1",
+            "generator_in_capture": "advances",
+        },
+        "fail_at": "warning",
+    }
+    nothing = {"chain_length": None, "limits": dict.fromkeys(("separation", "fan_out", "taps", "depth"))}
+    assert report_of(replace(facts, plan=Plan(())))["asked"] == {**nothing, "patterns": None, "fail_at": "error"}
+
+
+def test_named_modes_stand_in_a_list_under_the_worst_verdict():
+    """Each mode holds what a single audit has at the top level; what is the same for all stays at the top level."""
+    passed, failed = replace(small_facts(), verdict="pass"), replace(refused_facts(), verdict="fail")
+    report, single = as_json({"shift": passed, "hold": failed}), report_of(passed)
+    assert list(report) == ["schema", "tool", "environment", "inputs", "top", "asked", "verdict", "modes", "cautions"]
+    assert report["verdict"] == "fail"
+    assert [(mode["name"], mode["verdict"]) for mode in report["modes"]] == [("shift", "pass"), ("hold", "fail")]
+    first = report["modes"][0]
+    assert {**{key: value for key, value in report.items() if key != "modes"}, **first} == {"name": "shift", **single}

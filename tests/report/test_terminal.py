@@ -10,7 +10,7 @@ from rich.console import Console
 
 from auditor.phases.table import Factor, ResetFacts
 from auditor.report.facts import AuditFacts
-from auditor.report.terminal import print_audit
+from auditor.report.terminal import print_audits
 from auditor.report.wording import CAUTIONS
 from auditor.risks.finding import Finding
 from tests.support.facts import large_facts, refused_facts, small_facts
@@ -22,13 +22,13 @@ HOSTILE = "\x1b]0;owned\x07[red]\u202e:smile:\n\u0301漢" + "x" * 90
 
 def _screen(facts: AuditFacts, width: int) -> str:
     console = Console(file=io.StringIO(), width=width, force_terminal=True, color_system="standard")
-    print_audit(facts, console)
+    print_audits({"": facts}, console)
     return console.file.getvalue()
 
 
 def _piped(facts: AuditFacts) -> str:
     console = Console(file=io.StringIO(), width=80)
-    print_audit(facts, console)
+    print_audits({"": facts}, console)
     return console.file.getvalue()
 
 
@@ -118,7 +118,7 @@ def test_no_colour_means_no_escape_code(monkeypatch):
     """With NO_COLOR a terminal gets plain text, folded to its width."""
     monkeypatch.setenv("NO_COLOR", "1")
     console = Console(file=io.StringIO(), width=80, force_terminal=True)
-    print_audit(small_facts(), console)
+    print_audits({"": small_facts()}, console)
     text = console.file.getvalue()
     assert "\x1b" not in text
     assert max(map(len, text.splitlines())) <= 80
@@ -155,7 +155,7 @@ def test_a_name_that_the_console_cannot_encode_is_spelled_out():
     """On an ASCII console the bytes can be written and the character stands as its code."""
     raw = io.BytesIO()
     stream = io.TextIOWrapper(raw, encoding="ascii")
-    print_audit(replace(small_facts(), mode={"é漢": 1}), Console(file=stream, width=80))
+    print_audits({"": replace(small_facts(), mode={"é漢": 1})}, Console(file=stream, width=80))
     stream.flush()
     assert b"mode            \\xe9\\u6f22=1" in raw.getvalue()
 
@@ -328,3 +328,10 @@ def test_a_phrase_that_the_sentence_holds_is_not_told_twice():
     finding = Finding("not-affine", "error", ("q",), "u8 is no XOR: hold n8 at 1.", figures)
     text = _words(_piped(replace(small_facts(), findings=(finding,))))
     assert "u8 is no XOR: hold n8 at 1. gate u8; count 8" in text
+
+
+def test_a_finding_without_objects_has_no_colon_behind_its_slug():
+    """A finding that counts a list stands under its slug alone."""
+    finding = Finding("windows-overlap", "error", (), "60 pairs are closer than 100 cycles.")
+    lines = _piped(replace(small_facts(), findings=(finding,))).splitlines()
+    assert "  error     windows-overlap" in lines

@@ -61,7 +61,7 @@ def _cone(machine: LinearMachine, loads: tuple[Load, ...]) -> Cone:
         for k, name in enumerate(machine.storage)
     )  # fmt: skip
     return Cone(
-        netlist=_netlist(nets, machine.storage), channels=tuple(channels), gates=(), clock_gates=(),
+        netlist=_netlist(nets, machine.storage), channels=tuple(channels), gates=(), clock_gates=(), clock_latches=(),
         elements=elements, free_inputs=tuple(range(3, 3 + len(machine.free_inputs))), constants={}, clock=2,
         clock_edge="rising", graph=nx.DiGraph(), feedback=machine.registers, loads=loads, obstacles=(), forced=(),
         assumed=(),
