@@ -10,11 +10,12 @@ from typing import Literal
 
 from auditor.cells.compose import NotUnderstood, put_into_each_other
 from auditor.cells.library import Cell, Function, Pin
-from auditor.cells.model import Models
+from auditor.cells.model import Models, Primitive
 from auditor.cells.model_expression import ONE, ZERO
 from auditor.cells.model_nets import Driver, Nets, TableDriver, lay_out
 from auditor.cells.model_table import STATE, primitive_function, primitive_storage, wanted_level
 from auditor.cells.storage import Described, rewrite, settle
+from auditor.cells.truth import first_one
 
 _CONSTANTS = {"0": ZERO, "1": ONE}
 _LEVELS = {ZERO: "0", ONE: "1"}
@@ -40,7 +41,8 @@ class _Evaluation:
     """Works back from the outputs of a module laid out.
 
     ``functions`` holds each net met, over other nets; ``bits`` the stored bits, whose variables are nets; ``supplies``
-    the pins found to be such, with their levels; ``read`` the ports that something inside reads.
+    the pins found to be such, with their levels; ``read`` the ports that something inside reads; ``unknown``
+    where a table gives no output.
     """
 
     def __init__(self, nets: Nets) -> None:
@@ -49,6 +51,7 @@ class _Evaluation:
         self.bits: dict[str, Described] = {}
         self.supplies: dict[str, str] = {}
         self.read: set[str] = set()
+        self.unknown: dict[str, tuple[Function, Primitive]] = {}
 
     def cell(self, name: str) -> Cell:
         """Return the cell, without its place. Raises ``NotUnderstood``."""
@@ -58,7 +61,9 @@ class _Evaluation:
         outputs = {f"output {port}": function for port, function in shown.items()}
         outputs |= {f"off {port}": function for port, function in off.items()}
         self.functions |= {port: _CONSTANTS[level] for port, level in self.supplies.items()}
+        outputs |= {key: function for key, (function, _) in self.unknown.items()}
         whole = put_into_each_other({**self.functions, **outputs}, self.bits)
+        self._refuse_unknown(whole)
         inner = {net: whole[net] for net in self.functions}
         storage, meaning = settle([_put_into(bit, inner) for bit in self.bits.values()], self.nets.ports)
         pins = {}
@@ -71,6 +76,17 @@ class _Evaluation:
                 rewrite(three_state, meaning) if three_state else None,
             )
         return Cell(name, pins, storage)
+
+    def _refuse_unknown(self, whole: Mapping[str, Function]) -> None:
+        """Raise ``NotUnderstood`` where a table gives no output for inputs that can reach it."""
+        for key, (_, primitive) in self.unknown.items():
+            function = whole[key]
+            place = first_one(function)
+            if place is not None:
+                case = ", ".join(f"{name} = {bit}" for name, bit in place.items())
+                raise NotUnderstood(
+                    f"the table of {primitive.name} at {primitive.place} gives no output for {case or 'its inputs'}"
+                )
 
     def _direction(self, port: str) -> Literal["input", "output", "inout", "power"]:
         direction = self.nets.ports[port]
@@ -122,6 +138,8 @@ class _Evaluation:
             else:
                 self.functions[net] = entered.function
                 waiting += entered.function.inputs
+                if f"unknown {net}" in self.unknown:
+                    waiting += self.unknown[f"unknown {net}"][0].inputs
 
     def _table(self, driver: TableDriver, net: str) -> Driver | Described:
         """Return what an instance of a primitive does over the nets at its inputs."""
@@ -141,7 +159,10 @@ class _Evaluation:
             if source
         }
         if not primitive.stores:
-            return Driver(rewrite(primitive_function(primitive, levels), actual))
+            function, unknown = primitive_function(primitive, levels)
+            if unknown != ZERO:
+                self.unknown[f"unknown {net}"] = rewrite(unknown, actual), primitive
+            return Driver(rewrite(function, actual))
         bit = primitive_storage(primitive, levels)
         return replace(_put_into(bit, actual | {STATE: Function((net,), _ITSELF)}), first=net)
 

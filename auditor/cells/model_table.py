@@ -22,10 +22,10 @@ def wanted_level(primitive: Primitive, j: int) -> str:
     return ""
 
 
-def primitive_function(primitive: Primitive, levels: Mapping[str, str]) -> Function:
+def primitive_function(primitive: Primitive, levels: Mapping[str, str]) -> tuple[Function, Function]:
     """Return the output of a table without state over the inputs that ``levels`` (0, 1 or x) does not fix.
 
-    Raises ``NotUnderstood`` where the table leaves it unknown for some 0s and 1s.
+    The second function is 1 where the table leaves the output unknown. Raises ``NotUnderstood``.
     """
     free, rows, space = _free(primitive, levels, 0)
     ones = zeros = 0
@@ -34,13 +34,9 @@ def primitive_function(primitive: Primitive, levels: Mapping[str, str]) -> Funct
             ones |= _met(row, free, space)
         elif row.after == "0":
             zeros |= _met(row, free, space)
-    unknown = space.mask & ~(ones | zeros)
     names = [primitive.inputs[j] for j in free]
-    if unknown:
-        place = (unknown & -unknown).bit_length() - 1
-        values = ", ".join(f"{name} = {place >> j & 1}" for j, name in enumerate(names))
-        raise NotUnderstood(f"the table of {primitive.name} at {primitive.place} gives no output for {values}")
-    return function_between(names, ones, zeros)
+    known = ones | zeros
+    return function_between(names, ones, zeros), function_between(names, space.mask & ~known, known)
 
 
 def primitive_storage(primitive: Primitive, levels: Mapping[str, str]) -> Described:

@@ -214,6 +214,8 @@ class Preprocessor:
         if path is None:
             self._trouble(f"the included file {name} is missing", "put it beside this one", source.place)
             return
+        if path.stat().st_size == 0:
+            return
         try:
             self._push(path, read_text(path))
         except InputError as error:

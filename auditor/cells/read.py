@@ -4,7 +4,7 @@ import re
 from collections.abc import Callable, Iterator, Mapping, Sequence
 from functools import partial
 from pathlib import Path
-from typing import NamedTuple
+from typing import TYPE_CHECKING, NamedTuple
 
 from auditor.cells.cell_table import looks_like_table, table_cells
 from auditor.cells.expression import ExpressionError, is_read_differently
@@ -12,13 +12,12 @@ from auditor.cells.liberty import Group, library_start, parse_liberty
 from auditor.cells.liberty_cells import liberty_cell
 from auditor.cells.liberty_pins import library_defaults
 from auditor.cells.library import Cell, CellLibrary
-from auditor.cells.model import ModuleText, Primitive
-from auditor.cells.model_cells import model_cell
-from auditor.cells.model_split import split_models
-from auditor.cells.model_text import Preprocessor
 from auditor.cells.source_text import read_text
-from auditor.errors import InputError, Trouble, TroubleList, fail
+from auditor.errors import InputError, Trouble, fail
 from auditor.notation import SourcePlace
+
+if TYPE_CHECKING:
+    from auditor.cells.models import ModelFiles
 
 _EXPRESSIONS = ("function", "three_state", "next_state", "clocked_on", "enable", "data_in", "clear", "preset")
 _VERILOG = (".v", ".v.gz", ".sv", ".vh")
@@ -84,23 +83,24 @@ def read_cells(
 
 
 class _ModelReader:
-    """Reads files of cell models, which share their macros and may hold parts of each other."""
+    """Reads files of cell models; what that takes is imported with the first of them."""
 
     def __init__(self, defines: Mapping[str, str], folders: Sequence[Path]) -> None:
-        self._preprocessor = Preprocessor(defines, folders)
-        self._models: dict[str, Primitive | ModuleText] = {}
+        self._given = defines, folders
+        self._files: ModelFiles | None = None
 
     def read(self, path: Path, text: str) -> tuple[dict[str, _Source], list[str]]:
         """Return the cells of one file and notes on it. Raises ``InputError``."""
-        troubles = TroubleList()
+        if self._files is None:
+            from auditor.cells.models import ModelFiles  # noqa: PLC0415 - many audits have a Liberty file alone
+
+            self._files = ModelFiles(*self._given)
         sources: dict[str, _Source] = {}
         notes: list[str] = []
-        for model in split_models(self._preprocessor.read(path, text, troubles), troubles):
-            source = _Source(model.place, partial(model_cell, model.name, self._models))
-            notes += _overridden(sources, {model.name: source})
-            sources[model.name] = source
-            self._models[model.name] = model
-        troubles.raise_any()
+        for name, place, make in self._files.read(path, text):
+            source = _Source(place, make)
+            notes += _overridden(sources, {name: source})
+            sources[name] = source
         return sources, notes if sources else [f"{path} describes no cells"]
 
 

@@ -5,7 +5,7 @@ A table over n names is an int of 2^n bits; bit k is the value where name j is b
 
 from collections.abc import Sequence
 
-from auditor.cells.function import BitAlgebra, column
+from auditor.cells.function import EXACT_INPUTS, BitAlgebra, column, truth_table
 from auditor.cells.library import Function
 
 
@@ -45,6 +45,15 @@ def function_between(names: Sequence[str], ones: int, zeros: int) -> Function:
     places = [sum(1 << j for bit, j in enumerate(kept) if k >> bit & 1) for k in range(1 << len(kept))]
     table = sum(1 << k for k, place in enumerate(places) if ones >> place & 1)
     return table_function([names[j] for j in kept], table)
+
+
+def first_one(function: Function) -> dict[str, int] | None:
+    """Return inputs for which the function is 1, None if there are none; {} where there are too many inputs to tell."""
+    if len(function.inputs) > EXACT_INPUTS:
+        return {}
+    table = truth_table(function)
+    place = (table & -table).bit_length() - 1
+    return {name: place >> j & 1 for j, name in enumerate(function.inputs)} if table else None
 
 
 def table_function(names: Sequence[str], table: int) -> Function:

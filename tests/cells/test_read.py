@@ -124,8 +124,9 @@ def test_troubles_of_all_files_come_together(tmp_path):
         a_lib=LIBERTY[:-3],
         b_lib="",
         c_toml=TABLE.replace("outputs", "output") + "area = -1\n",
-        d_v="module m; endmodule\n",
-        e_lib="module m; endmodule\n",
+        d_v="module m;\n",
+        d_txt="A words file\n",
+        e_lib="mod m; endmod\n",
         f_toml="x = 1\n",
         g_lib=LIBERTY,
     )
@@ -133,11 +134,12 @@ def test_troubles_of_all_files_come_together(tmp_path):
         read_cells([*reversed(paths), tmp_path / "h.lib"])
     assert str(caught.value).replace(f"{tmp_path}/", "").splitlines() == [
         "a.lib:3: the file ends inside the group that opens at line 1; give the whole file, or add the missing brace",
-        "b.lib: the file is empty; give a Liberty file or a cell table",
+        "b.lib: the file is empty; give a Liberty file, Verilog cell models or a cell table",
         "c.toml:3: unknown key cell.INV.output; did you mean outputs?",
         "c.toml:4: cell.INV.area is not a number from 0 on; make it a number from 0 on",
-        "d.v: this is neither a Liberty file nor a cell table; give one of these",
-        'e.lib:1: no Liberty statement can be read at "module m; endmodule"; '
+        "d.txt: this is neither a Liberty file nor cell models nor a cell table; give one of these",
+        "d.v:1: the module that begins here is not ended; end it with endmodule",
+        'e.lib:1: no Liberty statement can be read at "mod m; endmod"; '
         "write it as name : value; or name (values) { ... }, or mend the braces before it",
         "f.toml:1: unknown key x; use cell",
         "h.lib: no such file; mend its name",

@@ -38,9 +38,9 @@ def test_latin_1_is_read_where_utf_8_fails(tmp_path):
 @pytest.mark.parametrize(
     ("data", "expected"),
     [
-        (b"", "the file is empty; give a Liberty file or a cell table"),
-        (b" \n\t", "the file is empty; give a Liberty file or a cell table"),
-        (b"library\0(", "this is a binary file; give a Liberty file or a cell table"),
+        (b"", "the file is empty; give a Liberty file, Verilog cell models or a cell table"),
+        (b" \n\t", "the file is empty; give a Liberty file, Verilog cell models or a cell table"),
+        (b"library\0(", "this is a binary file; give a Liberty file, Verilog cell models or a cell table"),
         (gzip.compress(PLAIN.encode())[:-9], "the gz file is cut off or damaged; fetch or pack it again"),
         (b"\x1f\x8bnonsense", "the gz file is cut off or damaged; fetch or pack it again"),
     ],
