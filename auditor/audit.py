@@ -1,5 +1,6 @@
 """The audit: the verbs of all stages in a row."""
 
+import gc
 import hashlib
 import platform
 from collections.abc import Callable, Mapping, Sequence
@@ -54,7 +55,7 @@ def audit_modes(plan: Plan, progress: Progress | None = None) -> dict[str, Audit
     tell("cells")
     library = read_cells(plan.cells)
     tell("netlist")
-    netlist = flatten(read_verilog(plan.netlists), plan.top, library.cells)
+    netlist = read_netlist(plan, library)
     inputs, plans = _input_files(plan), plan.by_mode()
 
     def in_mode(name: str) -> Progress:
@@ -62,6 +63,21 @@ def audit_modes(plan: Plan, progress: Progress | None = None) -> dict[str, Audit
 
     cones = _in_every_mode(plans, lambda name: _cone(plans[name], library, netlist, in_mode(name)))
     return _in_every_mode(plans, lambda name: _facts(plans[name], library, cones[name], inputs, in_mode(name)))
+
+
+def read_netlist(plan: Plan, library: CellLibrary) -> Netlist:
+    """Read and flatten the netlist of a plan.
+
+    A large one is millions of new tuples, none in a circle, that are dropped once it is flat: the cyclic collector
+    would walk them for nothing, so it is paused over both stages.
+    """
+    was_enabled = gc.isenabled()
+    gc.disable()
+    try:
+        return flatten(read_verilog(plan.netlists), plan.top, library.cells)
+    finally:
+        if was_enabled:
+            gc.enable()
 
 
 def _in_every_mode(plans: Mapping[str, Plan], carry_out: Callable[[str], Result]) -> dict[str, Result]:

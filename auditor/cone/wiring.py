@@ -97,13 +97,13 @@ def _pin_roles(netlist: Netlist, cells: tuple[Cell | None, ...], instance: Colum
     """Look every distinct (cell type, pin name) up once and spread the answer over the pins."""
     width = max(1, len(netlist.pin_names))
     kind = netlist.instance_type[instance].astype(np.int64) * width + netlist.pin_name
-    distinct, where = np.unique(kind, return_inverse=True)
+    distinct = np.unique(kind)
     roles = np.empty(len(distinct), dtype=np.int32)
     for k, code in enumerate(distinct.tolist()):
         cell = cells[code // width]
         pin = cell.pins.get(netlist.pin_names[code % width]) if cell else None
         roles[k] = UNKNOWN_CELL if cell is None else UNLISTED if pin is None else _ROLE[pin.direction]
-    return roles[where]
+    return roles[np.searchsorted(distinct, kind)]
 
 
 def _drivers(netlist: Netlist, role: Column) -> Column:

@@ -4,7 +4,6 @@ Every module is compiled once into a template, children first; then the template
 instances, and the nets that ports and plain assigns make one are merged.
 """
 
-import gc
 from collections.abc import Collection, Mapping, Sequence
 from dataclasses import dataclass, field
 from functools import partial
@@ -32,17 +31,6 @@ def flatten(modules: Mapping[str, Module], top: str | None, library_cells: Colle
     that no module describes, stay library cells. Ports and plain assigns merge nets; assigns of unequal width are
     filled with 0 or cut on the left (IEEE 1364-2005, 6.1); operators become gate primitives. Raises InputError.
     """
-    # A large netlist is millions of long-lived objects: the collector would walk them again and again for nothing.
-    was_enabled = gc.isenabled()
-    gc.disable()
-    try:
-        return _flatten(modules, top, library_cells)
-    finally:
-        if was_enabled:
-            gc.enable()
-
-
-def _flatten(modules: Mapping[str, Module], top: str | None, library_cells: Collection[str]) -> Netlist:
     called = {name: _called(module, modules) for name, module in modules.items()}
     chosen = _choose_top(modules, called, top, library_cells)
     expanded = {name for name, module in modules.items() if _has_content(module) and name not in library_cells}

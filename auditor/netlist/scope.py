@@ -126,6 +126,16 @@ class Scope:
                 return list(range(start, start + width))
         return self._stand_ins(min(width, MAX_WIDTH))
 
+    def bit_of(self, select: Select) -> int:
+        """Return the net of a select of one bit. Raises WideError for a wider one."""
+        net, left, right = select
+        if left != right:
+            raise WideError
+        first, bounds = self.declared.get(net, (0, None))
+        if bounds is not None and (bounds[0] >= left >= bounds[1] or bounds[0] <= left <= bounds[1]):
+            return first + abs(left - bounds[0])
+        return self._select_bits(select)[0]
+
     def _stand_ins(self, width: int) -> list[int]:
         """Return nets that let the reading go on after a trouble."""
         return [self.generate_net("missing") for _ in range(width)]
@@ -185,14 +195,14 @@ class SingleBits(dict[Expression | None, int]):
         self.scope = scope
 
     def __missing__(self, value: Expression | None) -> int:
-        if isinstance(value, Constant):
-            bit = value.bits[-1:] if not value.sized else value.bits
-            if bit in ("0", "1"):
-                return self.setdefault(value, int(bit))
+        if isinstance(value, Select):
+            net = self.scope.bit_of(value)
+        elif isinstance(value, str) and self.scope.width_of(value) == 1:
+            (net,) = self.scope.bits_of(value, implicit=True)
+        elif isinstance(value, Constant) and value.bits[-1] in "01" and (len(value.bits) == 1 or not value.sized):
+            net = int(value.bits[-1])
+        else:
             raise WideError
-        if not isinstance(value, str | Select) or self.scope.width_of(value) != 1:
-            raise WideError
-        (net,) = self.scope.bits_of(value, implicit=True)
         self[value] = net
         return net
 
