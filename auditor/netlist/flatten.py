@@ -103,7 +103,7 @@ def _children_first(
         for child, line in reversed(list(called[name].items())):
             if child in path:
                 circle = [*list(path)[list(path).index(child) :], child]
-                place = SourcePlace(modules[name].place.file, line)
+                place = modules[name].place_of(line)
                 raise fail(f"modules instantiate each other: {' > '.join(circle)}", "break the circle", place)
             if child in expanded:
                 stack.append((child, False))
@@ -140,6 +140,16 @@ class _Columns:
     ties: list[Tie] = field(default_factory=list)
     undefined: list[int] = field(default_factory=list)
     files: dict[str, int] = field(default_factory=dict)
+
+    def places(self, module: Module, lines: Column) -> tuple[Column, Column]:
+        """Return the numbers of the files that lines of a module stand in, and the lines in them."""
+        spans = module.spans
+        if spans is None:
+            return np.full(len(lines), self.files.setdefault(module.place.file, len(self.files)), np.int32), lines
+        numbers = np.array([self.files.setdefault(file, len(self.files)) for file in spans.files], np.int32)
+        shifts = np.array(spans.firsts, np.int32) - np.array(spans.starts, np.int32)
+        span = np.maximum(np.searchsorted(spans.starts, lines, side="right") - 1, 0)
+        return numbers[span], lines + shifts[span]
 
 
 class _Block(NamedTuple):
@@ -196,9 +206,8 @@ def _lay_down(templates: Mapping[str, Template], top: str) -> _Columns:
             blocks[visit.module] = _block(template)
         base = len(columns.net_names) - 2
         _lay_one(columns, template, blocks[visit.module], visit, base)
-        file = template.scope.module.place.file
         for child in reversed(template.children):
-            place = SourcePlace(file, child.line)
+            place = template.scope.module.place_of(child.line)
             prefix = f"{visit.prefix}{child.name}."
             stack.append(_Visit(child.module, prefix, visit.depth + 1, child.pairs, base, place))
     return columns
@@ -207,23 +216,23 @@ def _lay_down(templates: Mapping[str, Template], top: str) -> _Columns:
 def _lay_one(columns: _Columns, template: Template, block: _Block, visit: _Visit, base: int) -> None:
     """Append one instance of a template; its local net k becomes net k + base, constants stay."""
     scope, prefix = template.scope, visit.prefix
-    file_name = scope.module.place.file
-    file = columns.files.setdefault(file_name, len(columns.files))
+    net_file, net_line = columns.places(scope.module, block.net_line)
+    instance_file, instance_line = columns.places(scope.module, block.lines)
     own_nets = scope.names[CONSTANT_1 + 1 :]
     columns.net_names += [prefix + name for name in own_nets] if prefix else own_nets
     columns.net_depth.append(block.net_depth + visit.depth)
-    columns.net_file.append(np.full(len(own_nets), file, dtype=np.int32))
-    columns.net_line.append(block.net_line)
+    columns.net_file.append(net_file)
+    columns.net_line.append(net_line)
     columns.instance_names += [prefix + name for name in template.names] if prefix else template.names
     columns.instance_type.append(block.types)
-    columns.instance_file.append(np.full(len(block.types), file, dtype=np.int32))
-    columns.instance_line.append(block.lines)
+    columns.instance_file.append(instance_file)
+    columns.instance_line.append(instance_line)
     columns.pin_count.append(block.pin_count)
     columns.pin_name.append(block.pin_name)
     columns.pin_net.append(np.where(block.pin_net > CONSTANT_1, block.pin_net + base, block.pin_net))
     columns.undefined += [net + base for net in scope.undefined]
     for first, second, line in scope.ties:
-        columns.ties.append(Tie(_moved(first, base), _moved(second, base), SourcePlace(file_name, line)))
+        columns.ties.append(Tie(_moved(first, base), _moved(second, base), scope.module.place_of(line)))
     for inside, outside in visit.pairs:
         columns.ties.append(Tie(_moved(inside, base), _moved(outside, visit.base), visit.place))
 

@@ -9,7 +9,6 @@ from itertools import islice
 
 from auditor.errors import TroubleList, near_misses
 from auditor.netlist.netlist import CONSTANT_0, CONSTANT_1, OPEN
-from auditor.notation import SourcePlace
 from auditor.verilog.statements import Concatenation, Constant, Expression, Module, Range, Select
 
 MAX_OBJECTS = 50_000_000
@@ -74,7 +73,7 @@ class Scope:
 
     def trouble(self, found: str, remedy: str) -> None:
         """Note a trouble at the statement at hand."""
-        self.troubles.add(found, remedy, SourcePlace(self.module.place.file, self.line))
+        self.troubles.add(found, remedy, self.module.place_of(self.line))
 
     def width_of(self, value: Expression | None) -> int:
         """Return the width of a leaf; an undeclared net is one bit wide."""
@@ -88,7 +87,7 @@ class Scope:
     def bits_of(self, value: Expression | None, implicit: bool) -> list[int]:
         """Return the bits of a leaf; ``implicit`` allows a net that is declared nowhere (IEEE 1364-2005, 4.5)."""
         if isinstance(value, str):
-            return self._net_bits(value, implicit)
+            return self._net_bits(value, implicit and self.module.implicit_nets)
         if isinstance(value, Select):
             return self._select_bits(value)
         if isinstance(value, Constant):

@@ -4,6 +4,8 @@ Both lanes (``scanner`` and ``grammar``) give these and nothing else; ``netlist/
 stored without the backslash and the blank of an escaped identifier.
 """
 
+from bisect import bisect_right
+from bisect import bisect_right
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 from typing import Literal, NamedTuple, TypeAlias
@@ -100,8 +102,29 @@ class HeaderPort(NamedTuple):
 
 
 @dataclass(frozen=True, slots=True)
+class Lines:
+    """Where the lines of a text come from that takes in other files.
+
+    From line ``starts[k]`` of the text on they are the lines of ``files[k]`` from ``firsts[k]`` on; ``starts`` ascends.
+    """
+
+    starts: tuple[int, ...]
+    files: tuple[str, ...]
+    firsts: tuple[int, ...]
+
+    def place(self, line: int) -> SourcePlace:
+        """Return the file and the line in it that a line of the text comes from."""
+        k = max(0, bisect_right(self.starts, line) - 1)
+        return SourcePlace(self.files[k], self.firsts[k] + line - self.starts[k])
+
+
+@dataclass(frozen=True, slots=True)
 class Module:
-    """A module as written. ``ports`` in header order; ``directions`` by the names of the nets declared as ports."""
+    """A module as written. ``ports`` in header order; ``directions`` by the names of the nets declared as ports.
+
+    Lines are those of the whole text, which ``place_of`` finds in their files; ``spans`` is None where the text is one
+    file. ``implicit_nets`` False: `` `default_nettype none `` held where the module begins.
+    """
 
     name: str
     place: SourcePlace
@@ -110,3 +133,15 @@ class Module:
     nets: Mapping[str, Declaration]
     instances: list[Instance] = field(default_factory=list)
     assigns: list[Assign] = field(default_factory=list)
+    spans: Lines | None = None
+    implicit_nets: bool = True
+
+    def place_of(self, line: int) -> SourcePlace:
+        """Return where a line of this module stands."""
+        return self.spans.place(line) if self.spans else SourcePlace(self.place.file, line)
+    spans: Lines | None = None
+    implicit_nets: bool = True
+
+    def place_of(self, line: int) -> SourcePlace:
+        """Return where a line of this module stands."""
+        return self.spans.place(line) if self.spans else SourcePlace(self.place.file, line)
