@@ -4,7 +4,7 @@ An element is written as a fraction of two polynomials that have factors of mode
 are brought down by one relation each in which the other factors are in the base (Coppersmith 1984).
 """
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 
 from auditor.gf2.calculus.divisors import Divisors
 from auditor.gf2.calculus.factor_base import FactorBase, irreducibles
@@ -15,8 +15,10 @@ from auditor.gf2.factorisation import factor
 from auditor.gf2.polynomial import degree, divide, multiply_modulo
 from auditor.notation import Polynomial
 
-_BEYOND = 5  # an element is split into factors of the base degree and this much more
-_ATTEMPTS = 40
+_BEYOND = 7  # an element is split into factors of the base degree and this much more
+_ATTEMPTS = 40  # multiples of an element that are split before the search is given up
+_SPLIT_SIZES = (4, 6)  # coefficients of the multipliers of fractions
+_RELATION_SIZES = (5, 6)  # and of those of relations
 
 Product = dict[Polynomial, int]
 
@@ -28,18 +30,18 @@ class Descent:
         self._base, self._work = base, work
         self._primes = irreducibles(base.degree).tolist()
         self._divisors = Divisors(base.degree, 128)
+        self._shape = Shape(base.field)
+        self._quarter = pow(4, -1, base.modulus)
         self._known = {p: log for p, log in zip(self._primes, base.logs, strict=True) if log is not None}
 
     def logarithms(self, elements: Sequence[Polynomial]) -> list[int]:
         """Return the logarithms of elements of the field other than zero; ``OutOfWork`` if the search ends before.
 
-        An element that resists is multiplied by one after another of the base.
+        An element that resists is multiplied by one after another of the base; large ones share no fractions.
         """
         found: dict[int, int] = {}
-        for prime in [1, *list(self._known)[:_ATTEMPTS]]:
+        for prime in [1, *list(self._known)[: -_ATTEMPTS - 1 : -1]]:
             numbers = [number for number in range(len(elements)) if number not in found]
-            if not numbers:
-                return [found[number] for number in range(len(elements))]
             multiples = [multiply_modulo(elements[number], prime, self._base.field) for number in numbers]
             splits = self._split(multiples)
             self._solve_beyond({p for product in splits.values() for p in product if p not in self._known})
@@ -47,6 +49,8 @@ class Descent:
                 log = self._log(product)
                 if log is not None:
                     found[numbers[k]] = (log - self._known.get(prime, 0)) % self._base.modulus
+            if len(found) == len(elements):
+                return [found[number] for number in range(len(elements))]
         raise OutOfWork
 
     def _log(self, product: Product) -> int | None:
@@ -72,37 +76,57 @@ class Descent:
         products: dict[int, Product] = {}
 
         def accept(number: int, above: Polynomial, below: Polynomial) -> bool:
-            products[number] = _divided(self._factors(above), self._factors(below))
-            self._work.report(f"elements split {len(products)}/{len(elements)}")
+            products[numbers[number]] = _divided(self._factors(above), self._factors(below))
             return True
 
-        find_smooth(searches, self._base.degree + _BEYOND, accept, self._work)
+        numbers = list(range(len(searches)))
+        for size in _SPLIT_SIZES:
+            self._work.report(f"elements split {len(products)}/{len(elements)}")
+            numbers = [k for k in numbers if k not in products]
+            find_smooth([searches[k] for k in numbers], 1, size, self._base.degree + _BEYOND, accept, self._work)
         return products
 
     def _solve_beyond(self, primes: set[Polynomial]) -> None:
         """Find logarithms of irreducible polynomials beyond the base, where a relation with only known ones exists."""
-        shape = Shape(self._base.field)
         wanted = sorted(primes)
-        searches = [_through(shape, p) for p in wanted]
-        quarter = pow(4, -1, self._base.modulus)
+        for size in _RELATION_SIZES:
+            for through in (_through_left, _through_right):
+                self._work.report(f"{len(wanted)} factors beyond the base")
+                wanted = self._solve_by(through, wanted, size)
 
-        def accept(number: int, cofactor: Polynomial, right: Polynomial) -> bool:
-            rest, fourfold = self._log(self._factors(cofactor)), self._log(self._factors(right))
-            if rest is None or fourfold is None:
+    def _solve_by(
+        self, through: Callable[[Shape, Polynomial], Search], wanted: list[Polynomial], size: int
+    ) -> list[int]:
+        """Find logarithms from relations with the polynomial on one side; return the polynomials without one."""
+
+        def accept(number: int, left: Polynomial, right: Polynomial) -> bool:
+            # 4 log C = log D, and one of the two parts lacks the wanted polynomial.
+            fourth, whole = self._log(self._factors(left)), self._log(self._factors(right))
+            if fourth is None or whole is None:
                 return False
-            self._known[wanted[number]] = (fourfold * quarter - rest) % self._base.modulus
+            excess = whole - 4 * fourth
+            log = excess * self._quarter if through is _through_left else -excess
+            self._known[wanted[number]] = log % self._base.modulus
             return True
 
-        self._work.report(f"{len(wanted)} factors beyond the base")
-        find_smooth(searches, self._base.degree, accept, self._work)
+        searches = [through(self._shape, p) for p in wanted]
+        left_out = find_smooth(searches, 4, size, self._base.degree, accept, self._work)
+        return [wanted[number] for number in left_out]
 
 
 def _divided(above: Product, below: Product) -> Product:
     return {p: above.get(p, 0) - below.get(p, 0) for p in above | below}
 
 
-def _through(shape: Shape, p: Polynomial) -> Search:
+def _through_left(shape: Shape, p: Polynomial) -> Search:
     """Return the search among the relations in which p divides C; its left part is C / p."""
     (v0, u0), (v1, u1) = short_fractions(shape.power(p), p)
     left0, left1 = (divide(shape.left(u, v), p)[0] for u, v in ((u0, v0), (u1, v1)))
-    return Search((left0, left1), (shape.right(u0, v0), shape.right(u1, v1)), power=4)
+    return Search((left0, left1), (shape.right(u0, v0), shape.right(u1, v1)))
+
+
+def _through_right(shape: Shape, p: Polynomial) -> Search:
+    """Return the search among the relations in which p divides D; its right part is D / p."""
+    (v0, u0), (v1, u1) = short_fractions(shape.fourth_root(p), p)
+    right0, right1 = (divide(shape.right(u, v), p)[0] for u, v in ((u0, v0), (u1, v1)))
+    return Search((shape.left(u0, v0), shape.left(u1, v1)), (right0, right1))

@@ -60,7 +60,9 @@ class Divisors:
         return tables
 
     def of(self, polynomial: Polynomial) -> Factors:
-        """Return the factors of a polynomial other than zero."""
+        """Return the factors of a polynomial other than zero; ``ValueError`` if it is longer than prepared for."""
+        if polynomial.bit_length() > 4 * len(self._rows):
+            raise ValueError("the polynomial is longer than the table of remainders")
         digits = f"{polynomial:x}"[::-1]
         rows = [table[int(digit, 16)] for table, digit in zip(self._rows, digits, strict=False) if digit != "0"]
         total = rows[0].copy()

@@ -73,10 +73,7 @@ class Sieve:
         sizes = np.array([degree(p) for p in primes.tolist()])
         edges = np.searchsorted(sizes, range(1, base_degree + 2))
         self._primes = [primes[start:end] for start, end in pairwise(edges)]
-        self._ratios = [
-            [np.array([ratio(p) for p in group.tolist()], np.int64) for ratio in (shape.power, shape.fourth_root)]
-            for group in self._primes
-        ]
+        self._ratios = [_ratios(shape, group, size) for size, group in enumerate(self._primes, start=1)]
 
     @property
     def cells(self) -> int:
@@ -131,8 +128,7 @@ class Sieve:
                     table = np.concatenate([table, table ^ power[:, None]], axis=1)
                 elif first >> bit & 1:
                     offset = offset ^ power
-                power = power << 1
-                power = power ^ p * (power >> size)
+                power = _times_x(power, p, size)
             yield table ^ offset[:, None]
 
     def _add_rows(self, cells: Degrees, primes: Numbers, remainders: Iterator[Numbers], size: int) -> None:
@@ -162,3 +158,34 @@ class Sieve:
             for k in range(0, len(group), step):
                 steps = np.array([multiples(p, cofactors) for p in group[k : k + step].tolist()])
                 yield ((starts + table[k : k + step])[:, :, None] ^ steps[:, None, :]).reshape(-1)
+
+
+def _ratios(shape: Shape, primes: Numbers, size: int) -> tuple[Numbers, Numbers]:
+    """Return ``shape.power`` and ``shape.fourth_root`` of many primes of one degree."""
+    power = _horner(1 << shape.shift, primes, size)
+    root = _horner(shape.high, primes, size)
+    for _ in range(size - 2):
+        # The square of Σ r_k x^k is Σ r_k x^(2 k).
+        square = np.zeros_like(root)
+        for k in range(size - 1, -1, -1):
+            square = _times_x(_times_x(square, primes, size), primes, size) ^ (root >> k & 1)
+        root = square
+    return power, root
+
+
+def _horner(polynomial: Polynomial, primes: Numbers, size: int) -> Numbers:
+    """Return the polynomial modulo each of the primes."""
+    result = np.zeros_like(primes)
+    for digit in f"{polynomial:b}":
+        result = _reduced(result << 1 ^ int(digit), primes, size)
+    return result
+
+
+def _times_x(numbers: Numbers, primes: Numbers, size: int) -> Numbers:
+    return _reduced(numbers << 1, primes, size)
+
+
+def _reduced(numbers: Numbers, primes: Numbers, size: int) -> Numbers:
+    """Return polynomials of degree up to that of the primes modulo the primes."""
+    result: Numbers = numbers ^ primes * (numbers >> size)
+    return result

@@ -18,9 +18,9 @@ TableSource: TypeAlias = Callable[[int, int, Work], FactorBase]
 
 # (largest n, degree of the base, width of the sieve)
 _PARAMETERS = ((56, 11, 9), (70, 12, 9), (82, 13, 10), (94, 14, 10), (106, 15, 11), (LARGEST_DEGREE, 16, 11))
-_BLOCKS = 24  # of the sieve, before the search is given up
+_BLOCKS = 64  # of the sieve, before the search is given up
 _X_INDEX = 0  # x is the first of the irreducible polynomials
-_PLENTY = 2.0  # relations for each unknown
+_PLENTY = 1.5  # relations for each unknown
 _CORE_SURPLUS = 1.2  # relations for each unknown of the core
 
 
@@ -49,7 +49,7 @@ def _relations(
 ) -> tuple[list[Relation], int]:
     """Return enough relations Σ exponent log = 0, by index, and how many of the smallest primes they surely solve."""
     shape = Shape(field)
-    sieve = Sieve(shape, base_degree, width, 1 << width - 1)
+    sieve = Sieve(shape, base_degree, width, 1 << width - 3)
     divisors = Divisors(base_degree, 128)
     relations: list[Relation] = []
     for block in range(_BLOCKS):
