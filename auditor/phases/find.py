@@ -10,6 +10,7 @@ from auditor.gf2 import matrix
 from auditor.gf2.order import order_of_x
 from auditor.machine.machine import LinearMachine, ObservedRow
 from auditor.phases.classes import CyclicSpace, alike, choose_reference, cyclic_spaces
+from auditor.phases.in_step import in_step, run_from_reset, shared_factors
 from auditor.phases.leads import Coordinates, Progress, coordinates
 from auditor.phases.links import Links, find_links, proved_pairs
 from auditor.phases.registers import register_facts
@@ -38,7 +39,12 @@ def find_phases(
             search.phases[channel] = Phase(None, None, "none", None, None, 0, reason)
     for space in cyclic_spaces(search.streams):
         _solve(search, space, progress)
-    return _table(search)
+    table = _table(search)
+    if not shared_factors(table.registers):
+        return table
+    start = run_from_reset(machine)
+    run = find_phases(start.machine, window=affordable, progress=progress)
+    return replace(table, in_step=tuple(in_step(machine, table, start, run)))
 
 
 @dataclass(slots=True)

@@ -67,7 +67,7 @@ def _close_by_leads(group: PhaseClass, phases: Sequence[Phase], bound: int) -> I
     turn = group.turn
     if not turn:
         return
-    ring = _sorted_leads(group, phases, turn)
+    ring = sorted_leads(group, phases, turn)
     count = len(ring)
     for start, (lead, channel) in enumerate(ring):
         for step in range(1, count):
@@ -80,7 +80,8 @@ def _close_by_leads(group: PhaseClass, phases: Sequence[Phase], bound: int) -> I
             yield min(channel, other), max(channel, other), cycles, complement
 
 
-def _sorted_leads(group: PhaseClass, phases: Sequence[Phase], turn: int) -> list[tuple[int, int]]:
+def sorted_leads(group: PhaseClass, phases: Sequence[Phase], turn: int) -> list[tuple[int, int]]:
+    """Return (lead, channel) of the channels of a class with known leads, as they stand on the circle of one turn."""
     known = ((phases[channel].lead, channel) for channel in group.channels)
     return sorted((lead % turn, channel) for lead, channel in known if lead is not None)
 
@@ -115,7 +116,7 @@ def nearest_neighbours(
 
 def _ring_neighbours(group: PhaseClass, phases: Sequence[Phase]) -> Iterator[tuple[int, int]]:
     """Yield each channel with those that can be its nearest: one in step with it, else the first on either side."""
-    ring = _sorted_leads(group, phases, group.turn) if group.turn else []
+    ring = sorted_leads(group, phases, group.turn) if group.turn else []
     places: dict[int, list[int]] = {}
     for lead, channel in ring if len(ring) > 1 else []:
         places.setdefault(lead, []).append(channel)

@@ -20,8 +20,12 @@ _X = 0b10
 
 @dataclass(frozen=True, slots=True)
 class Streams:
-    """Rows by channel number, refused channels left out; ``steady`` rows are those after the transient."""
+    """Rows by channel number, refused channels left out; ``steady`` rows are those after the transient.
 
+    ``elements``  the machine's elements in the order of the bits 1 ... w
+    """
+
+    elements: tuple[int, ...]
     step: Matrix
     transient: int
     rows: dict[int, Vector]
@@ -55,7 +59,7 @@ def read_streams(machine: LinearMachine) -> Streams:
     rows = {i: packed(row.state, row.constant) for i, row in raw.items()}
     settled = matrix.power(step, machine.transient)
     steady = {i: matrix.row_times(row, settled) for i, row in rows.items()}
-    return Streams(step, machine.transient, rows, steady)
+    return Streams(tuple(place), step, machine.transient, rows, steady)
 
 
 def reached(transition: Sequence[Vector], rows: Iterable[Vector]) -> set[int]:

@@ -130,6 +130,24 @@ class RegisterFacts:
 
 
 @dataclass(frozen=True, slots=True)
+class InStep:
+    """Registers, by number, that share irreducible factors of degree 2 or more, and how they run from reset.
+
+    ``shifts``   of each register but the first: the cycles by which the stream of its first element leads that of
+                 the first register's, complements included; None where not known
+    ``closest``  of the channels that tap these registers, the two that come nearest from reset, channels that keep
+                 their distance whatever the start left out; None where none is known
+    ``certain_below``  no other pair of them is closer than both this and ``closest``; None: at any distance
+    """
+
+    registers: tuple[int, ...]
+    factors: tuple[Polynomial, ...]
+    shifts: tuple[Separation, ...]
+    closest: Closest | None
+    certain_below: int | None
+
+
+@dataclass(frozen=True, slots=True)
 class PhaseTable:
     """The registers, the classes, and one phase a channel.
 
@@ -137,6 +155,7 @@ class PhaseTable:
     ``close_pairs``   all pairs closer than ``window`` of which a lead is undecided, ascending:
                       (i, j, cycles, complement), channel i leads channel j by so many cycles
     ``window``        None where all leads are known
+    ``in_step``       the registers that share factors
     """
 
     registers: tuple[RegisterFacts, ...]
@@ -145,6 +164,7 @@ class PhaseTable:
     certified_at_least: int | None
     close_pairs: tuple[tuple[int, int, int, bool], ...] = ()
     window: int | None = None
+    in_step: tuple[InStep, ...] = ()
 
     def decides(self, bound: int) -> bool:
         """Whether every pair closer than the bound is known."""

@@ -1,12 +1,13 @@
 """Rules on the feedback registers: periods, reset and load, registers that can run through the same streams."""
 
 from collections.abc import Iterator
+from dataclasses import replace
+from itertools import chain
 
-from auditor.machine.machine import LinearMachine
-from auditor.notation import Polynomial, Vector, state_hex
-from auditor.phases.table import RegisterFacts
+from auditor.notation import Polynomial, state_hex
+from auditor.phases.table import Closest, Infinite, InStep, Separation
 from auditor.risks.evidence import Evidence, decimal, open_input_reach, register_name
-from auditor.risks.finding import Finding
+from auditor.risks.finding import Finding, Level
 from auditor.risks.levels import finding
 
 
@@ -96,62 +97,82 @@ def no_reset_and_no_load(evidence: Evidence) -> Iterator[Finding]:
 
 
 def registers_in_step(evidence: Evidence) -> Iterator[Finding]:
-    """Report registers that share an irreducible factor of degree 2 or more, each with the first that has it."""
-    first_with: dict[Polynomial, int] = {}
-    shared: dict[tuple[int, int], list[Polynomial]] = {}
-    for number, register in enumerate(evidence.registers):
-        for factor in register.factors:
-            first = first_with.setdefault(factor.polynomial, number)
-            if first != number and factor.polynomial.bit_length() > 2:
-                shared.setdefault((first, number), []).append(factor.polynomial)
-    for (a, b), factors in shared.items():
-        yield _in_step(evidence, evidence.registers[a], evidence.registers[b], factors)
-
-
-def _in_step(evidence: Evidence, a: RegisterFacts, b: RegisterFacts, factors: list[Polynomial]) -> Finding:
-    names_a, names_b = evidence.storage_names(a), evidence.storage_names(b)
-    reset, what_is_known = _start_of_both(evidence.machine, a, b)
-    text = ", ".join(_polynomial_text(factor) for factor in factors)
-    return finding(
-        "registers-in-step",
-        names_a + names_b,
-        f"The registers {register_name(names_a)} and {register_name(names_b)} share the factor {text}, so chains fed "
-        "from the one can carry shifted copies of what chains fed from the other carry, and no phase shifter "
-        f"separates them; {what_is_known}.",
-        {"shared_factor": text, "degree": max(factor.bit_length() - 1 for factor in factors), "reset": reset},
-        evidence.element_place(b.elements[0]),
-    )
-
-
-def _start_of_both(machine: LinearMachine | None, a: RegisterFacts, b: RegisterFacts) -> tuple[str, str]:
-    """Return a word for the figures and a clause on what the reset states of two registers say."""
-    if machine is None or a.reset is None or b.reset is None or a.reset.unknown or b.reset.unknown:
-        return "unknown", "how far apart they run depends on their start states, which are not known"
-    own = _alone(machine, a)
-    if own is not None and own == _alone(machine, b) and a.reset.state == b.reset.state:
-        return (
-            "same",
-            "both have the same next states and the same reset state, so from reset they run in step, bit by bit",
+    """Report registers that share a factor: a note where their channels are known to stay apart as far as asked."""
+    for shared in evidence.phases.in_step if evidence.phases else ():
+        names = [evidence.storage_names(evidence.registers[number]) for number in shared.registers]
+        factors = ", ".join(map(_polynomial_text, shared.factors))
+        level, meeting = _meeting(evidence, shared)
+        near = shared.closest
+        yield replace(
+            finding(
+                "registers-in-step",
+                tuple(chain.from_iterable(names)),
+                f"The registers {' and '.join(map(register_name, names))} share the factor {factors}, so chains fed "
+                "from one of them can carry shifted copies of what chains fed from another carry, and no phase "
+                f"shifter separates them; {_shifts(shared, names)}; {meeting}.",
+                {
+                    "shared_factor": factors,
+                    "degree": max(factor.bit_length() - 1 for factor in shared.factors),
+                    "shift": ", ".join(map(_shift_text, shared.shifts)),
+                    "separation": decimal(near.cycles) if near else None,
+                    "channels": ", ".join(_channel_names(evidence, near)) if near else None,
+                },
+                evidence.element_place(evidence.registers[shared.registers[1]].elements[0]),
+            ),
+            level=level,
         )
-    state_a, state_b = (state_hex(r.reset.state, len(r.elements)) for r in (a, b) if r.reset)
-    return (
-        "known",
-        f"their reset states {state_a} and {state_b} (hex) fix how far apart they run, which was not computed",
-    )
 
 
-def _alone(machine: LinearMachine, register: RegisterFacts) -> tuple[list[Vector], Vector] | None:
-    """Return A and a of a register over its own elements, or None where anything else acts on it."""
-    place = {element: k for k, element in enumerate(register.elements)}
-    rows, offset = [], 0
-    for k, element in enumerate(register.elements):
-        row = machine.transition[element]
-        own = [place[j] for j in register.elements if row >> j & 1]
-        if len(own) != row.bit_count() or machine.input_matrix[element]:
-            return None
-        rows.append(sum(1 << j for j in own))
-        offset |= (machine.offset >> element & 1) << k
-    return rows, offset
+def _shifts(shared: InStep, names: list[tuple[str, ...]]) -> str:
+    """Return a clause on the streams of the registers' first elements from reset."""
+    if all(shift is None for shift in shared.shifts):
+        return "how far apart they run depends on their start states, which are not known"
+    told = []
+    for shift, own in zip(shared.shifts, names[1:], strict=True):
+        if shift is None:
+            told.append(f"the lead of {own[0]} is not known")
+        elif isinstance(shift, Infinite):
+            told.append(f"{own[0]} never carries the stream of {names[0][0]}")
+        elif shift:
+            told.append(f"{own[0]} leads {names[0][0]} by {decimal(shift)} cycle{'s' * (shift != 1)}")
+        else:
+            told.append(f"{own[0]} carries the stream of {names[0][0]} in step")
+    return f"from reset {', '.join(told)}"
+
+
+def _shift_text(shift: Separation) -> str:
+    """Return a shift for the figures: a decimal string, "infinite" or "unknown"."""
+    return "unknown" if shift is None else decimal(shift) if isinstance(shift, int) else str(shift)
+
+
+def _meeting(evidence: Evidence, shared: InStep) -> tuple[Level, str]:
+    """Return the level and a clause on how near the channels of the registers come to each other from reset."""
+    near, clocks, plan = shared.closest, evidence.test_clocks, evidence.plan
+    asked = [
+        (plan.chain_length, "so scan cells of their chains share a bit in every pattern"),
+        (plan.limits.separation, "less than the separation asked for"),
+        (clocks, "so within the planned test one chain receives bits that the other had before"),
+    ]
+    bound = max((bound for bound, _ in asked if bound is not None), default=None)
+    apart = "no two channels of theirs ever carry one stream"
+    if near is not None:
+        how = "complementary" if near.complement else "equal"
+        cycles = f"{decimal(near.cycles)} cycle{'s' * (near.cycles != 1)} apart" if near.cycles else "in step"
+        apart = f"from there {' and '.join(_channel_names(evidence, near))} carry {how} streams {cycles}"
+        for least, consequence in asked:
+            if least is not None and near.cycles < least:
+                return "error", f"{apart}, {consequence}"
+    certain = shared.certain_below
+    if certain is not None and (bound is None or certain < bound):
+        return "error", "whether chains that they feed meet is not known"
+    if bound is None and near is not None:
+        return "error", f"{apart}, and no chain length or planned test is stated to hold against it"
+    return "note", apart if near is None else f"{apart}, and none of their channels are closer"
+
+
+def _channel_names(evidence: Evidence, near: Closest) -> list[str]:
+    observed = evidence.machine.observed if evidence.machine else ()
+    return [observed[channel].name for channel in near.channels]
 
 
 def _polynomial_text(polynomial: Polynomial) -> str:

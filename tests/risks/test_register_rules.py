@@ -1,10 +1,11 @@
 """Rules on feedback registers, on registers whose periods are small enough to step through."""
 
 from dataclasses import replace
+from typing import Any
 
 import pytest
 
-from auditor.plan import Patterns
+from auditor.plan import Limits, Patterns
 from auditor.risks.find import find_risks
 from auditor.risks.register_rules import (
     no_reset_and_no_load,
@@ -104,36 +105,80 @@ def test_a_load_through_other_storage_counts() -> None:
 
 
 def test_registers_with_a_common_factor_are_an_error() -> None:
-    """Two registers of one polynomial are reported; what the reset states say is told with them."""
-    transition = side_by_side(PRIMITIVE, PRIMITIVE)
-    machine = linear_machine(transition, [(1, 0), (1 << 4, 0)])
-    (finding,) = registers_in_step(evidence(machine))
+    """Two registers of one polynomial are an error while their starts, and how far apart they run, are not known."""
+    machine = linear_machine(side_by_side(PRIMITIVE, PRIMITIVE), [(1, 0), (1 << 4, 0)])
+    (finding,) = registers_in_step(evidence(machine, chain_length=1))
     assert (finding.slug, finding.level, finding.where) == ("registers-in-step", "error", machine.storage)
     # The register's characteristic polynomial is the reciprocal of its connection polynomial x^4 + x^3 + 1.
-    assert finding.figures == {"shared_factor": "x^4 + x + 1", "degree": 4, "reset": "unknown"}
+    nothing = {"shift": "unknown", "separation": None, "channels": None}
+    assert finding.figures == {"shared_factor": "x^4 + x + 1", "degree": 4, **nothing}
     assert finding.says == (
         "The registers q[0] to q[3] (4 elements) and q[4] to q[7] (4 elements) share the factor x^4 + x + 1, so chains "
-        "fed from the one can carry shifted copies of what chains fed from the other carry, and no phase shifter "
-        "separates them; how far apart they run depends on their start states, which are not known."
+        "fed from one of them can carry shifted copies of what chains fed from another carry, and no phase shifter "
+        "separates them; how far apart they run depends on their start states, which are not known; whether chains "
+        "that they feed meet is not known."
     )
-    (finding,) = registers_in_step(evidence(replace(machine, reset_known=0xFF, reset_state=0x35)))
-    assert finding.figures["reset"] == "known"
-    assert "their reset states 5 and 3 (hex) fix how far apart they run" in finding.says
-    (finding,) = registers_in_step(evidence(replace(machine, reset_known=0xFF, reset_state=0x33)))
-    assert finding.figures["reset"] == "same"
-    assert "they run in step, bit by bit" in finding.says
 
 
-def test_equal_start_states_of_different_registers_say_nothing() -> None:
-    """Equal reset states make two registers run in step only where nothing else differs or acts on them."""
+# Bit 0 of PRIMITIVE takes bit 2 + bit 3, the others shift up: from 5 the states are 5 b 7 f e c 8 1 2 4 9 3, so that
+# the register that starts in 3 is 11 of 15 cycles ahead, or 4 behind.
+@pytest.mark.parametrize(
+    ("stated", "level", "says"),
+    [
+        (
+            {},
+            "error",
+            "equal streams 4 cycles apart, and no chain length or planned test is stated to hold against it.",
+        ),
+        ({"chain_length": 5}, "error", "4 cycles apart, so scan cells of their chains share a bit in every pattern."),
+        ({"limits": Limits(separation=5)}, "error", "4 cycles apart, less than the separation asked for."),
+        (
+            {"chain_length": 4, "patterns": Patterns(2, 4)},
+            "error",
+            "one chain receives bits that the other had before.",
+        ),
+        ({"chain_length": 4}, "note", "equal streams 4 cycles apart, and none of their channels are closer."),
+        ({"patterns": Patterns(1, 4)}, "note", "equal streams 4 cycles apart, and none of their channels are closer."),
+    ],
+)
+def test_registers_that_stay_apart_from_reset_are_a_note(stated: dict[str, Any], level: str, says: str) -> None:
+    """With known starts the level is that of the meeting: an error within what was stated, a note beyond."""
+    transition = side_by_side(PRIMITIVE, PRIMITIVE)
+    machine = linear_machine(transition, [(1, 0), (1 << 4, 0)], reset_known=0xFF, reset_state=0x35)
+    (finding,) = registers_in_step(evidence(machine, **stated))
+    assert finding.level == level
+    assert finding.says.endswith(says)
+    assert "from reset q[4] leads q[0] by 11 cycles; from there c0 and c1" in finding.says
+    assert finding.figures["shift"] == "11"
+    assert (finding.figures["separation"], finding.figures["channels"]) == ("4", "c0, c1")
+
+
+def test_equal_registers_in_equal_states_run_in_step() -> None:
+    """Twins that reset alike are in step bit by bit, an error at any chain length; one in lock-up never meets."""
+    transition = side_by_side(PRIMITIVE, PRIMITIVE)
+    machine = linear_machine(transition, [(1, 0), (1 << 4, 0)], reset_known=0xFF, reset_state=0x33)
+    (finding,) = registers_in_step(evidence(machine, chain_length=1))
+    assert (finding.level, finding.figures["shift"]) == ("error", "0")
+    assert (
+        "from reset q[4] carries the stream of q[0] in step; from there c0 and c1 carry equal streams" in finding.says
+    )
+    (finding,) = registers_in_step(evidence(replace(machine, reset_state=0x30), chain_length=1))
+    assert (finding.level, finding.figures["shift"]) == ("note", "infinite")
+    assert finding.says.endswith(
+        "q[4] never carries the stream of q[0]; no two channels of theirs ever carry one stream."
+    )
+
+
+def test_an_offset_or_a_coupling_is_part_of_the_run() -> None:
+    """Equal states of registers that differ say nothing: the shift is that of the streams themselves."""
     transition = side_by_side(PRIMITIVE, PRIMITIVE)
     machine = linear_machine(transition, [(1, 0), (1 << 4, 0)], reset_known=0xFF, reset_state=0x33, offset=1)
-    (finding,) = registers_in_step(evidence(machine))
-    assert finding.figures["reset"] == "known"
-    coupled = [transition[0], *transition[1:4], transition[4] | 1, *transition[5:]]
-    machine = linear_machine(coupled, [(1 << 4, 0)], reset_known=0xFF, reset_state=0x33)
-    (finding,) = registers_in_step(evidence(machine))
-    assert finding.figures["reset"] == "known"
+    (finding,) = registers_in_step(evidence(machine, chain_length=1))
+    assert finding.figures["shift"] not in ("0", "unknown", "infinite")
+    coupled = [*transition[:4], transition[4] | 1, *transition[5:]]
+    machine = linear_machine(coupled, [(1, 0), (1 << 4, 0)], reset_known=0xFF, reset_state=0x33)
+    (finding,) = registers_in_step(evidence(machine, chain_length=1))
+    assert finding.figures["shift"] == "infinite"  # x^4 + x + 1 once in the one stream, twice in the other
 
 
 def test_registers_that_share_nothing_but_a_constant_are_not_reported() -> None:
@@ -144,7 +189,16 @@ def test_registers_that_share_nothing_but_a_constant_are_not_reported() -> None:
     assert not list(registers_in_step(evidence(holding)))
 
 
-def test_several_registers_are_reported_with_the_first_only() -> None:
-    """Four registers of one polynomial give three findings, not six."""
+def test_several_registers_are_one_finding() -> None:
+    """Four registers of one polynomial give one finding with three shifts against the first."""
     machine = linear_machine(side_by_side(*[PRIMITIVE] * 4), [(1 << 4 * k, 0) for k in range(4)])
-    assert len([f for f in find_risks(evidence(machine)) if f.slug == "registers-in-step"]) == 3
+    (finding,) = [f for f in find_risks(evidence(machine)) if f.slug == "registers-in-step"]
+    assert finding.where == machine.storage
+    assert finding.figures["shift"] == "unknown, unknown, unknown"
+    started = replace(machine, reset_known=0xF0FF, reset_state=0x3035)
+    (finding,) = registers_in_step(evidence(started, chain_length=1))
+    assert (finding.level, finding.figures["shift"]) == ("error", "11, unknown, 11")
+    assert (
+        "by 11 cycles, the lead of q[8] is not known, q[12] leads q[0] by 11 cycles; from there c1 and c3"
+        in finding.says
+    )
