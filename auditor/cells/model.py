@@ -90,7 +90,8 @@ Item: TypeAlias = Gate | Part | Assign | Process
 class Module:
     """A module; ``kinds`` are wire, reg, supply0 ... by net, ``ranges`` the bounds of vectors as written.
 
-    ``delayed`` holds nets that a timing check drives as late copies of others (IEEE 1364-2005, 15.5.2).
+    ``delayed`` holds nets that a timing check drives as late copies of others (IEEE 1364-2005, 15.5.2). ``unread`` says
+    in words why the rest of the text is missing here, or is empty.
     """
 
     name: str
@@ -101,6 +102,7 @@ class Module:
     kinds: dict[str, str] = field(default_factory=dict)
     delayed: dict[str, str] = field(default_factory=dict)
     items: list[Item] = field(default_factory=list)
+    unread: str = ""
 
 
 @dataclass(frozen=True, slots=True)

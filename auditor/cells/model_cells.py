@@ -12,7 +12,7 @@ from auditor.cells.compose import NotUnderstood, put_into_each_other
 from auditor.cells.library import Cell, Function, Pin
 from auditor.cells.model import Models, Primitive
 from auditor.cells.model_expression import ONE, ZERO
-from auditor.cells.model_nets import Driver, Nets, TableDriver, lay_out
+from auditor.cells.model_nets import Driver, Nets, TableDriver, UnreadDriver, lay_out
 from auditor.cells.model_table import STATE, primitive_function, primitive_storage, wanted_level
 from auditor.cells.storage import Described, rewrite, settle
 from auditor.cells.truth import first_one
@@ -25,16 +25,15 @@ _ITSELF = ("$0",)
 def model_cell(name: str, models: Models) -> Cell:
     """Return the cell that a module or primitive describes; raises nothing, see ``Cell.not_understood``."""
     place = models[name].place
-    pins: dict[str, Pin] = {}
+    nets = Nets()
     try:
-        nets = lay_out(name, models)
-        pins = {port: Pin(port, direction) for port, direction in nets.ports.items()}
+        lay_out(name, models, nets)
         if "output" in nets.ports.values() and not nets.drivers:
             raise NotUnderstood(f"its model at {place} gives no function")
-        cell = _Evaluation(nets).cell(name)
+        return replace(_Evaluation(nets).cell(name), place=place)
     except NotUnderstood as reason:
+        pins = {port: Pin(port, direction) for port, direction in nets.ports.items()}
         return Cell(name, pins, place=place, not_understood=str(reason))
-    return replace(cell, place=place)
 
 
 class _Evaluation:
@@ -65,7 +64,8 @@ class _Evaluation:
         whole = put_into_each_other({**self.functions, **outputs}, self.bits)
         self._refuse_unknown(whole)
         inner = {net: whole[net] for net in self.functions}
-        storage, meaning = settle([_put_into(bit, inner) for bit in self.bits.values()], self.nets.ports)
+        bits = [_put_into(self.bits[net], inner) for net in self.nets.drivers if net in self.bits]  # as in the text
+        storage, meaning = settle(bits, self.nets.ports)
         pins = {}
         for port in self.nets.ports:
             function, three_state = whole.get(f"output {port}"), whole.get(f"off {port}")
@@ -129,6 +129,8 @@ class _Evaluation:
                     raise NotUnderstood(f"nothing drives {net} in its model")
                 self.read.add(net)
                 continue
+            if isinstance(driver, UnreadDriver):
+                raise NotUnderstood(driver.reason)
             entered = self._table(driver, net) if isinstance(driver, TableDriver) else driver
             if isinstance(entered, Described):
                 self.bits[net] = entered

@@ -12,6 +12,7 @@ from auditor.cells.compose import LONGEST_PROGRAM, NotUnderstood
 from auditor.cells.function import restrict, substitute
 from auditor.cells.library import Function
 from auditor.cells.model import Token, Tokens
+from auditor.notation import SourcePlace
 
 Value: TypeAlias = tuple[Function, ...]  # least significant bit first
 Lookup: TypeAlias = Callable[
@@ -75,8 +76,10 @@ def select_of(tokens: Tokens, position: int) -> tuple[tuple[int, int] | None, in
     raise NotUnderstood(f"a select at {tokens[position].place} is no constant")
 
 
-def read_expression(tokens: Tokens, lookup: Lookup) -> Value:
-    """Return the value of an expression. Raises ``NotUnderstood``."""
+def read_expression(tokens: Tokens, lookup: Lookup, place: SourcePlace) -> Value:
+    """Return the value of an expression in what stands at ``place``. Raises ``NotUnderstood``."""
+    if not tokens:
+        raise NotUnderstood(f"an expression is missing at {place}")
     return _Parser(tokens, lookup).parse()
 
 
@@ -187,8 +190,6 @@ class _Parser:
         return NotUnderstood(f"the expression at {self._place()} is not read")
 
     def _place(self) -> str:
-        if not self.tokens:
-            return "an open pin"
         return str(self.tokens[min(self.position, len(self.tokens) - 1)].place)
 
 

@@ -54,10 +54,13 @@ _EDGE_WORD = re.compile(r"(?:posedge|negedge|edge)\b(?:\s*+\[[^\]]*+\])?")
 
 
 def read_module(source: ModuleText) -> Module:
-    """Return the module of a text. Raises ``NotUnderstood`` with the place of what cannot be read."""
+    """Return the module of a text, up to the first thing that cannot be read; see ``Module.unread``."""
     module = Module(source.name, source.place)
     text = _SPECIFY.sub(lambda found: _without_specify(found, module), source.text)
-    _Reader(module, list(_tokens(text, source))).read()
+    try:
+        _Reader(module, list(_tokens(text, source))).read()
+    except NotUnderstood as reason:
+        module.unread = str(reason)
     return module
 
 

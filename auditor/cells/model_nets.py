@@ -40,7 +40,13 @@ class TableDriver(NamedTuple):
     nets: tuple[str | None, ...]
 
 
-AnyDriver: TypeAlias = Driver | TableDriver | Described
+class UnreadDriver(NamedTuple):
+    """An assignment that is not read, and why: of a model for simulation much has no bearing on any output."""
+
+    reason: str
+
+
+AnyDriver: TypeAlias = Driver | TableDriver | UnreadDriver | Described
 
 
 @dataclass(slots=True)
@@ -51,24 +57,26 @@ class Nets:
     drivers: dict[str, AnyDriver] = field(default_factory=dict)
 
 
-def lay_out(name: str, models: Models) -> Nets:
-    """Return the nets of the module or primitive ``name``. Raises ``NotUnderstood``."""
+def lay_out(name: str, models: Models, nets: Nets) -> None:
+    """Enter the ports and nets of the module or primitive ``name`` in ``nets``, which is empty.
+
+    Raises ``NotUnderstood``; ports that could be read are entered by then.
+    """
     top = models[name]
-    nets = Nets()
     if isinstance(top, Primitive):
         nets.ports = {top.output: "output", **dict.fromkeys(top.inputs, "input")}
         nets.drivers[top.output] = TableDriver(top, top.inputs)
-        return nets
+        return
     layout = _Layout(models, nets)
     scope = layout.opened(top, "", (name,))
     for port in scope.module.ports:
         direction = scope.module.directions.get(port)
-        if direction is None:
+        if direction:
+            nets.ports |= dict.fromkeys(scope.bits(port), direction)
+        elif not scope.module.unread:
             raise NotUnderstood(f"the port {port} of its model at {top.place} has no direction")
-        nets.ports |= dict.fromkeys(scope.bits(port), direction)
     while layout.waiting:
         layout.enter(layout.waiting.pop())
-    return nets
 
 
 class _Scope:
@@ -133,7 +141,9 @@ class _Layout:
         return scope
 
     def enter(self, scope: _Scope) -> None:
-        """Enter the items of a module and the late copies of nets in it."""
+        """Enter all that drives nets in a module."""
+        if scope.module.unread:
+            raise NotUnderstood(scope.module.unread)
         for item in scope.module.items:
             if isinstance(item, Gate):
                 self._gate(scope, item)
@@ -144,11 +154,19 @@ class _Layout:
                     self._drive(net, meaning if isinstance(meaning, Described) else Driver(meaning), item.place)
             else:
                 self._part(scope, item)
+        self._supplies(scope)
+        self._late_copies(scope)
+
+    def _supplies(self, scope: _Scope) -> None:
+        """Drive the nets of supplies; refuse those that join their drivers in ways that no cell needs."""
         for name, kind in scope.module.kinds.items():
             if kind not in _PLAIN:
                 raise NotUnderstood(f"{name} of its model at {scope.module.place} is {kind}, which is not read")
             if kind in _SUPPLIES:
                 self.nets.drivers.update(dict.fromkeys(scope.bits(name), Driver(_SUPPLIES[kind])))
+
+    def _late_copies(self, scope: _Scope) -> None:
+        """Drive the nets that a timing check drives."""
         for copy, net in scope.module.delayed.items():
             for late, early in zip(_any_bits(scope, copy), _any_bits(scope, net), strict=False):
                 if late not in self.nets.drivers:
@@ -162,9 +180,9 @@ class _Layout:
             raise NotUnderstood(f"its model has more than {_MOST_DRIVERS} gates")
         self.nets.drivers[net] = driver
 
-    def _one_bit(self, scope: _Scope, tokens: Tokens) -> Function:
+    def _one_bit(self, scope: _Scope, tokens: Tokens, place: SourcePlace) -> Function:
         """Return the value of an input of a gate, of which the last bit counts."""
-        return read_expression(tokens, scope.value)[0]
+        return read_expression(tokens, scope.value, place)[0]
 
     def _gate(self, scope: _Scope, gate: Gate) -> None:
         """Enter a gate primitive: outputs first, then inputs."""
@@ -173,7 +191,7 @@ class _Layout:
             self._drive(net, Driver(_PULLS[gate.kind]), gate.place)
             return
         outputs = len(gate.terminals) - 1 if gate.kind in ("buf", "not") else 1
-        inputs = [self._one_bit(scope, tokens) for tokens in gate.terminals[outputs:]]
+        inputs = [self._one_bit(scope, tokens, gate.place) for tokens in gate.terminals[outputs:]]
         try:
             pin = primitive_cell(gate.kind, len(inputs)).pins["out"]
         except KeyError:
@@ -186,7 +204,12 @@ class _Layout:
 
     def _assign(self, scope: _Scope, assign: Assign) -> None:
         nets = scope.targets(assign.left)
-        value = read_expression(assign.right, scope.value)
+        try:
+            value = read_expression(assign.right, scope.value, assign.place)
+        except NotUnderstood as reason:
+            for net in nets:
+                self._drive(net, UnreadDriver(str(reason)), assign.place)
+            return
         for k, net in enumerate(nets):
             self._drive(net, Driver(value[k] if k < len(value) else ZERO), assign.place)
 
@@ -213,7 +236,7 @@ class _Layout:
             pairs = list(zip(scope.targets(tokens), nets, strict=False))
         else:
             pairs = []
-            for net, function in zip(nets, read_expression(tokens, scope.value), strict=False):
+            for net, function in zip(nets, read_expression(tokens, scope.value, part.place), strict=False):
                 self._drive(net, Driver(function, wire=True), part.place)
         for outside, net in pairs:
             self._drive(outside, Driver(Function((net,), ("$0",)), wire=True), part.place)
@@ -230,7 +253,7 @@ class _Layout:
             tokens = connected.get(name)
             inputs.append(f"{net}.input{k}" if tokens else None)
             if tokens:
-                driver = Driver(self._one_bit(scope, tokens), wire=True)
+                driver = Driver(self._one_bit(scope, tokens, part.place), wire=True)
                 self._drive(f"{net}.input{k}", driver, part.place)
         self._drive(net, TableDriver(primitive, tuple(inputs)), part.place)
 

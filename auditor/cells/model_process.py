@@ -14,12 +14,15 @@ from auditor.cells.compose import NotUnderstood
 from auditor.cells.function import EXACT_INPUTS, support
 from auditor.cells.library import Function
 from auditor.cells.model import Process, Token, Tokens
-from auditor.cells.model_expression import ONE, Lookup, choose, invert, join, read_expression, truth
+from auditor.cells.model_expression import ONE, Lookup, choose, invert, is_name, join, read_expression, truth
 from auditor.cells.storage import Described
-from auditor.cells.transitions import Transitions, recognise
+from auditor.cells.transitions import Transitions, recognise, recognise_latch
 from auditor.cells.truth import TableSpace
 
 _DEEPEST = 100
+_STATEMENTS = frozenset(
+    ["case", "casex", "casez", "for", "while", "repeat", "forever", "wait", "disable", "fork", "else", "end", "assign"]
+)
 # From tokens to the single nets that they name, least significant bit first.
 Targets: TypeAlias = Callable[[Tokens], list[str]]
 
@@ -110,7 +113,7 @@ class _Block:
                 continue
             if word == "if":
                 end = _closing(tokens, at + 1)
-                chosen = truth(read_expression(tokens[at + 2 : end], self._value))
+                chosen = truth(read_expression(tokens[at + 2 : end], self._value, tokens[at].place))
                 frames.append(_Frame("then", join("&", condition, chosen), join("&", condition, invert(chosen))))
                 at = end + 1
                 continue
@@ -138,12 +141,12 @@ class _Block:
         """Take an assignment and return the position behind its ``;``."""
         end = next((k for k in range(at, len(tokens)) if tokens[k].text == ";"), None)
         sign = next((k for k in range(at, end or at) if tokens[k].text in ("=", "<=")), None)
-        if end is None or sign is None:
+        if end is None or sign is None or not _may_be_assigned(tokens[at].text):
             raise self._refuse(tokens[at], "is no assignment, if or begin")
         start = sign + 1
         if tokens[start].text == "#":
             start = _closing(tokens, start + 1) + 1 if tokens[start + 1].text == "(" else start + 2
-        value = read_expression(tokens[start:end], self._value)
+        value = read_expression(tokens[start:end], self._value, tokens[sign].place)
         nets = self.targets(tokens[at:sign])
         value = (*value, *[invert(ONE)] * max(0, len(nets) - len(value)))
         assigned, other = (self.now, self.later) if tokens[sign].text == "=" else (self.later, self.now)
@@ -163,6 +166,11 @@ class _Block:
         return NotUnderstood(
             f"the always block at {self.process.place} is not read: {token.text} at {token.place} {why}"
         )
+
+
+def _may_be_assigned(word: str) -> bool:
+    """Return whether what is assigned can begin with this word."""
+    return word == "{" or (is_name(word) and word not in _STATEMENTS)
 
 
 def _closing(tokens: Tokens, at: int) -> int:
@@ -186,7 +194,10 @@ def _level(net: str, function: Function, events: set[str] | None, process: Proce
     inputs = tuple(name for name in function.inputs if name != net)
     space, ones = _table(function, inputs, net)
     zeros = space.mask & ~ones
-    return _recognised(Transitions(inputs, (ones,) * len(inputs), (zeros,) * len(inputs)), net, process)
+    bit = recognise_latch(Transitions(inputs, (ones,) * len(inputs), (zeros,) * len(inputs)), net)
+    if bit is None:
+        raise _neither(net, process)
+    return bit
 
 
 def _flip_flop(net: str, function: Function, edges: list[tuple[str, int]], process: Process) -> Described:
@@ -224,13 +235,6 @@ def _table(function: Function, inputs: tuple[str, ...], net: str) -> tuple[Table
     space = TableSpace(len(names))
     values = [space.columns[names.index(name)] for name in function.inputs]
     return space, function.evaluate(values, space.algebra)
-
-
-def _recognised(transitions: Transitions, net: str, process: Process) -> Described:
-    bit = recognise(transitions, net)
-    if bit is None:
-        raise _neither(net, process)
-    return bit
 
 
 def _neither(net: str, process: Process) -> NotUnderstood:

@@ -40,17 +40,24 @@ def recognise(transitions: Transitions, variable: str) -> Described | None:
     count = len(transitions.inputs)
     if count > MOST_INPUTS:
         return None
+    latch = recognise_latch(transitions, variable) if transitions.clock is None else None
+    if latch:
+        return latch
     search = _Search(transitions, (*transitions.inputs, variable), TableSpace(count + 1))
-    if transitions.clock is None:
-        found = search.latch()
-        if found:
-            return found
     for clock in range(count) if transitions.clock is None else [transitions.clock]:
         for edge in (1, 0):
             found = search.flip_flop(clock, edge)
             if found:
                 return found
     return None
+
+
+def recognise_latch(transitions: Transitions, variable: str) -> Described | None:
+    """Return the latch that ``transitions`` describe, None if they describe none."""
+    count = len(transitions.inputs)
+    if count > MOST_INPUTS:
+        return None
+    return _Search(transitions, (*transitions.inputs, variable), TableSpace(count + 1)).latch()
 
 
 @dataclass(frozen=True, slots=True)
