@@ -1,4 +1,4 @@
-"""Several modes of one plan: each audited by itself, read once, troubles of all told together."""
+"""Whole audits: several modes of one plan, free inputs, registers in several instances."""
 
 import io
 from dataclasses import replace
@@ -13,7 +13,9 @@ from auditor.errors import InputError
 from auditor.plan import Plan
 from auditor.plan_file import read_plan
 from auditor.report.facts import worst
+from auditor.report.json_report import as_json
 from auditor.report.terminal import print_audits
+from tests.support.audits import audit_text, slugs
 
 SAMPLES = Path(__file__).parents[1] / "sample_netlists"
 
@@ -112,3 +114,100 @@ def test_the_screen_puts_the_modes_side_by_side_first() -> None:
     assert lines[at + 1] == "Verdict pass: selected_taps, no findings"
     assert lines[lines.index("Mode storm") + 1].startswith("Verdict fail: selected_taps, 6 errors")
     assert lines.count("Cautions") == 1
+
+
+OPEN_REGISTER = """\
+module open_register (input clk, rst_n, seed, load, outside, beside, output [2:0] so);
+  wire [1:4] q;
+  wire gated, sum, next, third;
+  ff_set    q1 (.CK(clk), .SN(rst_n), .D(next), .Q(q[1]));
+  ff_clear  q2 (.CK(clk), .RN(rst_n), .D(q[1]), .Q(q[2]));
+  ff_clear  q3 (.CK(clk), .RN(rst_n), .D(third), .Q(q[3]));
+  ff_clear  q4 (.CK(clk), .RN(rst_n), .D(q[3]), .Q(q[4]));
+  xor  u1 (sum, q[4], q[3]);
+  and2 u2 (.A(seed), .B(load), .Y(gated));
+  xor  u3 (next, sum, gated);
+  xor  u4 (third, q[2], outside);
+  assign so[0] = q[1];
+  xor  u5 (so[1], q[4], beside);
+  assign so[2] = beside;
+endmodule
+"""
+
+
+def test_free_inputs_stay_in_the_machine_and_answers_are_for_them_at_0(tmp_path: Path) -> None:
+    """A serial seed, an external XOR input of the register and one behind it are rows of B and D and are listed.
+
+    Periods and leads are those of the same register with the inputs held at 0.
+    """
+    names = ("seed", "outside", "beside")
+    left = audit_text(tmp_path, OPEN_REGISTER, mode={"load": 1})
+    held = audit_text(tmp_path, OPEN_REGISTER, mode={"load": 1, **dict.fromkeys(names, 0)})
+    machine, autonomous = left.extraction.machine, held.extraction.machine
+    assert machine is not None
+    assert autonomous is not None
+    assert set(machine.free_inputs) == set(names)
+    column = {name: 1 << machine.free_inputs.index(name) for name in names}
+    assert dict(zip(machine.storage, machine.input_matrix, strict=True)) == {
+        "q1": column["seed"], "q2": 0, "q3": column["outside"], "q4": 0
+    }  # fmt: skip
+    assert [observed.row and observed.row.inputs for observed in machine.observed] == [0, *[column["beside"]] * 2]
+    assert (machine.transition, machine.offset) == (autonomous.transition, autonomous.offset)
+    assert left.phases is not None
+    assert held.phases is not None
+    assert left.phases.registers == held.phases.registers
+    assert left.phases.phases[:2] == held.phases.phases[:2]
+
+    found = {finding.where: finding.figures for finding in left.findings if finding.slug == "free-input"}
+    assert found == {
+        ("seed",): {"elements": 4, "channels": 2},
+        ("outside",): {"elements": 4, "channels": 2},
+        ("beside",): {"elements": 0, "channels": 2},
+    }
+    assert as_json({"": left})["machine"]["free_inputs"] == list(machine.free_inputs)
+    screen = io.StringIO()
+    print_audits({"": left}, Console(file=screen))
+    assert "seed; periods, leads and separations are given for all of them at 0" in screen.getvalue()
+
+
+def test_a_seed_that_the_mode_switches_off_is_no_free_input(tmp_path: Path) -> None:
+    """With the load held off the seed is cut away, and nothing is said of it."""
+    facts = audit_text(tmp_path, OPEN_REGISTER, mode={"load": 0, "outside": 0, "beside": 0})
+    assert facts.extraction.machine is not None
+    assert facts.extraction.machine.free_inputs == ()
+    assert "free-input" not in slugs(facts)
+
+
+TWINS = """\
+module twins (input clk, rst_n, output [1:0] so);
+  part first (.clk(clk), .rst_n(rst_n), .so(so[0]));
+  part_set second (.clk(clk), .rst_n(rst_n), .so(so[1]));
+endmodule
+module part (input clk, rst_n, output so);
+  wire [1:3] q;
+  wire next;
+  ff_set    q1 (.CK(clk), .SN(rst_n), .D(next), .Q(q[1]));
+  ff_clear  q2 (.CK(clk), .RN(rst_n), .D(q[1]), .Q(q[2]));
+  ff_clear  q3 (.CK(clk), .RN(rst_n), .D(q[2]), .Q(q[3]));
+  xor u1 (next, q[3], q[2]);
+  assign so = q[3];
+endmodule
+module part_set (input clk, rst_n, output so);
+  wire [1:3] q;
+  wire next;
+  ff_set    q1 (.CK(clk), .SN(rst_n), .D(next), .Q(q[1]));
+  ff_clear  q2 (.CK(clk), .RN(rst_n), .D(q[1]), .Q(q[2]));
+  ff_set    q3 (.CK(clk), .SN(rst_n), .D(q[2]), .Q(q[3]));
+  xor u1 (next, q[3], q[2]);
+  assign so = q[3];
+endmodule
+"""
+
+
+@pytest.mark.parametrize(("length", "level"), [(1, "note"), (2, "note"), (3, "error")])
+def test_registers_of_two_instances_are_run_from_their_resets(tmp_path: Path, length: int, level: str) -> None:
+    """A register that resets to 101 is two steps ahead of its twin that resets to 100: 100, 010, 101."""
+    facts = audit_text(tmp_path, TWINS, chain_length=length)
+    (finding,) = [finding for finding in facts.findings if finding.slug == "registers-in-step"]
+    assert (finding.level, finding.figures["shift"], finding.figures["separation"]) == (level, "2", "2")
+    assert finding.where == ("first.q1", "first.q2", "first.q3", "second.q1", "second.q2", "second.q3")

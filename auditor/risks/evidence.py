@@ -76,13 +76,13 @@ def register_name(names: tuple[str, ...]) -> str:
     return f"{names[0]} to {names[-1]} ({len(names)} elements)" if len(names) > 1 else names[0]
 
 
-def open_input_reach(machine: LinearMachine) -> Vector:
-    """Return the elements on which a free input acts, at once or cycles later, as a vector of n bits."""
+def open_input_reach(machine: LinearMachine, inputs: Vector = -1) -> Vector:
+    """Return the elements on which these free inputs (default: all) act, at once or later, as a vector of n bits."""
     readers: dict[int, list[int]] = {}
     for k, row in enumerate(machine.transition):
         for element in ones(row):
             readers.setdefault(element, []).append(k)
-    pending = [k for k, row in enumerate(machine.input_matrix) if row]
+    pending = [k for k, row in enumerate(machine.input_matrix) if row & inputs]
     reached = set(pending)
     while pending:
         new = [k for k in readers.get(pending.pop(), ()) if k not in reached]

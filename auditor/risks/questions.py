@@ -7,8 +7,13 @@ from auditor.risks.evidence import Evidence, decimal, register_name
 
 def open_questions(evidence: Evidence) -> tuple[str, ...]:
     """Return a sentence for every question of this audit that stays open."""
-    parts = (_proofs, _orders, _separations, _test_length)
+    parts = (_guesses, _proofs, _orders, _separations, _test_length)
     return tuple(sentence for part in parts for sentence in part(evidence))
+
+
+def _guesses(evidence: Evidence) -> Iterator[str]:
+    if evidence.plan.guesses:
+        yield "Whether the drafted mode and channels are those that are meant is not decided: state them in a plan."
 
 
 def _proofs(evidence: Evidence) -> Iterator[str]:

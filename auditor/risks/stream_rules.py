@@ -2,7 +2,8 @@
 
 from collections.abc import Iterator
 
-from auditor.machine.machine import Refusal
+from auditor.machine.machine import LinearMachine, Refusal
+from auditor.notation import Vector
 from auditor.risks.evidence import Evidence, open_input_reach
 from auditor.risks.finding import Finding
 from auditor.risks.levels import finding
@@ -89,12 +90,21 @@ def free_input(evidence: Evidence) -> Iterator[Finding]:
         names = machine.free_inputs
     else:
         names = tuple(evidence.cone.wire_name(wire) for wire in evidence.cone.free_inputs)
-    for name in names:
+    for number, name in enumerate(names):
         yield finding(
             "free-input",
             (name,),
             f"{name} is open under this mode and acts on what the chains receive: patterns and signature can be "
-            "predicted only for a known sequence there, and periods and leads hold for the input at 0.",
-            {},
+            "predicted only for a known sequence there; periods, leads and separations are given for all such inputs "
+            "at 0.",
+            {} if machine is None else _reach(evidence, machine, 1 << number),
             evidence.net_place(name),
         )
+
+
+def _reach(evidence: Evidence, machine: LinearMachine, free: Vector) -> dict[str, int | float | str | None]:
+    """Return how many elements and channels a free input acts on, at once or later."""
+    elements = open_input_reach(machine, free)
+    rows = [observed.row for _, observed in evidence.channels() if observed.row is not None]
+    channels = sum(bool(row.inputs & free or row.state & elements) for row in rows)
+    return {"elements": elements.bit_count(), "channels": channels}

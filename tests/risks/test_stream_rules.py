@@ -106,4 +106,6 @@ def test_open_inputs_are_noted(proved: bool) -> None:
     machine = with_input(linear_machine(REGISTER, [(1, 0)]), 2)
     (finding,) = free_input(evidence(machine, proved=proved))
     assert (finding.slug, finding.level, finding.where, finding.place) == ("free-input", "note", ("seed",), PLACE)
+    assert finding.says.endswith("periods, leads and separations are given for all such inputs at 0.")
+    assert finding.figures == ({"elements": 4, "channels": 1} if proved else {})
     assert not list(free_input(evidence(linear_machine(REGISTER, [(1, 0)]), proved=proved)))
