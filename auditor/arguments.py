@@ -25,6 +25,7 @@ class Request:
     plan: Path | None
     json: str | None
     quiet: bool
+    use_draft: bool
 
 
 class _Parser(argparse.ArgumentParser):
@@ -71,20 +72,15 @@ def audit_parser() -> argparse.ArgumentParser:
     add("--fail-at", metavar="LEVEL", help="note, warning or error (default error): findings that fail the audit")
     add("--work-limit", metavar="N", help="bound on the nodes of one proof, beyond which it is undecided")
     add("--json", metavar="F", help="write the report as JSON; - is standard output, the screen then goes to stderr")
+    add("--use-draft", action="store_true", help="guess the mode and channels left open; the verdict is then undecided")
     add("--quiet", action="store_true", help="show neither the report nor progress on the screen")
     return parser
 
 
 def read_arguments(words: Sequence[str]) -> Request:
     """Return what the words after ``auditor audit`` ask for. Raises ``InputError``."""
-    parser = audit_parser()
-    given, unknown = parser.parse_known_intermixed_args(list(words))
     troubles = TroubleList()
-    options = [_option(name) for name in vars(given) if name != "netlists"]
-    for word in [word for word in unknown if word.startswith("-")] or unknown:
-        remedy = near_misses(word.split("=")[0], options) or "see auditor audit --help"
-        troubles.add(f"{word} is no option of auditor audit", remedy, COMMAND_LINE)
-    _refuse_empty(vars(given), troubles)
+    given = _parse(audit_parser(), words, troubles)
     if given.fail_at and given.fail_at not in FAIL_AT:
         remedy = near_misses(given.fail_at, FAIL_AT) or "write note, warning or error"
         troubles.add(f"--fail-at {given.fail_at} is no level", remedy, COMMAND_LINE)
@@ -104,9 +100,55 @@ def read_arguments(words: Sequence[str]) -> Request:
         plan=None if given.plan is None else Path(given.plan),
         json=given.json,
         quiet=given.quiet,
+        use_draft=given.use_draft,
     )
     troubles.raise_any()
     return request
+
+
+def draft_parser() -> argparse.ArgumentParser:
+    """Return the parser of ``auditor draft``."""
+    parser = _Parser(
+        prog="auditor draft",
+        description="Write a starter plan, found in the netlist, to standard output.",
+        epilog="Exit status: 0 a plan is proposed, 2 wrong use or unusable input, 3 none is clear, 4 internal error.",
+        allow_abbrev=False,
+    )
+    add = parser.add_argument
+    add("netlists", nargs="*", metavar="NETLIST", help="Verilog file, plain or gz")
+    add("--cells", action="append", default=[], metavar="F", help="cell library or cell table; may be repeated")
+    add("--top", metavar="M", help="top module")
+    add("--mode", action="append", default=[], metavar="NET=0|1", help="a constant that is certain; may be repeated")
+    add("--work-limit", metavar="N", help="bound on the nodes of one proof")
+    return parser
+
+
+def read_draft_arguments(words: Sequence[str]) -> Options:
+    """Return what the words after ``auditor draft`` state. Raises ``InputError``."""
+    troubles = TroubleList()
+    given = _parse(draft_parser(), words, troubles)
+    options = Options(
+        netlists=tuple(map(Path, given.netlists)),
+        cells=tuple(map(Path, given.cells)),
+        top=given.top,
+        mode=_read_mode(given.mode, troubles),
+        work_limit=_read_number("--work-limit", given.work_limit, 1, troubles),
+    )
+    if not given.netlists:
+        troubles.add("no netlist is given", "name a Verilog file", COMMAND_LINE)
+    troubles.raise_any()
+    return options
+
+
+def _parse(parser: argparse.ArgumentParser, words: Sequence[str], troubles: TroubleList) -> argparse.Namespace:
+    """Return what the words give; unknown options and empty values go to ``troubles``."""
+    given, unknown = parser.parse_known_intermixed_args(list(words))
+    options = [_option(name) for name in vars(given) if name != "netlists"]
+    for word in [word for word in unknown if word.startswith("-")] or unknown:
+        remedy = near_misses(word.split("=")[0], options) or f"see {parser.prog} --help"
+        troubles.add(f"{word} is no option of {parser.prog}", remedy, COMMAND_LINE)
+    _refuse_empty(vars(given), troubles)
+    return given
 
 
 def _option(name: str) -> str:

@@ -2,21 +2,27 @@
 
 import contextlib
 import os
+import shlex
 import sys
 import textwrap
 import traceback
-from collections.abc import Iterator, Sequence
+from collections.abc import Callable, Iterator, Sequence
+from dataclasses import replace
 from pathlib import Path
-from typing import TextIO
+from typing import TYPE_CHECKING, TextIO, TypeVar
 
 from auditor import __version__
-from auditor.arguments import COMMAND_LINE, Request, read_arguments
+from auditor.arguments import COMMAND_LINE, Request, read_arguments, read_draft_arguments
 from auditor.errors import InputError, InternalError, TroubleList, fail, near_misses
 from auditor.notation import SourcePlace
-from auditor.plan import Plan, merge
+from auditor.plan import Options, Plan, merge
 from auditor.plan_file import read_plan
 from auditor.risks.waivers import check_waivers
 
+if TYPE_CHECKING:
+    from auditor.report.facts import AuditFacts
+
+Result = TypeVar("Result")
 WRONG_USE = 2
 INTERNAL = 4
 INTERRUPTED = 130
@@ -24,6 +30,7 @@ STATUS = {"pass": 0, "fail": 1, "undecided": 3}
 
 HELP = """\
 usage: auditor audit [NETLIST...] [options]
+       auditor draft NETLIST... --cells F [--top M]
        auditor --version | --help
 
 Audits an existing BIST pattern generator from its gate-level Verilog netlist: its register, every channel's
@@ -31,8 +38,9 @@ taps and phase, the separations, and the load of every flip-flop.
 
   auditor audit generator.v --cells library.lib --mode scan_en=0
   auditor audit --plan plan.toml --json report.json
+  auditor draft generator.v --cells library.lib
 
-auditor audit --help lists the options.
+auditor draft writes a starter plan out of the netlist. auditor audit --help lists the options.
 """
 
 
@@ -63,13 +71,18 @@ def _command(words: Sequence[str]) -> int:
     command = words[0] if words else ""
     if command == "audit":
         return _audit(read_arguments(words[1:]))
+    if command == "draft":
+        return _draft(read_draft_arguments(words[1:]))
     if command == "--version":
         print(f"auditor {__version__}")
         return 0
     if command in ("--help", "-h", "help"):
         print(HELP, end="")
         return 0
-    remedy = near_misses(command, ["audit", "--version", "--help"]) or "write auditor audit NETLIST..., or see --help"
+    remedy = (
+        near_misses(command, ["audit", "draft", "--version", "--help"])
+        or "write auditor audit NETLIST..., or see --help"
+    )
     raise fail(f"{command} is no command of auditor" if command else "no command is given", remedy, COMMAND_LINE)
 
 
@@ -77,6 +90,10 @@ def _audit(request: Request) -> int:
     """Audit, write the report, then show it; return the exit status."""
     plan = merge(read_plan(request.plan) if request.plan else None, request.options)
     _check(plan, request.json)
+    if request.use_draft:
+        from auditor.draft import with_draft  # noqa: PLC0415 - only here
+
+        plan = with_draft(plan)
     from rich.console import Console  # noqa: PLC0415 - an error above is told without loading it
 
     from auditor.audit import audit_modes  # noqa: PLC0415
@@ -87,7 +104,7 @@ def _audit(request: Request) -> int:
     from auditor.report.write import write_whole  # noqa: PLC0415
 
     with stages(Console(stderr=True), not request.quiet and sys.stderr.isatty()) as progress:
-        audits = audit_modes(plan, progress=progress)
+        audits = _or_draft(plan, lambda: audit_modes(plan, progress=progress))
         text = json_text(audits) if request.json else ""
     with _closed_pipe_allowed():
         if request.json and request.json != "-":
@@ -99,7 +116,45 @@ def _audit(request: Request) -> int:
             screen = sys.stderr if request.json == "-" else sys.stdout
             print_audits(audits, Console(file=screen, highlight=False))
             screen.flush()
+            if any(_left_open(facts) for facts in audits.values()):
+                _say(f"The mode leaves the register open: {draft_command(plan)} proposes constants.\n")
     return STATUS[worst(audits)]
+
+
+def _or_draft(plan: Plan, carry_out: Callable[[], Result]) -> Result:
+    """Carry the audit out; where constants of the mode would mend a trouble, its remedy names the draft command."""
+    try:
+        return carry_out()
+    except InputError as error:
+        hint = f"; {draft_command(plan)} proposes some"
+        raise InputError(
+            replace(trouble, remedy=trouble.remedy + hint * ("--mode" in trouble.remedy)) for trouble in error.troubles
+        ) from None
+
+
+def _left_open(facts: "AuditFacts") -> bool:
+    """Tell whether the machine is refused and a constant of the mode would help."""
+    return facts.extraction.machine is None and any(refusal.cure for refusal in facts.extraction.refusals)
+
+
+def draft_command(plan: Plan) -> str:
+    """Return the command that drafts a plan for the same netlist."""
+    words = ["auditor", "draft", *map(str, plan.netlists)]
+    words += [word for path in plan.cells for word in ("--cells", str(path))]
+    return shlex.join([*words, *(["--top", plan.top] if plan.top else [])])
+
+
+def _draft(options: Options) -> int:
+    """Write a starter plan to standard output; return the exit status."""
+    from auditor.draft import draft  # noqa: PLC0415 - an error of use is told without loading it
+    from auditor.drafting.text import plan_text  # noqa: PLC0415
+
+    plan = merge(None, options)
+    found = draft(plan)
+    with _closed_pipe_allowed():
+        sys.stdout.write(plan_text(found, [str(path) for path in plan.netlists], [str(path) for path in plan.cells]))
+        sys.stdout.flush()
+    return STATUS["pass" if found.proposal else "undecided"]
 
 
 def _check(plan: Plan, json: str | None) -> None:

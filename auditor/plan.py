@@ -52,6 +52,7 @@ class Plan:
     ``mode``      net or port → 0 or 1        ``channels``  names, vectors or patterns; empty: all output ports
     ``modes``     name → a mode, where the plan names several; ``mode`` is then empty
     ``chain_length``  scan cells of every chain, or None where not stated
+    ``guesses``   a sentence on everything in the plan that was drafted and not stated
     """
 
     netlists: tuple[Path, ...]
@@ -68,6 +69,7 @@ class Plan:
     fail_at: str = "error"
     work_limit: int | None = None
     file: Path | None = None
+    guesses: tuple[str, ...] = ()
 
     def by_mode(self) -> dict[str, "Plan"]:
         """Return a plan of one mode for each of the modes; the name is empty where the plan names none."""

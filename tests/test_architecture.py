@@ -9,16 +9,17 @@ import pytest
 PACKAGE = Path(__file__).parents[1] / "auditor"
 
 # The route. A stage may import from stages before it, and from them only nouns.
-ROUTE = ("verilog", "netlist", "cells", "cone", "machine", "replay", "phases", "risks", "report")
+ROUTE = ("verilog", "netlist", "cells", "cone", "machine", "replay", "phases", "drafting", "risks", "report")
 
 # What a stage shows to the ones after it: its data classes, and pure questions asked of them.
 NOUNS = {
     "verilog": {"statements"},
     "netlist": {"netlist"},
     "cells": {"library", "function", "primitives", "cell_table"},
-    "cone": {"cone"},
+    "cone": {"cone", "constants", "fold", "wiring"},
     "machine": {"machine"},
     "phases": {"table", "separations", "overlap"},
+    "drafting": {"candidate", "proposal"},
     "risks": {"finding"},
     "report": {"facts"},
 }
@@ -30,7 +31,7 @@ LIBRARIES = {
     "networkx": ("cone/",),
     "dd": ("machine/",),
     "rich": ("report/", "cli.py"),
-    "numpy": ("netlist/", "cone/", "replay/", "gf2/", "phases/", "verilog/"),
+    "numpy": ("netlist/", "cone/", "replay/", "gf2/", "phases/", "drafting/", "verilog/"),
 }
 
 SOURCES = sorted(path.relative_to(PACKAGE).as_posix() for path in PACKAGE.rglob("*.py"))
