@@ -47,6 +47,14 @@ def test_the_plan_is_read(tmp_path: Path) -> None:
     assert [waiver.slug for waiver in plan.waivers] == ["single-tap-channel"]
 
 
+def test_the_named_modes_are_read(tmp_path: Path) -> None:
+    """The modes in README are those of a plan that names several."""
+    (text,) = [block for block in blocks("toml") if block.startswith("[mode.")]
+    path = tmp_path / "plan.toml"
+    path.write_text(text, encoding="utf-8")
+    assert read_plan(path).modes == {"calm": {"storm": 0}, "storm": {"storm": 1}}
+
+
 def test_the_cell_table_is_read(tmp_path: Path) -> None:
     """The cell table in README gives a gate and a flip-flop."""
     (text,) = [block for block in blocks("toml") if "[cell.odd_ff]" in block]
