@@ -180,8 +180,8 @@ def _cone(machine: LinearMachine) -> Cone:
     channels = tuple(Channel(row.name, 3 + k) for k, row in enumerate(machine.observed) if not row.cut_from)
     return Cone(
         netlist=_netlist(nets, machine.storage), channels=channels, gates=(), clock_gates=(), clock_latches=(),
-        elements=elements, free_inputs=(), constants={}, clock=2, clock_edge="rising", graph=nx.DiGraph(), feedback=machine.registers,
-        loads=loads, obstacles=(), forced=(), assumed=(),
+        elements=elements, free_inputs=(), constants={}, clock=2, clock_edge="rising", graph=nx.DiGraph(),
+        feedback=machine.registers, loads=loads, obstacles=(), forced=(), assumed=(),
     )  # fmt: skip
 
 
