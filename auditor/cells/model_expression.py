@@ -100,8 +100,10 @@ class _Parser:
         while self.position < len(self.tokens):
             word = self.tokens[self.position].text
             operand_expected = self._operand(word) if operand_expected else self._behind_operand(word)
+        if operand_expected:
+            raise self._error()
         self._reduce(0)
-        if operand_expected or len(self.values) != 1 or self.waiting:
+        if len(self.values) != 1 or self.waiting:
             raise self._error()
         return self.values[0]
 
@@ -137,8 +139,10 @@ class _Parser:
             if not self.waiting or self.waiting[-1][0] != "?":
                 raise self._error()
             self.waiting[-1] = ("?:", False)
-        elif word == "," and self.counts:
+        elif word == ",":
             self._reduce(0)
+            if not self.waiting or self.waiting[-1][0] != "{":
+                raise self._error()
             self.counts[-1] += 1
         elif word in (")", "}"):
             self._reduce(0)

@@ -1,5 +1,7 @@
 """Cells from modules of gates, tables and other modules: every form that models take, and what is refused."""
 
+import random
+import re
 from time import process_time
 
 import pytest
@@ -247,7 +249,7 @@ def test_growth_is_bounded():
         f"module d{k} (Y, A); output Y; input A; wire n; d{k + 1} a (n, A); d{k + 1} b (Y, n); endmodule "
         for k in range(30)
     )
-    cell = models(chain + "module d30 (Y, A); output Y; input A; not (Y, A); endmodule")["d0"]
+    cell = models(chain + "module d30 (Y, A); output Y; input A; not (Y, A); endmodule", only="d0")["d0"]
     assert cell.not_understood == "its model has more than 20000 gates"
     gates = "".join(f"not (n{k + 1}, n{k});" for k in range(5000))
     cell = understood(f"module m (Y, A); output Y; input A; assign n0 = A; {gates} buf (Y, n5000); endmodule")
@@ -256,3 +258,27 @@ def test_growth_is_bounded():
     cell = models(f"module m (Y, A); output Y; input A; assign n0 = A; {doubled} buf (Y, n60); endmodule")["m"]
     assert "has more than 100000 terms" in cell.not_understood
     assert process_time() - start < 10
+
+
+def test_damaged_texts_are_read_or_refused():
+    """Words dropped, doubled, exchanged: each text gives cells, perhaps not understood, or an error with its places."""
+    process = (
+        "module p (Q, D, C); output reg [1:0] Q; input [1:0] D; input C; always @(posedge C or negedge D[0]) begin "
+    )
+    process += "if (~D[0]) Q <= 2'b01; else Q <= #1 D[1] ? {Q[0], ^D} : ~D & Q; end endmodule\n"
+    words = re.findall(r"\w+|\s+|.", "`define X 1\n" + MUX + FF + process + TIMING, re.DOTALL)
+    signs = [word for word in words if word.strip()]
+    chance, refused = random.Random(7), 0
+    for _ in range(300):
+        damaged = list(words)
+        for _ in range(chance.randint(1, 4)):
+            at = chance.randrange(len(damaged))
+            damaged[at : at + chance.randint(0, 1)] = chance.choices(signs, k=chance.randint(0, 2))
+        troubles = ()
+        try:
+            models("".join(damaged))
+        except InputError as error:
+            troubles = error.troubles
+        refused += bool(troubles)
+        assert all(trouble.place and trouble.place.line for trouble in troubles)
+    assert 50 < refused < 250

@@ -8,10 +8,10 @@ from auditor.cells.models import ModelFiles
 ONE_BIT = BitAlgebra(1)
 
 
-def models(text, defines=(), file="m.v"):
-    """Return all cells of a text by name, made at once."""
-    found = list(ModelFiles(dict(defines), ()).read(Path(file), text))
-    return {name: make() for name, _, make in found}
+def models(text, defines=(), only=None):
+    """Return all cells of a text by name, or the only one of that name, made at once."""
+    found = list(ModelFiles(dict(defines), ()).read(Path("m.v"), text))
+    return {name: make() for name, _, make in found if only in (None, name)}
 
 
 def understood(text, name=None, defines=()):
