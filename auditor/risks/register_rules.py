@@ -126,7 +126,10 @@ def registers_in_step(evidence: Evidence) -> Iterator[Finding]:
 def _shifts(shared: InStep, names: list[tuple[str, ...]]) -> str:
     """Return a clause on the streams of the registers' first elements from reset."""
     if all(shift is None for shift in shared.shifts):
-        return "how far apart they run depends on their start states, which are not known"
+        unknown = (
+            "depends on their start states, which are not known" if shared.certain_below == 0 else "is not decided"
+        )
+        return f"how far apart they run {unknown}"
     told = []
     for shift, own in zip(shared.shifts, names[1:], strict=True):
         if shift is None:
@@ -167,6 +170,8 @@ def _meeting(evidence: Evidence, shared: InStep) -> tuple[Level, str]:
         return "error", "whether chains that they feed meet is not known"
     if bound is None and near is not None:
         return "error", f"{apart}, and no chain length or planned test is stated to hold against it"
+    if certain is not None and (near is None or near.cycles > certain):
+        return "note", f"no two channels of theirs are closer than {decimal(certain)} cycles"
     return "note", apart if near is None else f"{apart}, and none of their channels are closer"
 
 

@@ -140,6 +140,26 @@ def test_one_register_in_two_states_leads_by_the_steps_between_them() -> None:
     assert (shared.closest.channels, shared.closest.cycles) == ((0, 1), 1 << 50)
 
 
+def test_without_logarithms_the_bounded_search_tells_what_is_near() -> None:
+    """2^131 - 1 has a prime of 38 digits: a lead within the window is found, a larger one stays open."""
+    register = galois((131, 8, 3, 2, 0))  # x^131 + x^8 + x^3 + x^2 + 1, irreducible (Seroussi 1998)
+    characteristic = sum(1 << k for k in (131, 8, 3, 2, 0))
+    for ahead, found in ((1000, 1000), (1 << 100, None)):
+        start = 1 | power_modulo(0b10, ahead, characteristic) << 131
+        machine = linear_machine(
+            side_by_side(register, register),
+            [(1, 0), (1 << 131, 0)],
+            registers=[range(131), range(131, 262)],
+            reset_known=(1 << 262) - 1,
+            reset_state=start,
+            transient=0,
+        )
+        (shared,) = phases(machine).in_step
+        assert shared.shifts == (found,)
+        assert (shared.closest and shared.closest.cycles) == found
+        assert shared.certain_below == (None if found else 1 << 20)
+
+
 def test_what_reset_does_not_decide_is_not_known() -> None:
     """An element without reset, and a free input, leave the register's start open; others keep theirs."""
     register = fibonacci((4, 1, 0))

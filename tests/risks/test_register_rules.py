@@ -5,6 +5,7 @@ from typing import Any
 
 import pytest
 
+from auditor.phases.table import InStep
 from auditor.plan import Limits, Patterns
 from auditor.risks.find import find_risks
 from auditor.risks.register_rules import (
@@ -167,6 +168,20 @@ def test_equal_registers_in_equal_states_run_in_step() -> None:
     assert finding.says.endswith(
         "q[4] never carries the stream of q[0]; no two channels of theirs ever carry one stream."
     )
+
+
+@pytest.mark.parametrize(("length", "level"), [(100, "note"), (101, "error")])
+def test_what_a_bounded_search_certifies_is_enough(length: int, level: str) -> None:
+    """Where the lead is not decided, the bound up to which all pairs were searched is held against what is asked."""
+    transition = side_by_side(PRIMITIVE, PRIMITIVE)
+    told = evidence(linear_machine(transition, [(1, 0), (1 << 4, 0)], reset_known=0xFF), chain_length=length)
+    assert told.phases is not None
+    searched = InStep((0, 1), (0b10011,), (None,), None, certain_below=100)
+    (finding,) = registers_in_step(replace(told, phases=replace(told.phases, in_step=(searched,))))
+    assert finding.level == level
+    ends = {"note": "no two channels of theirs are closer than 100 cycles.", "error": "meet is not known."}
+    assert finding.says.endswith(ends[level])
+    assert "how far apart they run is not decided" in finding.says
 
 
 def test_an_offset_or_a_coupling_is_part_of_the_run() -> None:
