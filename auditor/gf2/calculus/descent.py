@@ -91,6 +91,8 @@ class Descent:
         wanted = sorted(primes)
         for size in _RELATION_SIZES:
             for through in (_through_left, _through_right):
+                if not wanted:
+                    return
                 self._work.report(f"{len(wanted)} factors beyond the base")
                 wanted = self._solve_by(through, wanted, size)
 

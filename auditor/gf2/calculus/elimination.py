@@ -32,7 +32,7 @@ class SparseSystem:
         self._solved: list[tuple[int, Row]] = []
 
     def solution(self) -> dict[int, int]:
-        """Return the unknowns that the equations determine, the unit among them; ``InternalError`` if none can be."""
+        """Return the unknowns that the equations determine, the unit among them; ``InternalError`` if they clash."""
         while self._holders and not self._is_dense():
             self._eliminate(self._lightest_column())
         dense = DenseSystem(sorted(self._holders), self._unit, self._modulus)
@@ -67,7 +67,9 @@ class SparseSystem:
         candidates = sorted(holders, key=lambda number: (len(self._rows[number]), number))
         usable = (number for number in candidates if gcd(self._rows[number][column], self._modulus) == 1)
         chosen = next(usable, None)
-        if chosen is None:  # no row holds the column
+        if chosen is None:  # no row holds the column, or none can be solved for it
+            for number in candidates:
+                self._remove_row(number)
             del self._holders[column]
             return
         row = self._remove_row(chosen)

@@ -35,7 +35,7 @@ class FactorBase:
     logs: tuple[int | None, ...]
 
     def check(self) -> bool:
-        """Return whether the table is in order and each of its logarithms is right, by exponentiation."""
+        """Return whether most of the base has a logarithm and each is right, by exponentiation."""
         n, primes = degree(self.field), irreducibles(self.degree)
         group = (1 << n) - 1
         if n < 1 or self.modulus < 1 or group % self.modulus or len(self.logs) != len(primes):
@@ -43,6 +43,8 @@ class FactorBase:
         if self.field != canonical_polynomial(n, self.modulus):
             return False
         known = [(prime, log) for prime, log in zip(primes.tolist(), self.logs, strict=True) if log is not None]
+        if 2 * len(known) < len(primes):
+            return False
         ring, cofactor = Ring(self.field), group // self.modulus
         powers = ring.powers_of_x([log % self.modulus * cofactor for _, log in known])
         elements = ring.pack(remainder(prime, self.field) for prime, _ in known)

@@ -91,7 +91,8 @@ class Sieve:
         left, right = self._degrees(u, v)
         wanted = self._found(first, 0) + np.uint8(self._bound) >= left
         wanted &= self._found(first, 1) + np.uint8(self._bound) >= right
-        wanted[: 1 - min(first, 1)] = False  # u = 0
+        if first == 0:
+            wanted[0] = False  # u = 0 gives the relation 4 log v = log v^4
         places = np.flatnonzero(wanted)
         pairs = zip((places >> self._width).tolist(), (places & (1 << self._width) - 1).tolist(), strict=True)
         return [(first + row, column) for row, column in pairs if gcd(first + row, column) == 1]
@@ -107,63 +108,43 @@ class Sieve:
     def _found(self, first: int, side: int) -> Degrees:
         """Return the sum of the degrees of the primes that divide one side, for every cell."""
         cells = np.zeros((self._rows, 1 << self._width), np.uint8)
-        flat = cells.reshape(-1)
-        for size, (primes, ratios) in enumerate(zip(self._primes, self._ratios, strict=True), start=1):
-            remainders = self._row_remainders(primes, ratios[side], size, first)
-            if size <= _DENSE:
-                self._add_rows(cells, primes, remainders, size)
-            else:
+        step = max(1, _CHUNK // self._rows)
+        for size, (all_primes, ratios) in enumerate(zip(self._primes, self._ratios, strict=True), start=1):
+            for start in range(0, len(all_primes), step):
+                primes, ratio = all_primes[start : start + step], ratios[side][start : start + step]
+                offset = _product(ratio, first, primes, size)
+                remainders = _products(ratio, self._rows.bit_length() - 1, primes, size) ^ offset[:, None]
+                if size <= _DENSE:
+                    self._add_rows(cells, primes, remainders, size)
+                    continue
                 for places in self._places(primes, remainders, size):
-                    np.add.at(flat, places, np.uint8(size))
+                    np.add.at(cells.reshape(-1), places, np.uint8(size))
         return cells
 
-    def _row_remainders(self, primes: Numbers, ratios: Numbers, size: int, first: int) -> Iterator[Numbers]:
-        """Yield ratio u modulo p for u = first, first + 1, ...: a row for each prime, some primes at a time."""
-        step = max(1, _CHUNK // self._rows)
-        for start in range(0, len(primes), step):
-            p, power = primes[start : start + step], ratios[start : start + step]
-            offset, table = np.zeros_like(p), np.zeros((len(p), 1), np.int64)
-            for bit in range((first + self._rows - 1).bit_length()):
-                if 1 << bit < self._rows:
-                    table = np.concatenate([table, table ^ power[:, None]], axis=1)
-                elif first >> bit & 1:
-                    offset = offset ^ power
-                power = _times_x(power, p, size)
-            yield table ^ offset[:, None]
-
-    def _add_rows(self, cells: Degrees, primes: Numbers, remainders: Iterator[Numbers], size: int) -> None:
-        """Add the degree of each prime to the cells it divides, row by row from the few different rows there are."""
-        columns = np.arange(1 << self._width)
-        table = np.concatenate(list(remainders))
-        for p, row_remainders in zip(primes.tolist(), table, strict=True):
-            folded = columns.copy()
-            for high in range(self._width - 1, size - 1, -1):
-                folded ^= (folded >> high & 1) * (p << high - size)
-            patterns = (folded == np.arange(1 << size)[:, None]).astype(np.uint8) * np.uint8(size)
+    def _add_rows(self, cells: Degrees, primes: Numbers, remainders: Numbers, size: int) -> None:
+        """Add the degree of each prime to the cells it divides: a row of cells depends on the row's remainder only."""
+        columns = _products(np.ones_like(primes), self._width, primes, size)
+        for column_remainders, row_remainders in zip(columns, remainders, strict=True):
+            patterns = (column_remainders == np.arange(1 << size)[:, None]).astype(np.uint8) * np.uint8(size)
             cells += patterns[row_remainders]
 
-    def _places(self, primes: Numbers, remainders: Iterator[Numbers], size: int) -> Iterator[Numbers]:
-        """Yield the cells that the primes divide."""
+    def _places(self, primes: Numbers, remainders: Numbers, size: int) -> Iterator[Numbers]:
+        """Yield the cells that the primes divide: v is the row's remainder plus a multiple of the prime."""
         starts = np.arange(self._rows) << self._width
-        done = 0
-        for table in remainders:
-            group = primes[done : done + len(table)]
-            done += len(table)
-            if size > self._width:
-                inside = table < 1 << self._width
-                yield (starts + table)[inside]
-                continue
-            cofactors = np.arange(1 << self._width - size)
-            step = max(1, _CHUNK // (self._rows * len(cofactors)))
-            for k in range(0, len(group), step):
-                steps = np.array([multiples(p, cofactors) for p in group[k : k + step].tolist()])
-                yield ((starts + table[k : k + step])[:, :, None] ^ steps[:, None, :]).reshape(-1)
+        if size > self._width:
+            yield (starts + remainders)[remainders < 1 << self._width]
+            return
+        cofactors = np.arange(1 << self._width - size)
+        step = max(1, _CHUNK // (self._rows * len(cofactors)))
+        for k in range(0, len(primes), step):
+            steps = np.array([multiples(p, cofactors) for p in primes[k : k + step].tolist()])
+            yield ((starts + remainders[k : k + step])[:, :, None] ^ steps[:, None, :]).reshape(-1)
 
 
 def _ratios(shape: Shape, primes: Numbers, size: int) -> tuple[Numbers, Numbers]:
     """Return ``shape.power`` and ``shape.fourth_root`` of many primes of one degree."""
-    power = _horner(1 << shape.shift, primes, size)
-    root = _horner(shape.high, primes, size)
+    ones = np.ones_like(primes)
+    power, root = (_product(ones, polynomial, primes, size) for polynomial in (1 << shape.shift, shape.high))
     for _ in range(size - 2):
         # The square of Σ r_k x^k is Σ r_k x^(2 k).
         square = np.zeros_like(root)
@@ -173,19 +154,27 @@ def _ratios(shape: Shape, primes: Numbers, size: int) -> tuple[Numbers, Numbers]
     return power, root
 
 
-def _horner(polynomial: Polynomial, primes: Numbers, size: int) -> Numbers:
-    """Return the polynomial modulo each of the primes."""
+def _product(factors: Numbers, polynomial: Polynomial, primes: Numbers, size: int) -> Numbers:
+    """Return the product of a factor and the polynomial modulo each of the primes, by Horner's rule."""
     result = np.zeros_like(primes)
     for digit in f"{polynomial:b}":
-        result = _reduced(result << 1 ^ int(digit), primes, size)
+        result = _times_x(result, primes, size)
+        if digit == "1":
+            result ^= factors
     return result
 
 
+def _products(factors: Numbers, bits: int, primes: Numbers, size: int) -> Numbers:
+    """Return the products with all polynomials of that many coefficients, shape (primes, 2^bits)."""
+    table = np.zeros((len(primes), 1), np.int64)
+    for _ in range(bits):
+        table = np.concatenate([table, table ^ factors[:, None]], axis=1)
+        factors = _times_x(factors, primes, size)
+    return table
+
+
 def _times_x(numbers: Numbers, primes: Numbers, size: int) -> Numbers:
-    return _reduced(numbers << 1, primes, size)
-
-
-def _reduced(numbers: Numbers, primes: Numbers, size: int) -> Numbers:
-    """Return polynomials of degree up to that of the primes modulo the primes."""
-    result: Numbers = numbers ^ primes * (numbers >> size)
+    """Return x times remainders modulo primes, modulo the primes."""
+    shifted = numbers << 1
+    result: Numbers = shifted ^ primes * (shifted >> size)
     return result

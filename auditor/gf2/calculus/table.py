@@ -10,6 +10,7 @@ from auditor.gf2.calculus.factor_base import FactorBase, canonical_polynomial, i
 from auditor.gf2.calculus.sieve import Shape, Sieve
 from auditor.gf2.calculus.work import OutOfWork, Work
 from auditor.gf2.polynomial import degree
+from auditor.notation import Polynomial
 
 LARGEST_DEGREE = 128
 
@@ -45,7 +46,7 @@ def make_factor_base(n: int, modulus: int, work: Work) -> FactorBase:
 
 
 def _relations(
-    field: int, base_degree: int, width: int, sizes: Sequence[int], work: Work
+    field: Polynomial, base_degree: int, width: int, sizes: Sequence[int], work: Work
 ) -> tuple[list[Relation], int]:
     """Return enough relations Σ exponent log = 0, by index, and how many of the smallest primes they surely solve."""
     shape = Shape(field)
