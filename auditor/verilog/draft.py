@@ -1,17 +1,32 @@
 """A module while its text is read: what either lane has found so far, and what still waits for the grammar lane."""
 
 from collections.abc import Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 from typing import Literal, NamedTuple, TypeAlias, TypeVar
 
 from auditor.errors import TroubleList
 from auditor.notation import SourcePlace
 from auditor.verilog.plain import Item
-from auditor.verilog.statements import Assign, Declaration, Direction, HeaderPort, Instance, Module, Range
+from auditor.verilog.statements import (
+    Assign,
+    Connection,
+    Constant,
+    Declaration,
+    Direction,
+    HeaderPort,
+    Instance,
+    Lines,
+    Module,
+    Range,
+    Reading,
+)
+
+# Stands in a list of connections, known by identity, for `.*`: every port that is not connected otherwise.
+EVERY_PORT = Connection(".*", None)
 
 _Element = TypeVar("_Element")
 
-ItemKind: TypeAlias = Literal["declaration", "parameter", "instance", "assign"]
+ItemKind: TypeAlias = Literal["declaration", "parameter", "defparam", "instance", "assign"]
 
 
 class Declared(NamedTuple):
@@ -25,25 +40,40 @@ class Declared(NamedTuple):
 
 
 class Waiting(NamedTuple):
-    """An item for the grammar lane, and where among the instances and assigns its result belongs."""
+    """An item for the grammar lane, and where among the instances and assigns its result belongs.
+
+    ``extra`` is what the item says beside its text: the kind of a declared net, the instance of a defparam, or
+    ``.*`` among the connections of an instance.
+    """
 
     kind: ItemKind
     item: Item
     instances_before: int
     assigns_before: int
+    extra: str
 
 
 @dataclass(slots=True)
 class Draft:
     """A module in the making; ``port_nets`` are the ports that are declared as nets as well.
 
-    ``plain`` turns False with the first parameter: any name may then be a number.
+    The module begins on line ``start`` of the whole text, whose lines ``spans`` places; its own lines are less by
+    ``shift``, so that they are those of the file in which it begins. ``plain`` turns False with the first parameter:
+    any name may then be a number.
+    ``given`` are values for its parameters.
     """
 
     name: str
     place: SourcePlace
+    start: int
+    spans: Lines
     troubles: TroubleList
+    reading: Reading
     plain: bool = True
+    implicit_nets: bool = True
+    last_line: int = 0
+    given: dict[str, Constant] = field(default_factory=dict)
+    signed: set[str] = field(default_factory=set)
     ports: list[HeaderPort] = field(default_factory=list)
     directions: dict[str, Direction] = field(default_factory=dict)
     nets: dict[str, Declaration] = field(default_factory=dict)
@@ -52,13 +82,47 @@ class Draft:
     assigns: list[Assign] = field(default_factory=list)
     waiting: list[Waiting] = field(default_factory=list)
 
-    def wait(self, kind: ItemKind, item: Item) -> None:
+    @property
+    def shift(self) -> int:
+        """Return by how much the lines of the whole text are ahead of the module's."""
+        return self.start - self.place.line
+
+    def place_of(self, line: int) -> SourcePlace:
+        """Return where a line of this module stands."""
+        return self.spans.place(line + self.shift)
+
+    def wait(self, kind: ItemKind, item: Item, extra: str = "") -> None:
         """Leave an item to the grammar lane."""
-        self.waiting.append(Waiting(kind, item, len(self.instances), len(self.assigns)))
+        self.waiting.append(Waiting(kind, item, len(self.instances), len(self.assigns), extra))
 
     def trouble(self, found: str, remedy: str, line: int) -> None:
         """Note a trouble on a line of this module."""
-        self.troubles.add(found, remedy, SourcePlace(self.place.file, line))
+        self.troubles.add(found, remedy, self.place_of(line))
+
+    @property
+    def every_port(self) -> bool:
+        """Return whether an instance here connects `.*`."""
+        return any(connection is EVERY_PORT for instance in self.instances for connection in instance.connections)
+
+    def note(self, fact: str, line: int) -> None:
+        """Note what is no trouble and should be known."""
+        self.reading.notes.append(f"{self.place_of(line)}: {fact}")
+
+    def variant(self, name: str, given: dict[str, Constant]) -> "Draft":
+        """Return a copy under another name, with values for its parameters."""
+        return replace(
+            self,
+            name=name,
+            given=given,
+            ports=[*self.ports],
+            directions={**self.directions},
+            nets={**self.nets},
+            port_nets={*self.port_nets},
+            signed={*self.signed},
+            instances=[*self.instances],
+            assigns=[*self.assigns],
+            waiting=[*self.waiting],
+        )
 
     def declare_all(
         self, names: Sequence[str], direction: Direction | None, kind: str | None, bounds: Range | None, line: int
@@ -83,16 +147,21 @@ class Draft:
             return
         was_port, was_net = name in self.directions, name in self.port_nets or name not in self.directions
         if (direction and was_port) or (kind and was_net):
-            found = f"{name} is declared again, first on line {before.line}"
+            found = f"{name} is declared again, first {self._where(before.line, line)}"
             self.trouble(found, "leave one of the declarations out", line)
         elif before.range != bounds:
-            found = f"{name} is declared with another range than on line {before.line}"
+            found = f"{name} is declared with another range than {self._where(before.line, line)}"
             self.trouble(found, "give both one range", line)
         else:
             self.nets[name] = Declaration(kind or before.kind, bounds, before.line)
             self.port_nets.add(name)
             if direction:
                 self.directions[name] = direction
+
+    def _where(self, line: int, now: int) -> str:
+        """Say where a line stands, as seen from another."""
+        place = self.place_of(line)
+        return f"on line {place.line}" if place.file == self.place_of(now).file else f"at {place}"
 
     def merge(self, results: Sequence[tuple[Waiting, Instance | Assign]]) -> None:
         """Put the results of the grammar lane where they stand in the text."""
@@ -106,7 +175,15 @@ class Draft:
         if not all(instance.name for instance in self.instances):
             self._name_the_unnamed()
         return Module(
-            self.name, self.place, tuple(self.ports), self.directions, self.nets, self.instances, self.assigns
+            name=self.name,
+            place=self.place,
+            ports=tuple(self.ports),
+            directions=self.directions,
+            nets=self.nets,
+            instances=self.instances,
+            assigns=self.assigns,
+            spans=self.spans.between(self.start, max(self.start, self.last_line + self.shift)),
+            implicit_nets=self.implicit_nets,
         )
 
     def _name_the_unnamed(self) -> None:

@@ -16,14 +16,15 @@ from collections.abc import Iterator, Sequence
 from functools import cache
 from importlib.metadata import version
 from pathlib import Path
-from typing import Any
+from typing import Any, NamedTuple
 
-from auditor.errors import InternalError
-from auditor.verilog.draft import Declared, Draft, Waiting
-from auditor.verilog.items import DECLARED, direction_of
-from auditor.verilog.plain import GATES, plain_name
-from auditor.verilog.statements import Assign, Connection, Direction, Instance, Range
-from auditor.verilog.tree import Parameters, RefusedError, expression_of, integer_of, parameter_of
+from auditor.errors import InternalError, near_misses
+from auditor.verilog.draft import EVERY_PORT, Declared, Draft, Waiting
+from auditor.verilog.items import DECLARED, direction_of, net_kind
+from auditor.verilog.plain import GATES, RefusedError, plain_name
+from auditor.verilog.statements import Assign, Connection, Constant, Direction, Instance, Range
+from auditor.verilog.tree import Parameters, expression_of, integer_of, parameter_of, value_of
+from auditor.verilog.variants import Variants
 
 PIECE = 300
 
@@ -37,27 +38,63 @@ _COORDINATE = re.compile(r'line:(\d+)(?: column:\d+)?: (?:before: "(.*)"|(.*))',
 _REMEDY = "mend the text, or give it as plain structural Verilog"
 
 
-def read_waiting(draft: Draft) -> None:
+class Given(NamedTuple):
+    """A value that a defparam gives to a parameter of an instance."""
+
+    instance: str
+    parameter: str
+    value: Constant
+    line: int
+
+
+def read_waiting(draft: Draft, variants: Variants) -> None:
     """Read all that waits in a draft into it; troubles are noted with the line of the item.
 
     Parameters are evaluated in the order of the text and hold for what follows them.
     """
     parameters: Parameters = {}
+    given: list[Given] = []
     results: list[tuple[Waiting, Instance | Assign]] = []
     waiting = draft.waiting
     for start in range(0, len(waiting), PIECE):
         for wait, node in _parsed(draft, waiting[start : start + PIECE]):
             try:
-                result = _element(wait, node, parameters)
+                result = _element(wait, node, parameters, draft.given, variants)
             except RefusedError as refused:
                 draft.trouble(refused.found, refused.remedy, wait.item.line)
                 continue
             if isinstance(result, Declared):
                 draft.declare(result)
+            elif isinstance(result, Given):
+                given.append(result)
             elif result is not None:
                 results.append((wait, result))
     draft.waiting = []
     draft.merge(results)
+    _give(draft, given, variants)
+
+
+def _give(draft: Draft, given: Sequence[Given], variants: Variants) -> None:
+    """Let instances be of the modules with the values that defparams give them."""
+    if not given:
+        return
+    place = {instance.name: number for number, instance in enumerate(draft.instances)}
+    values: dict[str, dict[str, Given]] = {}
+    for one in given:
+        values.setdefault(one.instance, {})[one.parameter] = one
+    for name, by_parameter in values.items():
+        line = min(one.line for one in by_parameter.values())
+        if name not in place:
+            remedy = near_misses(name, place) or "mend the name of the instance"
+            draft.trouble(f"defparam names {name}, which is no instance of module {draft.name}", remedy, line)
+            continue
+        instance = draft.instances[place[name]]
+        try:
+            cell = variants.name_of(instance.cell, [(one.parameter, one.value) for one in by_parameter.values()])
+        except RefusedError as refused:
+            draft.trouble(refused.found, refused.remedy, line)
+        else:
+            draft.instances[place[name]] = instance._replace(cell=cell)
 
 
 def _parsed(draft: Draft, piece: Sequence[Waiting]) -> Iterator[tuple[Waiting, Any]]:
@@ -115,27 +152,29 @@ def _explain(wait: Waiting, message: str) -> tuple[str, int]:
     return f"syntax error at {token}", line
 
 
-def _element(wait: Waiting, node: Any, parameters: Parameters) -> Declared | Instance | Assign | None:
+def _element(
+    wait: Waiting, node: Any, parameters: Parameters, given: Parameters, variants: Variants
+) -> Declared | Given | Instance | Assign | None:
     """Return what an item says, or None for a parameter, which is entered. Raises RefusedError."""
     kind = type(node).__name__
     if kind == "InstanceList" and wait.kind == "instance" and _EMPTY not in wait.item.text:
-        return _instance(node, wait.item.line, parameters)
+        return _instance(node, wait, parameters, variants)
     if kind == "Assign" and wait.kind == "assign":
         left = expression_of(node.left.var, parameters)
         return Assign(left, expression_of(node.right.var, parameters), wait.item.line)
     # pyverilog takes more for a declaration than the language does, and arrays of nets.
     if kind == "Decl" and wait.kind == "declaration" and DECLARED.fullmatch(wait.item.text.lstrip()):
-        return _declared(node.list, wait.item.line, parameters)
-    if kind == "Decl" and wait.kind == "parameter":
-        name, value = parameter_of(node.list[0], parameters)
+        return _declared(node.list, wait, parameters)
+    if kind == "Decl" and wait.kind in ("parameter", "defparam"):
+        name, value = parameter_of(node.list[0], parameters, given)
+        if wait.kind == "defparam":
+            return Given(wait.extra, name, value, wait.item.line)
         parameters[name] = value
         return None
     raise RefusedError(f"found {wait.item.text.split()[0]} where an item of a netlist should stand", _REMEDY)
 
 
-def _instance(node: Any, line: int, parameters: Parameters) -> Instance:
-    if node.parameterlist:
-        raise RefusedError(f"{node.module} is given parameters here", "give a netlist without parameters")
+def _instance(node: Any, wait: Waiting, parameters: Parameters, variants: Variants) -> Instance:
     (one,) = node.instances
     connections = tuple(
         Connection(
@@ -144,32 +183,37 @@ def _instance(node: Any, line: int, parameters: Parameters) -> Instance:
         )
         for port in one.portlist
     )
+    if wait.extra:
+        connections = (*connections, EVERY_PORT)
     array = _range(one.array, parameters) if one.array else None
-    primitive = node.module in GATES
-    return Instance(plain_name(node.module), plain_name(one.name), connections, line, primitive, array)
+    cell, primitive = plain_name(node.module), node.module in GATES
+    if node.parameterlist and cell not in variants.primitives:  # what a primitive is given is a delay
+        values = [
+            (p.paramname and plain_name(p.paramname), value_of(p.argname, parameters)) for p in node.parameterlist
+        ]
+        cell = variants.name_of(cell, values)
+    return Instance(cell, plain_name(one.name), connections, wait.item.line, primitive, array)
 
 
 def _is_open(value: Any) -> bool:
     return value is None or getattr(value, "value", None) == _EMPTY.strip('"')
 
 
-def _declared(nodes: Sequence[Any], line: int, parameters: Parameters) -> Declared:
+def _declared(nodes: Sequence[Any], wait: Waiting, parameters: Parameters) -> Declared:
     """Return one declared name; a port that is a net as well comes as two nodes."""
     direction: Direction | None = None
     kind: str | None = None
     for node in nodes:
         word = type(node).__name__.lower()
-        if getattr(node, "signed", False):
-            raise RefusedError(f"{plain_name(node.name)} is signed", "declare it without signed")
         if direction_of(word):
             direction = direction_of(word)
         elif word == "supply":
             kind = f"supply{node.value.value}"
         else:
-            kind = "wire" if word == "tri" else word
+            kind = net_kind(wait.extra or word)
     width = nodes[0].width
     bounds = _range(width, parameters) if width is not None else None
-    return Declared(plain_name(nodes[0].name), direction, kind, bounds, line)
+    return Declared(plain_name(nodes[0].name), direction, kind, bounds, wait.item.line)
 
 
 def _range(width: Any, parameters: Parameters) -> Range:

@@ -4,12 +4,13 @@ import re
 from collections.abc import Iterator
 from functools import partial
 
-from auditor.verilog.draft import Declared, Draft
+from auditor.verilog.draft import EVERY_PORT, Declared, Draft
 from auditor.verilog.plain import (
     GATES,
     NAME,
     RESERVED,
     SPACE,
+    WIRED,
     Item,
     NotPlainError,
     PlainNames,
@@ -29,14 +30,26 @@ PINS = re.compile(rf"\.{S}({NAME}){S}\(({_VALUE})\)")
 BOUNDS = rf"\[{S}(-?\d{{1,9}}){S}:{S}(-?\d{{1,9}}){S}\]"
 _NAMED_BODY = re.compile(NAMED_BODY)
 _ONE_INSTANCE = re.compile(rf"({NAME}){S}({NAME}|){S}\((.*)\){S}", re.DOTALL)
-_DELAY = r"#\s*(?:[\d.]+|\([^()]*\)|[A-Za-z_]\w*)"
-_CELL_HEAD = re.compile(rf"({NAME}){S}(?:{_DELAY})?")
-_ASSIGN_HEAD = re.compile(rf"assign\b{S}(?:{_DELAY})?")
+_LEVEL = r"(?:supply|strong|pull|weak|highz)[01]"
+_STRENGTH = rf"\({S}{_LEVEL}{S}(?:,{S}{_LEVEL}{S})?\)"
+_DELAY = r"#\s*(?:[\d.]\w*(?:\.\w+)?|\((?:[^()]|\([^()]*\))*\)|[A-Za-z_]\w*)"
+_DRIVE = rf"(?:({_STRENGTH}){S})?(?:{_DELAY}{S})?"
+_CELL_HEAD = re.compile(rf"({NAME}){S}")
+_DRIVE_HEAD = re.compile(_DRIVE)
+_VALUES_HEAD = re.compile(rf"#{S}(?:([\w.']+)|(?=\())")
+_ASSIGN_HEAD = re.compile(rf"assign\b{S}{_DRIVE}")
+_DEFPARAM = re.compile(rf"({NAME}){S}\.{S}({NAME}){S}=(.*)", re.DOTALL)
+NET_KINDS = ("wire", "tri", "uwire", "logic", "reg", "supply0", "supply1", "tri0", "tri1", *sorted(WIRED))
 DECLARED = re.compile(
-    rf"(?:(input|output|inout)\b{S})?(?:(wire|tri|uwire|reg|supply0|supply1)\b{S})?(signed\b{S})?"
-    rf"(\[[^\]\\]*+\]{S})?(?:{_DELAY}{S})?({NAME}){S}(?:=(.*))?",
+    rf"(?:(input|output|inout)\b{S})?(?:({'|'.join(NET_KINDS)})\b{S})?(?:({_STRENGTH}){S})?(?:(?:vectored|scalared)\b{S})?"
+    rf"(signed\b{S})?(\[[^\]\\]*+\]{S})?(?:{_DELAY}{S})?({NAME}){S}(?:=(.*))?",
     re.DOTALL,
 )
+# Connections that say less than they mean: `.a` for `.a(a)`, and `.*`, alone, in front of others or behind them.
+_SHORT = re.compile(
+    rf"\\\S++|(,{S}\.{S}\*(?={S}[,)]))|(\({S}\.{S}\*{S}(?:,|(?=\))))|(?<=[(,])({S})\.{S}({NAME}){S}(?=[,)])"
+)
+_KNOWN_KINDS = frozenset({"wire", "tri", "reg", "supply0", "supply1"})  # to pyverilog
 _RANGE = re.compile(rf"{BOUNDS}{S}")
 _DIRECTIONS: dict[str, Direction] = {"input": "input", "output": "output", "inout": "inout"}
 
@@ -94,7 +107,7 @@ class Items:
                     prefix = tuple(head)
                 draft.ports.append(HeaderPort(plain_name(name), plain_name(name)))
                 if prefix:
-                    self._declare(draft, (*prefix[:3], head[3] or prefix[3], name), line)
+                    self._declare(draft, (*prefix[:4], head[4] or prefix[4], name), line)
 
     def declaration(self, draft: Draft, statement: str, line: int) -> None:
         """Read a declaration that is no plain list of names."""
@@ -107,22 +120,32 @@ class Items:
             *head, name, value = match.groups(default="")
             if prefix is None:
                 prefix = head
-            own_line = item.line + item.text.count("\n", 0, match.start(5))
+            own_line = item.line + item.text.count("\n", 0, match.start(6))
             self._declare(draft, (*prefix, name), own_line)
             if value:
+                self._drive(draft, prefix[2], own_line)
                 self._assign_item(draft, Item(f"assign {name} = {value}", own_line))
 
     def _declare(self, draft: Draft, parts: tuple[str, ...], line: int) -> None:
-        """Enter one declared name given as direction, kind, ``signed``, range and name, each as written."""
-        word, kind, signed, bounds, name = parts
+        """Enter one declared name given as direction, kind, strength, ``signed``, range and name, each as written."""
+        word, kind, _, signed, bounds, name = parts
         plain_range = _RANGE.fullmatch(bounds)
-        if draft.plain and not signed and name not in RESERVED and (plain_range or not bounds):
+        if signed:
+            draft.signed.add(plain_name(name))
+        if draft.plain and name not in RESERVED and (plain_range or not bounds):
             direction, kind_or_none = direction_and_kind(word or kind, kind if word else None)
             range_or_none = Range(int(plain_range[1]), int(plain_range[2])) if plain_range else None
             draft.declare(Declared(plain_name(name), direction, kind_or_none, range_or_none, line))
         else:
-            # pyverilog knows no uwire, which is a wire with a promise.
-            draft.wait("declaration", Item(f"{word} {kind.replace('uwire', 'wire')} {signed} {bounds} {name}", line))
+            known = kind if kind in _KNOWN_KINDS or not kind else "wire"
+            draft.wait("declaration", Item(f"{word} {known} {bounds} {name}", line), kind)
+
+    def _drive(self, draft: Draft, strength: str, line: int) -> None:
+        """Note a drive that is not strong: alone on its net it reads as any other."""
+        if "highz" in strength:
+            draft.trouble("a drive that is open at one value", "give it as a gate with an enable", line)
+        elif "pull" in strength or "weak" in strength:
+            draft.note("a pull or weak drive is read as a strong one; with a second driver its net is refused", line)
 
     def parameter(self, draft: Draft, statement: str, line: int) -> None:
         """Leave each parameter to the grammar lane, and with it all that follows in the module."""
@@ -139,6 +162,7 @@ class Items:
         """Read a continuous assignment of one net or several, without its delay."""
         head = _ASSIGN_HEAD.match(statement)
         start = head.end() if head else 0
+        self._drive(draft, (head[1] if head else "") or "", line)
         for item in split_list(statement[start:], line + statement.count("\n", 0, start)):
             self._assign_item(draft, Item(f"assign {item.text}", item.line))
 
@@ -154,23 +178,44 @@ class Items:
                 pass
         draft.wait("assign", item)
 
+    def defparam(self, draft: Draft, statement: str, line: int) -> None:
+        """Leave each value for a parameter of an instance to the grammar lane."""
+        start = len("defparam")
+        for item in split_list(statement[start:], line):
+            match = _DEFPARAM.fullmatch(item.text)
+            if match:
+                value = Item(f"localparam {match[2]} ={match[3]}", item.line)
+                draft.wait("defparam", value, plain_name(match[1]))
+            else:
+                found = f"defparam {item.text.split('=')[0].strip()} names no parameter of an instance of this module"
+                draft.trouble(found, "set it where the instance stands", item.line)
+
     def instances(self, draft: Draft, statement: str, line: int) -> None:
         """Read a statement of one instance or more, each with its own line."""
         head = _CELL_HEAD.match(statement)
-        if not head or (head[1] not in GATES and statement[head.end(1) :].lstrip().startswith("#")):
-            cell = plain_name(head[1] if head else statement)
-            draft.trouble(f"{cell} is given parameters here", "give a netlist without parameters", line)
+        if not head:
+            draft.trouble(f"found {statement.strip()} alone", "mend the text", line)
             return
-        start = head.end()
+        start, values = head.end(), ""
+        if head[1] in GATES:
+            drive = _DRIVE_HEAD.match(statement, start)
+            self._drive(draft, (drive[1] if drive else "") or "", line)
+            start = drive.end() if drive else start
+        elif begun := _VALUES_HEAD.match(statement, start):
+            start = begun.end() if begun[1] else max(begun.end(), closing(statement, begun.end(), line))
+            values = f"#({begun[1]})" if begun[1] else "#" + " ".join(statement[begun.end() : start].split())
         for number, item in enumerate(split_list(statement[start:], line + statement.count("\n", 0, start))):
             # The first instance stands where its statement begins, a further one where its name stands.
             above = item.line - line if number == 0 else 0
-            whole = Item(head[1] + "\n" * above + " " + item.text, item.line - above)
+            text, every = _explicit(item.text)
+            whole = Item(f"{head[1]}{values}" + "\n" * above + " " + text, item.line - above)
             instance = self._plain_item(whole) if draft.plain else None
-            if instance:
-                draft.instances.append(instance)
+            if instance is None:
+                draft.wait("instance", whole, every)
+            elif every:
+                draft.instances.append(instance._replace(connections=(*instance.connections, EVERY_PORT)))
             else:
-                draft.wait("instance", whole)
+                draft.instances.append(instance)
 
     def _plain_item(self, item: Item) -> Instance | None:
         """Return the instance if it is plain."""
@@ -195,13 +240,34 @@ class Items:
         return Instance(plain_name(cell), plain_name(name), tuple(map(connect, pairs)), item.line, primitive)
 
 
+def _explicit(text: str) -> tuple[str, str]:
+    """Return an instance with ``.a`` written as ``.a(a)`` and without ``.*``, and ``.*`` where it had one."""
+    every = ""
+
+    def replace(match: re.Match[str]) -> str:
+        nonlocal every
+        after, first, blanks, name = match.groups()
+        if name:
+            return f"{blanks}.{name}({name})"
+        if after or first:
+            every = ".*"
+            return ("(" if first else "") + "\n" * match[0].count("\n")
+        return match[0]
+
+    return (_SHORT.sub(replace, text) if "." in text else text), every
+
+
 def direction_of(word: str) -> Direction | None:
     """Return the direction that a word says, if it says one."""
     return _DIRECTIONS.get(word)
 
 
 def direction_and_kind(word: str, kind: str | None) -> tuple[Direction | None, str | None]:
-    """Return what the one or two words before a declared name say; ``tri`` and ``uwire`` are wires."""
+    """Return what the one or two words before a declared name say."""
     direction = direction_of(word)
-    kind = kind if direction else word
-    return direction, "wire" if kind in ("tri", "uwire") else kind or None
+    return direction, net_kind((kind if direction else word) or "") or None
+
+
+def net_kind(word: str) -> str:
+    """Return the kind of a net that a word says; ``tri``, ``uwire`` and ``logic`` are wires."""
+    return "wire" if word in ("tri", "uwire", "logic") else word

@@ -12,6 +12,7 @@ MAX_DEPTH = 256
 MAX_BITS = 1 << 20
 
 GATES = frozenset({"and", "nand", "or", "nor", "xor", "xnor", "buf", "not", "bufif0", "bufif1", "notif0", "notif1"})
+WIRED = frozenset({"wand", "wor", "triand", "trior"})
 _OTHER_KEYWORDS = """
 always assign begin buf case casex casez cmos config deassign default defparam disable edge else end endcase
 endconfig endfunction endgenerate endmodule endprimitive endspecify endtable endtask event for force forever fork
@@ -25,6 +26,14 @@ RESERVED = GATES | frozenset(_OTHER_KEYWORDS.split())
 _LITERAL = re.compile(r"(?:(\d[\d_]*)?\s*'\s*([sS]?)([bBoOdDhH])\s*([\w?]+)|(\d[\d_]*))")
 _DIGIT_BITS = {"b": 1, "o": 3, "h": 4}
 _TOKEN = re.compile(r'\\\S++|"(?:[^"\\\n]|\\.)*+"|[(\[{]|[)\]}]|,')
+
+
+class RefusedError(Exception):
+    """The text is legal, or nearly so, but not structural; ``found`` and ``remedy`` as in a Trouble."""
+
+    def __init__(self, found: str, remedy: str) -> None:
+        super().__init__(found)
+        self.found, self.remedy = found, remedy
 
 
 class NotPlainError(Exception):

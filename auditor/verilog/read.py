@@ -1,51 +1,62 @@
 """Files → modules: the main verb of this room."""
 
 import gc
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from contextlib import contextmanager
 from pathlib import Path
+from types import MappingProxyType
 from typing import Literal
 
 from auditor.errors import TroubleList
+from auditor.verilog.draft import Draft
+from auditor.verilog.preprocess import Preprocessor
 from auditor.verilog.scanner import scan
-from auditor.verilog.statements import Module
+from auditor.verilog.statements import Module, Reading
 from auditor.verilog.text import blank, read_text
+from auditor.verilog.variants import modules_of
 
 
-def read_verilog(paths: Sequence[Path], lane: Literal["both", "grammar"] = "both") -> dict[str, Module]:
+def read_verilog(
+    paths: Sequence[Path],
+    lane: Literal["both", "grammar"] = "both",
+    defines: Mapping[str, str] = MappingProxyType({}),
+    include: Sequence[Path] = (),
+    reading: Reading | None = None,
+) -> dict[str, Module]:
     """Return the modules of all files by name, in the order of the text; files and modules may come in any order.
 
-    Plain statements take the fast lane, others the grammar lane; with ``lane`` "grammar" every statement takes the
-    latter, which is slow and gives the same modules. Raises InputError with the troubles of all files.
+    ``defines`` are macros that are defined from the start, ``include`` the folders in which an included file is looked
+    for behind that of the including one; a macro of one file is known to those that follow. Plain statements take the
+    fast lane, others the grammar lane; with ``lane`` "grammar" every statement takes the latter, which is slow and
+    gives the same modules. Included files and notes are entered into ``reading``. Raises InputError with the troubles
+    of all files.
     """
-    troubles = TroubleList()
-    modules: dict[str, Module] = {}
+    troubles, told = TroubleList(), reading or Reading()
+    preprocessor = Preprocessor(defines, include, troubles, told)
+    drafts: dict[str, Draft] = {}
+    primitives: list[str] = []
     with _collector_paused():
         for path in dict.fromkeys(paths):
-            for module in _modules_of(path, lane == "both", troubles):
-                before = modules.setdefault(module.name, module)
-                if before is not module:
-                    found = f"module {module.name} is defined again, first at {before.place}"
-                    troubles.add(found, "leave one of the definitions out", module.place)
+            text = read_text(path, troubles)
+            source = None if text is None else preprocessor.run(text, path)
+            blanked = None if source is None else blank(source, troubles)
+            if blanked is None:
+                continue
+            del text, source
+            scanned = scan(blanked, troubles, told, lane == "both")
+            primitives += scanned.primitives
+            for draft in scanned.drafts:
+                before = drafts.setdefault(draft.name, draft)
+                if before is not draft:
+                    found = f"module {draft.name} is defined again, first at {before.place}"
+                    troubles.add(found, "leave one of the definitions out", draft.place)
+        modules = modules_of(drafts, primitives)
     if not modules and not troubles.troubles:
         files = ", ".join(map(str, paths)) or "no file"
         troubles.add(f"no module in {files}", "give a netlist with at least one module")
     troubles.raise_any()
+    told.notes[:] = dict.fromkeys(told.notes)
     return modules
-
-
-def _modules_of(path: Path, plain: bool, troubles: TroubleList) -> Iterator[Module]:
-    """Yield the modules of one file, noting troubles."""
-    text = read_text(path, troubles)
-    blanked = None if text is None else blank(text, str(path), troubles)
-    if blanked is None:
-        return
-    for draft in scan(blanked, str(path), troubles, plain):
-        if draft.waiting:
-            from auditor.verilog.grammar import read_waiting  # noqa: PLC0415  (many netlists never need this lane)
-
-            read_waiting(draft)
-        yield draft.finish()
 
 
 @contextmanager

@@ -6,12 +6,13 @@ waits in its draft for the grammar lane.
 """
 
 import re
+from bisect import bisect_right
 from collections.abc import Callable
+from typing import NamedTuple
 
 from auditor.errors import TroubleList
-from auditor.notation import SourcePlace
 from auditor.verilog.draft import Draft
-from auditor.verilog.items import BOUNDS, NAMED_BODY, PINS, Items, connect, direction_and_kind, instantiate
+from auditor.verilog.items import BOUNDS, NAMED_BODY, NET_KINDS, PINS, Items, connect, direction_and_kind, instantiate
 from auditor.verilog.plain import (
     GATES,
     MAX_DEPTH,
@@ -24,7 +25,8 @@ from auditor.verilog.plain import (
     PlainValues,
     plain_name,
 )
-from auditor.verilog.statements import Range
+from auditor.verilog.statements import Range, Reading
+from auditor.verilog.text import SourceText
 
 S = SPACE
 _POSITION = r"(?>[^(),{}\\;.]++|\\\S++\s)++"
@@ -34,33 +36,45 @@ _WORD = re.compile(rf"{S}(?:([A-Za-z_][\w$]*+)|(\\\S++\s)|(.))")
 _STATEMENT = re.compile(r'(?>[^;\\"]++|\\\S++\s|"(?:[^"\\\n]|\\.)*+")*+;')
 _MODULE_WORD = re.compile(r"\\\S++|\b(endmodule|module|macromodule)\b")
 _SPECIFY_END = re.compile(r"\\\S++|\b(endspecify)\b")
+_PRIMITIVE = re.compile(rf"primitive\b{S}({NAME})")
+_PRIMITIVE_END = re.compile(r"\\\S++|\b(endprimitive|module|macromodule)\b")
 _HEAD = re.compile(rf"(?:macro)?module\b{S}({NAME}){S}")
 _LABEL = re.compile(rf"{S}:{S}{NAME}")
 _NAME_LIST = re.compile(
-    rf"{S}(?:(input|output|inout)\b{S}(?:(wire|tri)\b{S})?|(wire|tri|supply0|supply1)\b{S})(?:{BOUNDS}{S})?"
+    rf"{S}(?:(input|output|inout)\b{S}(?:(wire|tri|logic)\b{S})?|(wire|tri|logic|supply0|supply1)\b{S})(?:{BOUNDS}{S})?"
     rf"({NAME}{S}(?:,{S}{NAME}{S})*+);"
 )
 _BARE_NAME = re.compile(r"[A-Za-z_][\w$]*+|\\\S++")
-_WIRED = frozenset({"tri0", "tri1", "wand", "wor", "triand", "trior", "trireg"})
 
 
-def scan(text: str, file: str, troubles: TroubleList, plain: bool = True) -> list[Draft]:
-    """Return a draft of each module of a blanked text; with ``plain`` False all waits for the grammar lane."""
-    return _Scanner(text, file, troubles, plain).run()
+class Scanned(NamedTuple):
+    """The modules of a text in the making, and the names of the primitives that it defines."""
+
+    drafts: list[Draft]
+    primitives: list[str]
+
+
+def scan(source: SourceText, troubles: TroubleList, reading: Reading, plain: bool = True) -> Scanned:
+    """Return what a blanked text holds; with ``plain`` False all waits for the grammar lane."""
+    return _Scanner(source, troubles, reading, plain).run()
 
 
 class _Scanner:
-    """Where the scan stands in one file; ``counted`` is the position up to which lines are counted."""
+    """Where the scan stands in one text; ``counted`` is the position up to which lines are counted.
 
-    def __init__(self, text: str, file: str, troubles: TroubleList, plain: bool) -> None:
-        self.text, self.file, self.troubles, self.plain = text, file, troubles, plain
+    Within a module ``line`` counts as the module does: less by the ``shift`` of its draft.
+    """
+
+    def __init__(self, source: SourceText, troubles: TroubleList, reading: Reading, plain: bool) -> None:
+        self.source, self.text, self.troubles, self.reading, self.plain = source, source.text, troubles, reading, plain
         self.position, self.counted, self.line = 0, 0, 1
+        self.primitives: list[str] = []
         self.names, self.values = PlainNames(), PlainValues()
         self.items = Items(self.names, self.values)
         self.drafts: list[Draft] = []
         self.draft: Draft | None = None
 
-    def run(self) -> list[Draft]:
+    def run(self) -> Scanned:
         """Read the whole text."""
         while True:
             if self.draft and self.draft.plain:
@@ -78,7 +92,8 @@ class _Scanner:
             self._trouble(
                 f"the file ends inside module {self.draft.name}", "end it with endmodule", self.draft.place.line
             )
-        return self.drafts
+            self._close()
+        return Scanned(self.drafts, self.primitives)
 
     def _plain_instances(self, draft: Draft) -> None:
         """Read plain instances as long as they follow each other: the loop that a large netlist spends its time in."""
@@ -115,6 +130,8 @@ class _Scanner:
             self._end_module(line)
         elif word in ("module", "macromodule"):
             self._begin_module(line)
+        elif word == "primitive" and self.draft is None:
+            self._primitive(line)
         elif self.draft is None:
             self._trouble(f"{match[0].strip()} stands outside a module", "put it into a module or leave it out", line)
             self._skip_to("module", "macromodule")
@@ -134,8 +151,11 @@ class _Scanner:
         """Pass over what is not structural: timing in silence, all else with a trouble."""
         if word == "specify":
             self._skip_past(_SPECIFY_END)
-        elif word in _WIRED:
-            self._trouble(f"{word} nets are wired logic", "drive the net by one gate", line)
+        elif word == "trireg":
+            self._trouble("trireg nets store charge", "store the bit in a cell", line)
+            self._take_statement(line)
+        elif word in ("pullup", "pulldown"):
+            self._trouble(f"a {word} is a second driver of its net", "tie the net, or leave it out", line)
             self._take_statement(line)
         else:
             self._trouble(
@@ -150,7 +170,8 @@ class _Scanner:
                 "end that module with endmodule first",
                 line,
             )
-            self.draft = None
+            line += self.draft.shift
+            self._close()
         statement = self._take_statement(line)
         if statement is None:
             return
@@ -159,9 +180,32 @@ class _Scanner:
             self._trouble("module without a name", "name it", line)
             self._skip_past(_MODULE_WORD)
             return
-        self.draft = Draft(plain_name(head[1]), SourcePlace(self.file, line), self.troubles, self.plain)
+        place = self.source.spans.place(line)
+        kinds = self.source.net_types
+        ruling = bisect_right(kinds, line, key=lambda entry: entry[0])
+        self.draft = Draft(
+            plain_name(head[1]), place, line, self.source.spans, self.troubles, self.reading, self.plain,
+            implicit_nets=not ruling or kinds[ruling - 1][1] != "none",
+        )  # fmt: skip
         self.drafts.append(self.draft)
-        self.items.header(self.draft, statement, head.end(), line)
+        self.line -= self.draft.shift
+        self.items.header(self.draft, statement, head.end(), place.line)
+
+    def _close(self) -> None:
+        """Leave the module at hand; lines are those of the whole text again."""
+        if self.draft:
+            self.draft.last_line = self.line
+            self.line += self.draft.shift
+        self.draft = None
+
+    def _primitive(self, line: int) -> None:
+        """Pass over the table of a primitive: its name is that of a cell from here on."""
+        if head := _PRIMITIVE.match(self.text, self.position):
+            self.primitives.append(plain_name(head[1]))
+        end = _find(_PRIMITIVE_END, self.text, self.position)
+        if end is None or end[1] != "endprimitive":
+            self._trouble("a primitive begins here and never ends", "end it with endprimitive", line)
+        self.position = len(self.text) if end is None else end.end() if end[1] == "endprimitive" else end.start()
 
     def _name_list(self, draft: Draft) -> bool:
         """Read a plain list of declared names in one go, if it is one: lists may hold a million."""
@@ -186,7 +230,7 @@ class _Scanner:
             self.position = label.end()
         if not self.draft:
             self._trouble("endmodule without a module", "leave it out or mend what stands before it", line)
-        self.draft = None
+        self._close()
 
     def _take_statement(self, line: int) -> str | None:
         """Return the text up to the next ``;`` and pass over it, or None after noting that it is not ended."""
@@ -221,7 +265,8 @@ class _Scanner:
         return self.line
 
     def _trouble(self, found: str, remedy: str, line: int) -> None:
-        self.troubles.add(found, remedy, SourcePlace(self.file, line))
+        place = self.draft.place_of(line) if self.draft else self.source.spans.place(line)
+        self.troubles.add(found, remedy, place)
 
 
 def _find(pattern: re.Pattern[str], text: str, start: int) -> re.Match[str] | None:
@@ -230,13 +275,12 @@ def _find(pattern: re.Pattern[str], text: str, start: int) -> re.Match[str] | No
 
 
 _Handler = Callable[[Items, Draft, str, int], None]
-_DECLARING = dict.fromkeys(
-    ("input", "output", "inout", "wire", "tri", "uwire", "reg", "supply0", "supply1"), Items.declaration
-)
+_DECLARING = dict.fromkeys(("input", "output", "inout", *NET_KINDS), Items.declaration)
 _HANDLERS: dict[str, _Handler] = {
     **_DECLARING,
     **dict.fromkeys(GATES, Items.instances),
     "assign": Items.assign,
     "parameter": Items.parameter,
     "localparam": Items.parameter,
+    "defparam": Items.defparam,
 }

@@ -5,9 +5,9 @@ stored without the backslash and the blank of an escaped identifier.
 """
 
 from bisect import bisect_right
-from bisect import bisect_right
 from collections.abc import Mapping
 from dataclasses import dataclass, field
+from pathlib import Path
 from typing import Literal, NamedTuple, TypeAlias
 
 from auditor.notation import SourcePlace
@@ -101,6 +101,14 @@ class HeaderPort(NamedTuple):
     inside: Expression
 
 
+@dataclass(slots=True)
+class Reading:
+    """What a reading met beside the modules: files taken in by `` `include ``, and what a reviewer should know."""
+
+    included: list[Path] = field(default_factory=list)
+    notes: list[str] = field(default_factory=list)
+
+
 @dataclass(frozen=True, slots=True)
 class Lines:
     """Where the lines of a text come from that takes in other files.
@@ -114,16 +122,29 @@ class Lines:
 
     def place(self, line: int) -> SourcePlace:
         """Return the file and the line in it that a line of the text comes from."""
-        k = max(0, bisect_right(self.starts, line) - 1)
+        k = self._run(line)
         return SourcePlace(self.files[k], self.firsts[k] + line - self.starts[k])
+
+    def between(self, first: int, last: int) -> "Lines | None":
+        """Return lines ``first`` .. ``last`` numbered on from that of ``first`` in its file, None if all are in it."""
+        low, high = self._run(first), self._run(last) + 1
+        if high == low + 1:
+            return None
+        shift = first - self.place(first).line
+        return Lines(
+            tuple(start - shift for start in self.starts[low:high]), self.files[low:high], self.firsts[low:high]
+        )
+
+    def _run(self, line: int) -> int:
+        return max(0, bisect_right(self.starts, line) - 1)
 
 
 @dataclass(frozen=True, slots=True)
 class Module:
     """A module as written. ``ports`` in header order; ``directions`` by the names of the nets declared as ports.
 
-    Lines are those of the whole text, which ``place_of`` finds in their files; ``spans`` is None where the text is one
-    file. ``implicit_nets`` False: `` `default_nettype none `` held where the module begins.
+    Lines are counted on from the module's first one through the files that it includes, and ``place_of`` finds them
+    there; ``spans`` is None where it includes none. ``implicit_nets`` is False where `` `default_nettype none `` holds.
     """
 
     name: str
@@ -133,12 +154,6 @@ class Module:
     nets: Mapping[str, Declaration]
     instances: list[Instance] = field(default_factory=list)
     assigns: list[Assign] = field(default_factory=list)
-    spans: Lines | None = None
-    implicit_nets: bool = True
-
-    def place_of(self, line: int) -> SourcePlace:
-        """Return where a line of this module stands."""
-        return self.spans.place(line) if self.spans else SourcePlace(self.place.file, line)
     spans: Lines | None = None
     implicit_nets: bool = True
 

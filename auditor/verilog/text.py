@@ -1,4 +1,4 @@
-"""Files to text: what stands in a Verilog file once comments, attributes and harmless directives are blanked.
+"""Files to text: what stands in a Verilog file, and what of it is left once comments and attributes are blanked.
 
 Line numbers never move: whatever is blanked leaves its line ends behind.
 """
@@ -8,9 +8,11 @@ import re
 import zlib
 from collections.abc import Callable
 from pathlib import Path
+from typing import NamedTuple
 
 from auditor.errors import TroubleList
 from auditor.notation import SourcePlace
+from auditor.verilog.statements import Lines
 
 _GZIP_MAGIC = b"\x1f\x8b"
 _CONTROL_CODES = re.compile(rb"[\x00-\x08\x0e-\x1a\x1c-\x1f]")
@@ -24,12 +26,18 @@ _TOKENS = (
     ("//", r"//[^\n]*+"),
     ("/*", r"/\*(?s:.*?)(?:\*/|\Z)"),
     ("(*", rf"\(\*(?!\s*\))(?:{_STRING}|[^*\"]|\*(?!\)))*+(?:\*\)|\Z)"),
-    ("`", r"`(?:timescale\b[^\n]*?(?=/[/*]|\n|\Z)|default_nettype\s++\w++|[A-Za-z_]\w*+)?"),
 )
-_HARMLESS = frozenset({"timescale", "celldefine", "endcelldefine", "default_nettype", "resetall"})
 
 
-def read_text(path: Path, troubles: TroubleList) -> str | None:
+class SourceText(NamedTuple):
+    """A text without directives, where its lines come from, and the default net types with the lines they hold from."""
+
+    text: str
+    spans: Lines
+    net_types: tuple[tuple[int, str], ...] = ()
+
+
+def read_text(path: Path, troubles: TroubleList, may_be_empty: bool = False) -> str | None:
     """Return the text of a plain or gzip file, or None after noting why it has none.
 
     UTF-8 with or without its mark, else latin-1; every kind of line end becomes a line feed.
@@ -41,7 +49,7 @@ def read_text(path: Path, troubles: TroubleList) -> str | None:
     if _CONTROL_CODES.search(data):
         troubles.add("the file is binary, not text", "give a Verilog netlist as text, plain or gzip", place)
         return None
-    if not data.strip():
+    if not data.strip() and not may_be_empty:
         troubles.add("the file is empty", "give a Verilog netlist", place)
         return None
     try:
@@ -78,37 +86,28 @@ def _read_bytes(path: Path, place: SourcePlace, troubles: TroubleList) -> bytes 
     return None
 
 
-def blank(text: str, file: str, troubles: TroubleList) -> str | None:
-    """Return ``text`` without comments, attributes and harmless directives, or None if a trouble was noted.
-
-    Of each other directive or macro the first use is noted: none is read here and none is dropped in silence.
-    """
-    tokens = [pattern for sign, pattern in _TOKENS if sign in text]
-    if not tokens:
-        return text
+def blank(source: SourceText, troubles: TroubleList) -> SourceText | None:
+    """Return a text without comments and attributes, or None if a trouble was noted."""
+    tokens = [pattern for sign, pattern in _TOKENS if sign in source.text]
+    if not any(sign in source.text for sign in ("//", "/*", "(*")):
+        return source
     noted = len(troubles.troubles)
-    blanked = re.sub("|".join(tokens), _replacement(text, file, troubles), text)
-    return blanked if len(troubles.troubles) == noted else None
+    blanked = re.sub("|".join(tokens), _replacement(source, troubles), source.text)
+    return source._replace(text=blanked) if len(troubles.troubles) == noted else None
 
 
-def _replacement(text: str, file: str, troubles: TroubleList) -> Callable[[re.Match[str]], str]:
+def _replacement(source: SourceText, troubles: TroubleList) -> Callable[[re.Match[str]], str]:
     """Return the function that gives what replaces a token; it notes troubles as it goes."""
-    seen: set[str] = set()
 
     def note(match: re.Match[str], found: str, remedy: str) -> None:
-        troubles.add(found, remedy, SourcePlace(file, text.count("\n", 0, match.start()) + 1))
+        troubles.add(found, remedy, source.spans.place(source.text.count("\n", 0, match.start()) + 1))
 
     def replace(match: re.Match[str]) -> str:
         token = match[0]
         first = token[0]
         if first in '\\"':
             return token
-        if first == "`":
-            word = token[1:].split(maxsplit=1)[0] if token[1:].strip() else ""
-            if word not in _HARMLESS and word not in seen:
-                seen.add(word)
-                note(match, f"directive or macro `{word} is not read", "give the netlist with directives resolved")
-        elif token.startswith("/*") and (len(token) < 4 or not token.endswith("*/")):
+        if token.startswith("/*") and (len(token) < 4 or not token.endswith("*/")):
             note(match, "a comment begins here and never ends", "end it with */")
         elif first == "(" and (len(token) < 4 or not token.endswith("*)")):
             note(match, "an attribute begins here and never ends", "end it with *)")

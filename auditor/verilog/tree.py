@@ -6,20 +6,12 @@ Nodes are known by the name of their class, so that pyverilog need not be import
 from collections.abc import Callable, Sequence
 from typing import Any, TypeVar
 
-from auditor.verilog.plain import MAX_BITS, literal, plain_name
+from auditor.verilog.plain import MAX_BITS, RefusedError, literal, plain_name
 from auditor.verilog.statements import Concatenation, Constant, Expression, Operation, Select
 
 _Value = TypeVar("_Value")
 
 Parameters = dict[str, Constant]
-
-
-class RefusedError(Exception):
-    """The text is legal, or nearly so, but not structural; ``found`` and ``remedy`` as in a Trouble."""
-
-    def __init__(self, found: str, remedy: str) -> None:
-        super().__init__(found)
-        self.found, self.remedy = found, remedy
 
 
 _ARITHMETIC: dict[str, Callable[[int, int], int]] = {
@@ -62,13 +54,19 @@ def integer_of(root: Any, parameters: Parameters) -> int:
     return _fold(root, children, combine)
 
 
-def parameter_of(node: Any, parameters: Parameters) -> tuple[str, Constant]:
-    """Return the name and the value of a parameter; its range, where it has one, gives the width."""
-    value = node.value.var
-    constant = _constant(value, parameters)
+def value_of(node: Any, parameters: Parameters) -> Constant:
+    """Return the value of a constant expression, as wide as it is written. Raises RefusedError."""
+    constant = _constant(node, parameters)
     if constant is None:
-        number = integer_of(value, parameters)
-        constant = Constant(f"{number % (1 << 32):032b}", sized=False)
+        constant = Constant(f"{integer_of(node, parameters) % (1 << 32):032b}", sized=False)
+    return constant
+
+
+def parameter_of(node: Any, parameters: Parameters, given: Parameters) -> tuple[str, Constant]:
+    """Return the name and the value of a parameter, which may be given; a range that it has gives the width."""
+    constant = given.get(plain_name(node.name)) if type(node).__name__ == "Parameter" else None
+    if constant is None:
+        constant = value_of(node.value.var, parameters)
     if node.width is not None:
         left, right = integer_of(node.width.msb, parameters), integer_of(node.width.lsb, parameters)
         width = abs(left - right) + 1

@@ -148,7 +148,9 @@ _PLAIN = "mend the text, or give it as plain structural Verilog"
             "n.v:2: the statement that begins with assign is not ended; end it with ;"]),
         (_HEAD + "initial x;\nendmodule", [
             "n.v:2: module m is not structural: found initial; give a netlist mapped to gates"]),
-        (_HEAD + "wand w;\nendmodule", ["n.v:2: wand nets are wired logic; drive the net by one gate"]),
+        (_HEAD + "trireg w;\nendmodule", ["n.v:2: trireg nets store charge; store the bit in a cell"]),
+        (_HEAD + "pullup (y);\nendmodule", [
+            "n.v:2: a pullup is a second driver of its net; tie the net, or leave it out"]),
         (_HEAD + "\nassign y =\n a b;\nendmodule", [f"n.v:4: syntax error at b; {_PLAIN}"]),
         (_HEAD + "X u(.A(a);\nX w(.A(a)) b;\nendmodule", [
             f"n.v:2: syntax error: the instance ends too early; {_PLAIN}", f"n.v:3: syntax error at b; {_PLAIN}"]),
@@ -166,9 +168,6 @@ _PLAIN = "mend the text, or give it as plain structural Verilog"
         (_HEAD + "assign y = 1'b2;\nendmodule", [f"n.v:2: syntax error: illegal character '; {_PLAIN}"]),
         (_HEAD + 'X u(.A("an empty position"));\nendmodule', [
             f"n.v:2: found X where an item of a netlist should stand; {_PLAIN}"]),
-        (_HEAD + "wire signed [1:0] s;\nendmodule", ["n.v:2: s is signed; declare it without signed"]),
-        (_HEAD + "X #(3) u(.A(a));\nendmodule", [
-            "n.v:2: X is given parameters here; give a netlist without parameters"]),
         (_HEAD + "X (.A(a));\nendmodule", ["n.v:2: an instance of X has no name; name it"]),
         (_HEAD + "wire w;\nwire w;\nendmodule", [
             "n.v:3: w is declared again, first on line 2; leave one of the declarations out"]),

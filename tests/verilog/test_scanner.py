@@ -9,12 +9,19 @@ from hypothesis import strategies as st
 
 from auditor.errors import InputError, TroubleList
 from auditor.netlist.flatten import flatten
+from auditor.verilog.draft import Draft
 from auditor.verilog.read import read_verilog
 from auditor.verilog.scanner import scan
-from auditor.verilog.statements import Module
+from auditor.verilog.statements import Lines, Module, Reading
+from auditor.verilog.text import SourceText
 from tests.support.structural_texts import structural_texts
 
 _HEAD = "module m(input a, input [3:0] v, output y);\n"
+
+
+def _scanned(text: str, troubles: TroubleList) -> list[Draft]:
+    """Return the drafts of a text without directives and comments."""
+    return scan(SourceText(text, Lines((1,), ("f.v",), (1,))), troubles, Reading()).drafts
 
 
 @pytest.mark.parametrize(
@@ -33,7 +40,7 @@ _HEAD = "module m(input a, input [3:0] v, output y);\n"
 def test_plain_text_never_waits_for_the_grammar(text: str) -> None:
     """All that gate-level netlists are made of is read by the fast lane alone."""
     troubles = TroubleList()
-    (draft,) = scan(_HEAD + text + "\nendmodule\n", "f.v", troubles)
+    (draft,) = _scanned(_HEAD + text + "\nendmodule\n", troubles)
     assert not draft.waiting
     assert not troubles.troubles
 
@@ -41,7 +48,7 @@ def test_plain_text_never_waits_for_the_grammar(text: str) -> None:
 def test_only_what_is_not_plain_waits() -> None:
     """Of a statement only the items that are not plain wait, each with its place among the others."""
     text = _HEAD + "INV a1(.A(a)), a2(.A(~a)), a3(.A(y));\nassign y = a, v[0] = a ^ y;\nwire [3-1:0] w;\nendmodule"
-    (draft,) = scan(text, "f.v", TroubleList())
+    (draft,) = _scanned(text, TroubleList())
     assert [(wait.kind, wait.instances_before, wait.assigns_before) for wait in draft.waiting] == [
         ("instance", 1, 0),
         ("assign", 2, 1),
@@ -53,14 +60,14 @@ def test_only_what_is_not_plain_waits() -> None:
 @pytest.mark.parametrize("text", ["INV u(.wire(a));", "INV u(.A(wire));", "INV wire(.A(a));", "nand wire(y, a, a);"])
 def test_keywords_are_never_names(text: str) -> None:
     """The fast lane leaves a statement that uses a keyword as a name to the grammar, which refuses it."""
-    (draft,) = scan(_HEAD + text + "\nendmodule", "f.v", TroubleList())
+    (draft,) = _scanned(_HEAD + text + "\nendmodule", TroubleList())
     assert not draft.instances
     assert len(draft.waiting) == 1
 
 
 def test_after_a_parameter_nothing_is_plain() -> None:
     """A name may then be a number, so that the fast lane must not take it for a net."""
-    (draft,) = scan(_HEAD + "INV u(.A(a));\nparameter P = 1;\nINV w(.A(P));\nendmodule", "f.v", TroubleList())
+    (draft,) = _scanned(_HEAD + "INV u(.A(a));\nparameter P = 1;\nINV w(.A(P));\nendmodule", TroubleList())
     assert [instance.name for instance in draft.instances] == ["u"]
     assert [wait.kind for wait in draft.waiting] == ["parameter", "instance"]
 
