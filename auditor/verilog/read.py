@@ -9,11 +9,11 @@ from typing import Literal
 
 from auditor.errors import TroubleList
 from auditor.verilog.draft import Draft
+from auditor.verilog.finish import modules_of
 from auditor.verilog.preprocess import Preprocessor
 from auditor.verilog.scanner import scan
 from auditor.verilog.statements import Module, Reading
 from auditor.verilog.text import blank, read_text
-from auditor.verilog.variants import modules_of
 
 
 def read_verilog(
