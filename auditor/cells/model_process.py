@@ -209,19 +209,19 @@ def _flip_flop(net: str, function: Function, edges: list[tuple[str, int]], proce
     space, ones = _table(function, inputs, net)
     state = space.columns[-1]
     for clock, (_, edge) in enumerate(edges):
-        others = [(k, level) for k, (_, level) in enumerate(edges) if k != clock]
-        at = [(space.columns[k], level) for k, level in others]
+        asynchronous = set(range(len(edges))) - {clock}
         active = 0
-        for column, level in at:
-            active |= column if level else space.mask & ~column
-        rising: list[int] = []
-        for k in range(len(inputs)):
-            evaluated = active if k in [other for other, _ in others] else 0
-            if k == clock:
-                evaluated = space.columns[k] if edge else space.mask & ~space.columns[k]
-            rising.append(evaluated & ones | state & ~evaluated)
+        for k in asynchronous:
+            active |= space.columns[k] if edges[k][1] else space.mask & ~space.columns[k]
+        if any((ones ^ space.flip(ones, j)) & active for j in range(len(inputs) + 1) if j not in asynchronous):
+            continue  # what an asynchronous input loads must be a constant
+        clocked = space.columns[clock] if edge else space.mask & ~space.columns[clock]
+        rising = tuple(
+            evaluated & ones | state & ~evaluated
+            for evaluated in (active | clocked if k == clock else active for k in range(len(inputs)))
+        )
         falling = tuple(space.mask & ~column for column in rising)
-        bit = recognise(Transitions(inputs, tuple(rising), falling, clock), net)
+        bit = recognise(Transitions(inputs, rising, falling, clock), net)
         if bit:
             return bit
     raise _neither(net, process)

@@ -4,6 +4,7 @@ The result is one text without comments and directives, and where each of its li
 defined for the files that follow, as IEEE 1364-2005, clause 19, has it.
 """
 
+import os
 import re
 from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass, field
@@ -15,6 +16,7 @@ from auditor.notation import SourcePlace
 
 _DEEPEST_INCLUDE = 64
 _MOST_INCLUDES = 100_000  # for one file given
+_LONGEST_TEXT = 1_000_000_000
 _MOST_EXPANSIONS = 1000  # of macros in macros, in one use
 _LONGEST_EXPANSION = 1_000_000
 _STRING = r'"(?:[^"\\\n]|\\.)*+"'
@@ -88,12 +90,13 @@ class Preprocessor:
         self._lines: list[str] = []
         self._places: list[SourcePlace] = []
         self._told: set[str] = set()
-        self._included = 0
+        self._included = self._size = 0
 
     def read(self, path: Path, text: str, troubles: TroubleList) -> ModelText:
         """Return the text of a file with its includes; troubles are noted."""
         self.troubles = troubles
-        self._lines, self._places, self._included = [], [], 0
+        self._lines, self._places = [], []
+        self._included = self._size = 0
         self._push(path, text)
         while self._open:
             source = self._open[-1]
@@ -107,9 +110,18 @@ class Preprocessor:
             if "`" in line:
                 self._directives(source, line)
             elif source.counts:
-                self._lines.append(line)
-                self._places.append(source.place)
+                self._keep(line, source.place)
         return ModelText("\n".join(self._lines), self._places)
+
+    def _keep(self, line: str, place: SourcePlace) -> None:
+        """Put a line into the result; what has grown beyond any set of cells is broken off."""
+        self._lines.append(line)
+        self._places.append(place)
+        self._size += len(line)
+        if self._size > _LONGEST_TEXT:
+            self._trouble("macros and includes make this longer than a gigabyte", "mend them", place)
+            self._open.clear()
+            self._size = 0
 
     def _push(self, path: Path, text: str) -> None:
         self._open.append(_Source(path, self._without_comments(path, text).split("\n")))
@@ -152,8 +164,7 @@ class Preprocessor:
             kept.append(line[position:])
         if any(map(str.strip, kept)):
             for part in "".join(kept).split("\n"):
-                self._lines.append(part)
-                self._places.append(place)
+                self._keep(part, place)
 
     def _begin_condition(self, source: _Source, line: str, position: int, wanted: bool) -> int:
         name = _NAME.match(line, position)
@@ -210,7 +221,7 @@ class Preprocessor:
             self._open.clear()
             return
         candidates = [folder / name for folder in (source.path.parent, *self.folders)]
-        path = next((candidate for candidate in candidates if candidate.is_file()), None)
+        path = next((_tidy(candidate) for candidate in candidates if candidate.is_file()), None)
         if path is None:
             self._trouble(f"the included file {name} is missing", "put it beside this one", source.place)
             return
@@ -266,6 +277,12 @@ class Preprocessor:
 
     def _trouble(self, found: str, remedy: str, place: SourcePlace) -> None:
         self.troubles.add(found, remedy, place)
+
+
+def _tidy(path: Path) -> Path:
+    """Return a path without ``..`` in the middle, where that is the same file, so that one file has one name."""
+    short = Path(os.path.normpath(path))
+    return short if short.is_file() and short.samefile(path) else path
 
 
 _CONDITIONS: dict[str, Callable[[Preprocessor, _Source, str, int], int]] = {

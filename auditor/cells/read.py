@@ -87,6 +87,7 @@ class _ModelReader:
 
     def __init__(self, defines: Mapping[str, str], folders: Sequence[Path]) -> None:
         self._given = defines, folders
+        self._places: dict[str, SourcePlace] = {}
         self._files: ModelFiles | None = None
 
     def read(self, path: Path, text: str) -> tuple[dict[str, _Source], list[str]]:
@@ -97,11 +98,15 @@ class _ModelReader:
             self._files = ModelFiles(*self._given)
         sources: dict[str, _Source] = {}
         notes: list[str] = []
-        for name, place, make in self._files.read(path, text):
+        found = list(self._files.read(path, text))
+        for name, place, make in found:
+            if place.file != str(path) and self._places.get(name) == place:
+                continue  # the same file is included again
+            self._places[name] = place
             source = _Source(place, make)
             notes += _overridden(sources, {name: source})
             sources[name] = source
-        return sources, notes if sources else [f"{path} describes no cells"]
+        return sources, notes if found else [f"{path} describes no cells"]
 
 
 def _read_file(path: Path, models: _ModelReader) -> tuple[dict[str, _Source], list[str]]:

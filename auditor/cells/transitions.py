@@ -80,7 +80,7 @@ class _Search:
         """Return the latch, where the bit depends on levels alone."""
         everywhere = [self.space.mask] * len(self.table.inputs)
         forced = self._forced(everywhere)
-        if forced is None or not forced.to_1 | forced.to_0 or not self._agrees(forced, everywhere):
+        if forced is None or not self._agrees(forced, everywhere) or not self._lives(forced):
             return None
         for gate in range(len(self.table.inputs)):
             for level in (1, 0):
@@ -98,7 +98,7 @@ class _Search:
             return None
         to_1, to_0 = self.space.either(forced.to_1, clock), self.space.either(forced.to_0, clock)
         forced = _Forced(to_1, to_0)
-        if to_1 & to_0 or not self._agrees(forced, quiet):
+        if to_1 & to_0 or not self._agrees(forced, quiet) or not self._lives(forced):
             return None
         edges = self._at(clock, edge) & self._reachable_before(forced, clock)
         ones, zeros = self.table.ones[clock] & edges, self.table.zeros[clock] & edges
@@ -107,7 +107,7 @@ class _Search:
         free = ~(to_1 | to_0)
         data = function_between(self.names, ones & free, zeros & free)
         if data == self._literal(-1, 1):
-            return None  # a bit that no edge changes shows no clock
+            return None  # what no edge changes shows no clock
         return self._described("flip-flop", self._literal(clock, edge), data, forced)
 
     def _forced(self, where: Sequence[int]) -> _Forced | None:
@@ -129,6 +129,16 @@ class _Search:
             if concerned & expected_1 & ~self.table.ones[i] or concerned & ~expected_1 & ~self.table.zeros[i]:
                 return False
         return True
+
+    def _lives(self, forced: _Forced) -> bool:
+        """Return whether the bit both rises and falls from states that can occur: one that is stuck fits anything."""
+        state = self.space.columns[-1]
+        rises = falls = 0
+        for i, (ones, zeros) in enumerate(zip(self.table.ones, self.table.zeros, strict=True)):
+            before = self._reachable_before(forced, i)
+            rises |= before & ones & ~state
+            falls |= before & zeros & state
+        return rises != 0 and falls != 0
 
     def _reachable_before(self, forced: _Forced, i: int) -> int:
         """Return the places (inputs after the change of input i, state before) whose state can occur before."""

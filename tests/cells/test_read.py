@@ -53,6 +53,55 @@ def test_a_word_in_a_comment_does_not_decide(tmp_path, comment):
     assert list(read_cells(files(tmp_path, a_toml=comment + TABLE)).cells) == ["INV"]
 
 
+MODEL = "module INV (Y, A); output Y; input A; not (Y, A); endmodule\n"
+
+
+@pytest.mark.parametrize("suffix", ["v", "gz", "txt", "lib", "sv"])
+def test_cell_models_are_known_by_their_content(tmp_path, suffix):
+    """A module, a primitive or a directive at the head of a line makes a file of cell models, whatever the suffix."""
+    for head in ("", "/* library (x) of\n module cells */\n", "`timescale 1ns/1ps\n", "// [cell.X]\r\n"):
+        data = gzip.compress((head + MODEL).encode()) if suffix == "gz" else head + MODEL
+        library = read_cells(files(tmp_path, **{f"a_{suffix}": data}))
+        assert (list(library.cells), library.notes) == (["INV"], ())
+        assert truth_table(library.cells["INV"].pins["Y"].function) == 0b01
+
+
+def test_models_hold_parts_of_other_files(tmp_path):
+    """A module may stand in a file given later; what is defined twice counts as defined last, also inside others."""
+    wrapper = "`ifdef LOW\nmodule INV_1 (Y, A); output Y; input A; INV u (Y, A); endmodule\n`endif\n"
+    paths = files(tmp_path, a_v=wrapper, b_v=MODEL, c_v=MODEL.replace("not", "buf"))
+    library = read_cells(paths, {"LOW": ""})
+    assert truth_table(library.cells["INV_1"].pins["Y"].function) == 0b10
+    assert library.notes == (f"cell INV described at {paths[1]}:1 and at {paths[2]}:1: the latter counts",)
+    assert read_cells(paths[:1]).notes == (f"{paths[0]} describes no cells",)
+    alone = read_cells(paths[:1], {"LOW": ""}).cells["INV_1"]
+    assert alone.not_understood == f"its model holds INV at {paths[0]}:2, which no model file defines"
+
+
+def test_models_and_liberty_override_each_other(tmp_path):
+    """Of a model and a Liberty cell of one name the last counts, with a note; the same holds within a file."""
+    liberty, model = files(tmp_path, a_lib=LIBERTY, b_v=MODEL + MODEL.replace("not", "buf"))
+    library = read_cells([liberty, model])
+    assert library.notes == (
+        f"cell INV described at {model}:1 and at {model}:2: the latter counts",
+        f"cell INV described at {liberty}:2 and at {model}:2: the latter counts",
+    )
+    assert truth_table(library.cells["INV"].pins["Y"].function) == 0b10
+    assert truth_table(read_cells([model, liberty]).cells["INV"].pins["Y"].function) == 0b01
+
+
+def test_a_file_included_twice_is_no_second_description(tmp_path):
+    """Models that include the same base without a guard, along different ways, make no notes."""
+    (tmp_path / "sub").mkdir()
+    (tmp_path / "base.vh").write_text(MODEL)
+    text = '`include "{}"\nmodule {} (Y, A); output Y; input A; INV u (Y, A); endmodule\n'
+    (tmp_path / "sub" / "a.v").write_text(text.format("../base.vh", "A"))
+    (tmp_path / "sub" / "b.v").write_text(text.format("base.vh", "B"))
+    library = read_cells([tmp_path / "sub" / "a.v", tmp_path / "sub" / "b.v"], folders=[tmp_path])
+    assert (list(library.cells), library.notes) == (["INV", "A", "B"], ())
+    assert library.cells["INV"].place == SourcePlace(str(tmp_path / "base.vh"), 1)
+
+
 def test_places(tmp_path):
     """Every cell says its file and line."""
     (liberty, table) = files(tmp_path, a_lib=LIBERTY, b_toml="\n" + TABLE.replace("INV", "X"))
