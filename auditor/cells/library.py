@@ -1,8 +1,8 @@
 """What every cell does: the noun of this room.
 
-A cell is known only from a description (Liberty, the gate primitives of the language, a cell table), never from
-its name. Functions are postfix programs, so that one text serves every algebra: bit-parallel simulation, three
-values, decision diagrams; and no depth of parentheses can exhaust a stack.
+A cell is known only from a description (Liberty, Verilog cell models, the gate primitives of the language, a cell
+table), never from its name. Functions are postfix programs, so that one text serves every algebra: bit-parallel
+simulation, three values, decision diagrams; and no depth of parentheses can exhaust a stack.
 """
 
 from collections.abc import Mapping
