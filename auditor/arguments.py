@@ -9,7 +9,7 @@ from typing import NoReturn
 
 from auditor.errors import TroubleList, fail, near_misses
 from auditor.notation import SourcePlace
-from auditor.plan import BEYOND, LEAST_LIMIT, LONGEST_CHAIN, Options
+from auditor.plan import BEYOND, LEAST_LIMIT, LONGEST_CHAIN, MACRO, Options
 
 COMMAND_LINE = SourcePlace("command line")
 FAIL_AT = ("note", "warning", "error")
@@ -51,6 +51,7 @@ def audit_parser() -> argparse.ArgumentParser:
     add("--plan", metavar="F", help="the reviewer's plan, a TOML file")
     add("--cells", action="append", default=[], metavar="F", help="cell library or cell table; may be repeated")
     add("--top", metavar="M", help="top module")
+    _add_macros(parser)
     add(
         "--mode",
         action="append",
@@ -77,6 +78,13 @@ def audit_parser() -> argparse.ArgumentParser:
     return parser
 
 
+def _add_macros(parser: argparse.ArgumentParser) -> None:
+    """Add the options that the directives of a netlist ask for."""
+    macro, folder = "macro of the netlist and of cell models", "folder in which included files are looked for"
+    parser.add_argument("--define", action="append", default=[], metavar="NAME=VALUE", help=f"{macro}; may be repeated")
+    parser.add_argument("--include", action="append", default=[], metavar="DIR", help=f"{folder}; may be repeated")
+
+
 def read_arguments(words: Sequence[str]) -> Request:
     """Return what the words after ``auditor audit`` ask for. Raises ``InputError``."""
     troubles = TroubleList()
@@ -96,6 +104,8 @@ def read_arguments(words: Sequence[str]) -> Request:
             limits=_read_limits(given.limit, troubles),
             fail_at=given.fail_at,
             work_limit=_read_number("--work-limit", given.work_limit, 1, troubles),
+            defines=_read_defines(given.define, troubles),
+            include=tuple(map(Path, given.include)),
         ),
         plan=None if given.plan is None else Path(given.plan),
         json=given.json,
@@ -118,6 +128,7 @@ def draft_parser() -> argparse.ArgumentParser:
     add("netlists", nargs="*", metavar="NETLIST", help="Verilog file, plain or gz")
     add("--cells", action="append", default=[], metavar="F", help="cell library or cell table; may be repeated")
     add("--top", metavar="M", help="top module")
+    _add_macros(parser)
     add("--mode", action="append", default=[], metavar="NET=0|1", help="a constant that is certain; may be repeated")
     add("--work-limit", metavar="N", help="bound on the nodes of one proof")
     return parser
@@ -133,6 +144,8 @@ def read_draft_arguments(words: Sequence[str]) -> Options:
         top=given.top,
         mode=_read_mode(given.mode, troubles),
         work_limit=_read_number("--work-limit", given.work_limit, 1, troubles),
+        defines=_read_defines(given.define, troubles),
+        include=tuple(map(Path, given.include)),
     )
     if not given.netlists:
         troubles.add("no netlist is given", "name a Verilog file", COMMAND_LINE)
@@ -175,6 +188,18 @@ def _read_mode(entries: list[str], troubles: TroubleList) -> dict[str, int]:
         elif mode.setdefault(net, int(value)) != int(value):
             troubles.add(f"--mode holds {net} at 0 and at 1", "keep one of the two", COMMAND_LINE)
     return mode
+
+
+def _read_defines(entries: list[str], troubles: TroubleList) -> dict[str, str]:
+    """Return NAME=VALUE or NAME entries as a mapping; the last one of a name wins."""
+    defines: dict[str, str] = {}
+    for entry in filter(None, entries):
+        name, _, text = entry.partition("=")
+        if MACRO.fullmatch(name):
+            defines[name] = text
+        else:
+            troubles.add(f"--define {entry} names no macro", "write --define NAME=VALUE", COMMAND_LINE)
+    return defines
 
 
 def _read_limits(entries: list[str], troubles: TroubleList) -> dict[str, int]:

@@ -28,6 +28,7 @@ from auditor.risks.find import find_risks
 from auditor.risks.questions import open_questions
 from auditor.risks.verdict import verdict
 from auditor.verilog.read import read_verilog
+from auditor.verilog.statements import Reading
 
 Progress = Callable[[str], None]
 Result = TypeVar("Result")
@@ -53,10 +54,12 @@ def audit_modes(plan: Plan, progress: Progress | None = None) -> dict[str, Audit
     """Audit a plan under each of its modes; cells and netlist are read once, troubles of all modes told together."""
     tell = progress or _silent
     tell("cells")
-    library = read_cells(plan.cells)
+    library = read_cells(plan.cells, plan.defines, plan.include)
     tell("netlist")
-    netlist = read_netlist(plan, library)
-    inputs, plans = _input_files(plan), plan.by_mode()
+    reading = Reading()
+    netlist = read_netlist(plan, library, reading)
+    library = replace(library, notes=(*reading.notes, *library.notes))
+    inputs, plans = _input_files(plan, reading.included), plan.by_mode()
 
     def in_mode(name: str) -> Progress:
         return (lambda stage: tell(f"mode {name}: {stage}")) if name else tell
@@ -65,8 +68,8 @@ def audit_modes(plan: Plan, progress: Progress | None = None) -> dict[str, Audit
     return _in_every_mode(plans, lambda name: _facts(plans[name], library, cones[name], inputs, in_mode(name)))
 
 
-def read_netlist(plan: Plan, library: CellLibrary) -> Netlist:
-    """Read and flatten the netlist of a plan.
+def read_netlist(plan: Plan, library: CellLibrary, reading: Reading | None = None) -> Netlist:
+    """Read and flatten the netlist of a plan; what is included and noted on the way is entered into ``reading``.
 
     A large one is millions of new tuples, none in a circle, that are dropped once it is flat: the cyclic collector
     would walk them for nothing, so it is paused over both stages.
@@ -74,7 +77,8 @@ def read_netlist(plan: Plan, library: CellLibrary) -> Netlist:
     was_enabled = gc.isenabled()
     gc.disable()
     try:
-        return flatten(read_verilog(plan.netlists), plan.top, library.cells)
+        modules = read_verilog(plan.netlists, "both", plan.defines, plan.include, reading)
+        return flatten(modules, plan.top, library.cells)
     finally:
         if was_enabled:
             gc.enable()
@@ -145,10 +149,11 @@ def _solve(
     return replayed, find_phases(machine, plan.reference, min(max(WINDOW, asked), LARGEST_WINDOW), tell)
 
 
-def _input_files(plan: Plan) -> tuple[InputFile, ...]:
+def _input_files(plan: Plan, included: Sequence[Path]) -> tuple[InputFile, ...]:
     """Return every file the audit read, with the digest of its bytes as stored."""
     files: list[tuple[Path, str]] = [(plan.file, "plan")] if plan.file else []
-    files += [(path, "netlist") for path in plan.netlists] + [(path, "cells") for path in plan.cells]
+    files += [(path, "netlist") for path in plan.netlists] + [(path, "include") for path in included]
+    files += [(path, "cells") for path in plan.cells]
     return tuple(InputFile(str(path), role, hashlib.sha256(path.read_bytes()).hexdigest()) for path, role in files)
 
 

@@ -141,6 +141,8 @@ def draft_command(plan: Plan) -> str:
     """Return the command that drafts a plan for the same netlist."""
     words = ["auditor", "draft", *map(str, plan.netlists)]
     words += [word for path in plan.cells for word in ("--cells", str(path))]
+    words += [word for name, text in plan.defines.items() for word in ("--define", f"{name}={text}")]
+    words += [word for path in plan.include for word in ("--include", str(path))]
     return shlex.join([*words, *(["--top", plan.top] if plan.top else [])])
 
 

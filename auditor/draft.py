@@ -26,7 +26,7 @@ from auditor.plan import Plan
 
 def draft(plan: Plan) -> Draft:
     """Return what the netlists of a plan hold, under the constants of its mode. Raises ``InputError``."""
-    library = read_cells(plan.cells)
+    library = read_cells(plan.cells, plan.defines, plan.include)
     netlist = read_netlist(plan, library)
     troubles = TroubleList()
     stated = resolve_mode(netlist, plan.mode, troubles)

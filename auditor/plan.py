@@ -1,5 +1,6 @@
 """What the reviewer states: the plan, from a TOML file, from the command line, or both."""
 
+import re
 from collections.abc import Mapping
 from dataclasses import dataclass, field, replace
 from pathlib import Path
@@ -39,6 +40,8 @@ class Limits:
     depth: int | None = None
 
 
+MACRO = re.compile(r"[A-Za-z_]\w*")  # what a macro may be called
+
 # Every limit by its name in the plan and after --limit, with the least value that makes sense.
 LEAST_LIMIT = {"separation": 1, "fan_out": 1, "taps": 1, "depth": 0}
 BEYOND = 10**18  # every stated number is smaller
@@ -51,6 +54,7 @@ class Plan:
 
     ``mode``      net or port → 0 or 1        ``channels``  names, vectors or patterns; empty: all output ports
     ``modes``     name → a mode, where the plan names several; ``mode`` is then empty
+    ``defines``   macros of the netlist and of cell models → their texts; ``include`` folders of included files
     ``chain_length``  scan cells of every chain, or None where not stated
     ``guesses``   a sentence on everything in the plan that was drafted and not stated
     """
@@ -70,6 +74,8 @@ class Plan:
     work_limit: int | None = None
     file: Path | None = None
     guesses: tuple[str, ...] = ()
+    defines: Mapping[str, str] = field(default_factory=dict)
+    include: tuple[Path, ...] = ()
 
     def by_mode(self) -> dict[str, "Plan"]:
         """Return a plan of one mode for each of the modes; the name is empty where the plan names none."""
@@ -92,10 +98,12 @@ class Options:
     limits: Mapping[str, int] = field(default_factory=dict)
     fail_at: str | None = None
     work_limit: int | None = None
+    defines: Mapping[str, str] = field(default_factory=dict)
+    include: tuple[Path, ...] = ()
 
 
 def merge(plan: Plan | None, options: Options) -> Plan:
-    """Return the plan under the options: a given list replaces the plan's, mode and limits do so key by key.
+    """Return the plan under the options: a given list replaces the plan's, mode, limits, defines do so key by key.
 
     A net that the options hold is held in every mode of the plan.
     """
@@ -113,4 +121,6 @@ def merge(plan: Plan | None, options: Options) -> Plan:
         limits=replace(stated.limits, **options.limits),
         fail_at=options.fail_at or stated.fail_at,
         work_limit=stated.work_limit if options.work_limit is None else options.work_limit,
+        defines={**stated.defines, **options.defines},
+        include=options.include or stated.include,
     )

@@ -9,10 +9,10 @@ from typing import Any
 
 from auditor.errors import TroubleList, fail, near_misses
 from auditor.notation import SourcePlace
-from auditor.plan import BEYOND, LEAST_LIMIT, LONGEST_CHAIN, Limits, Patterns, Plan, Waiver
+from auditor.plan import BEYOND, LEAST_LIMIT, LONGEST_CHAIN, MACRO, Limits, Patterns, Plan, Waiver
 
 KEYS: dict[str, tuple[str, ...]] = {
-    "netlist": ("files", "top", "cells"),
+    "netlist": ("files", "top", "cells", "defines"),
     "channels": ("names", "reference"),
     "chains": ("length",),
     "patterns": ("count", "shift_cycles", "capture_cycles", "generator_in_capture", "launch"),
@@ -21,7 +21,7 @@ KEYS: dict[str, tuple[str, ...]] = {
 SECTIONS = ("netlist", "mode", "channels", "chains", "patterns", "limits", "waivers")
 WAIVER_KEYS = ("slug", "where", "reason")
 LATER_SECTIONS = ("capture", "claims", "seeds")
-LATER_KEYS = {"netlist": ("defines",), "chains": ("file", "scan_outputs")}
+LATER_KEYS = {"chains": ("file", "scan_outputs")}
 
 _HEADER = re.compile(r"""\s*\[{1,2}\s*([\w."'-]+)\s*\]{1,2}\s*(?:\#.*)?$""")
 _MODE_NAME = re.compile(r"[A-Za-z0-9_-]+")
@@ -39,6 +39,7 @@ def read_plan(path: Path) -> Plan:
         netlists=reader.paths("netlist", "files"),
         cells=reader.paths("netlist", "cells"),
         top=reader.text("netlist", "top"),
+        defines=reader.defines(),
         mode=mode,
         modes=modes,
         channels=reader.texts("channels", "names"),
@@ -168,6 +169,18 @@ class _Reader:
     def paths(self, section: str, key: str) -> tuple[Path, ...]:
         """Return a list of paths, taken relative to the plan."""
         return tuple(self.folder / name for name in self.texts(section, key))
+
+    def defines(self) -> dict[str, str]:
+        """Return the macros that [netlist] defines states: name → text."""
+        content = self._table("netlist").get("defines", {})
+        good = isinstance(content, dict) and all(
+            MACRO.fullmatch(name) and isinstance(text, str | int) and not isinstance(text, bool)
+            for name, text in content.items()
+        )
+        if good:
+            return {name: str(text) for name, text in content.items()}
+        self.wrong("netlist", "defines", "a table of macros and texts", 'write defines = { NAME = "VALUE" }')
+        return {}
 
     def number(self, section: str, key: str, least: int, most: int = BEYOND - 1) -> int | None:
         """Return a whole number from ``least`` to ``most``, or None where not stated."""

@@ -126,7 +126,7 @@ def test_parts_that_come_later_are_refused(tmp_path: Path) -> None:
     """What the plan may hold one day is never ignored in silence."""
     text = "[mode]\nscan_en = 0\n[capture]\na = 1\n[claims]\n[seeds]\n"
     text += (
-        '[netlist]\ndefines = { A = "1" }\n[chains]\nfile = "c.csv"\nscan_outputs = ["x"]\n'
+        '[netlist]\n\n[chains]\nfile = "c.csv"\nscan_outputs = ["x"]\n'
         '[patterns]\ncount = 1\nshift_cycles = 1\nlaunch = "shift"\n'
     )
     later = "comes with a later version of auditor"
@@ -134,7 +134,6 @@ def test_parts_that_come_later_are_refused(tmp_path: Path) -> None:
         f"plan.toml:3: [capture] {later}; remove it",
         f"plan.toml:5: [claims] {later}; remove it",
         f"plan.toml:6: [seeds] {later}; remove it",
-        f"plan.toml:8: defines in [netlist] {later}; remove it",
         f"plan.toml:10: file in [chains] {later}; remove it or state [chains] length",
         f"plan.toml:11: scan_outputs in [chains] {later}; remove it or state [chains] length",
         f'plan.toml:15: launch = "shift" in [patterns] {later}; remove it or write launch = "none"',
@@ -242,3 +241,13 @@ def test_an_incomplete_waiver_is_refused_in_its_own_table(tmp_path: Path) -> Non
         'plan.toml:6: where in [[waivers]] must be a list of names; write where = ["...", "..."]',
         'plan.toml:7: reason in [[waivers]] must be a text that is not empty; write reason = "..."',
     ]
+
+
+def test_macros_are_names_with_texts(tmp_path: Path) -> None:
+    """``defines`` is a table; a number counts as its digits, and anything else is refused in one sentence."""
+    (tmp_path / "plan.toml").write_text('[netlist]\nfiles = ["n.v"]\ndefines = { SCAN = "", WIDTH = 8, B = "1\'b0" }\n')
+    assert read_plan(tmp_path / "plan.toml").defines == {"SCAN": "", "WIDTH": "8", "B": "1'b0"}
+    for wrong in ("true", '["A"]', '{ "a b" = "" }', "{ A = true }", "{ A = [1] }"):
+        (tmp_path / "plan.toml").write_text(f"[netlist]\ndefines = {wrong}\n")
+        with pytest.raises(InputError, match="must be a table of macros and texts; write defines"):
+            read_plan(tmp_path / "plan.toml")
