@@ -11,7 +11,7 @@ from auditor.risks.finding import Finding
 from auditor.risks.levels import finding
 from auditor.risks.waivers import waiver_reason
 
-MOST_PAIRS = 50  # listed one by one, the closest; beyond, one finding more counts them all
+MOST_PAIRS = 1000  # listed one by one, the closest; beyond, one finding more counts them all
 
 
 class _Pair(NamedTuple):

@@ -7,7 +7,8 @@ import pytest
 from auditor.machine.machine import LinearMachine
 from auditor.notation import SourcePlace
 from auditor.plan import Limits, Waiver
-from auditor.risks.distance_rules import MOST_PAIRS, channels_in_lockstep, windows_overlap
+from auditor.risks import distance_rules
+from auditor.risks.distance_rules import channels_in_lockstep, windows_overlap
 from auditor.risks.find import find_risks
 from tests.support.evidence import NET_LINE, evidence
 from tests.support.linear_machines import fibonacci, linear_machine
@@ -106,17 +107,19 @@ def test_a_missed_limit_is_a_finding_without_shared_cells(length: int | None) ->
     assert not list(windows_overlap(evidence(machine, chain_length=length, limits=Limits(separation=2))))
 
 
-def test_a_long_list_is_cut_and_counted() -> None:
+def test_a_long_list_is_cut_and_counted(monkeypatch: pytest.MonkeyPatch) -> None:
     """Of very many pairs the closest are listed behind a finding that counts all of them."""
+    monkeypatch.setattr(distance_rules, "MOST_PAIRS", 50)
     machine = linear_machine(fibonacci((20, 17, 0)), [(1 << k, 0) for k in range(20)])
     count, *listed = windows_overlap(evidence(machine, chain_length=100))
     assert count.where == ()
     assert count.figures == {"pairs": 190, "separation": "1", "bound": "100"}
-    assert [finding.figures["separation"] for finding in listed] == ["1"] * 19 + ["2"] * 18 + ["3"] * (MOST_PAIRS - 37)
+    assert [finding.figures["separation"] for finding in listed] == ["1"] * 19 + ["2"] * 18 + ["3"] * 13
 
 
-def test_waived_pairs_do_not_hide_others_in_a_long_list() -> None:
+def test_waived_pairs_do_not_hide_others_in_a_long_list(monkeypatch: pytest.MonkeyPatch) -> None:
     """Pairs that a waiver names are listed and counted apart, and the count of the others is not waived with them."""
+    monkeypatch.setattr(distance_rules, "MOST_PAIRS", 50)
     machine = linear_machine(fibonacci((20, 17, 0)), [(1 << k, 0) for k in range(20)])
     waiver = Waiver("windows-overlap", ("c0",), "its chain holds one scan cell")
     found = find_risks(evidence(machine, chain_length=100, waivers=(waiver,)))
@@ -129,8 +132,9 @@ def test_waived_pairs_do_not_hide_others_in_a_long_list() -> None:
     assert not any("c0" in finding.where for finding in pairs if not finding.waived)
 
 
-def test_a_long_list_of_waived_pairs_is_counted_as_waived() -> None:
+def test_a_long_list_of_waived_pairs_is_counted_as_waived(monkeypatch: pytest.MonkeyPatch) -> None:
     """A waiver of everything leaves one count that is waived, so nothing fails and nothing is lost."""
+    monkeypatch.setattr(distance_rules, "MOST_PAIRS", 50)
     machine = linear_machine(fibonacci((20, 17, 0)), [(1 << k, 0) for k in range(20)])
     waiver = Waiver("windows-overlap", ("*",), "a trial")
     found = [
