@@ -69,7 +69,8 @@ def _check_wired(draft: Draft, wired: set[str]) -> None:
                 continue
             bounds = part[1:] if isinstance(part, Select) else draft.nets[net].range
             bits: set[int | None] = set(range(min(bounds), max(bounds) + 1)) if bounds else {None}
-            if constant or not bits.isdisjoint(met.setdefault(net, set())):
+            before = met.setdefault(net, set())
+            if constant or not bits.isdisjoint(before):
                 kind = draft.nets[net].kind
                 draft.trouble(f"{kind} net {net} is wired logic here", "drive the net by one gate", assign.line)
-            met[net] |= bits
+            before |= bits

@@ -1,6 +1,6 @@
 """A module while its text is read: what either lane has found so far, and what still waits for the grammar lane."""
 
-from collections.abc import Sequence
+from collections.abc import Container, Sequence
 from dataclasses import dataclass, field, replace
 from typing import Literal, NamedTuple, TypeAlias, TypeVar
 
@@ -170,10 +170,10 @@ class Draft:
         )
         self.assigns = _merged(self.assigns, [(w.assigns_before, r) for w, r in results if isinstance(r, Assign)])
 
-    def finish(self) -> Module:
-        """Return the module; instances of primitives without a name get a stable one."""
+    def finish(self, primitives: Container[str]) -> Module:
+        """Return the module; instances of gates and of the text's own primitives without a name get a stable one."""
         if not all(instance.name for instance in self.instances):
-            self._name_the_unnamed()
+            self._name_the_unnamed(primitives)
         return Module(
             name=self.name,
             place=self.place,
@@ -186,14 +186,14 @@ class Draft:
             implicit_nets=self.implicit_nets,
         )
 
-    def _name_the_unnamed(self) -> None:
+    def _name_the_unnamed(self, primitives: Container[str]) -> None:
         """Name them by gate and number in the order of the text; names that the user has taken are passed over."""
         taken = {instance.name for instance in self.instances} | self.nets.keys()
         count: dict[str, int] = {}
         for position, instance in enumerate(self.instances):
             if instance.name:
                 continue
-            if not instance.primitive:
+            if not instance.primitive and instance.cell not in primitives:
                 self.trouble(f"an instance of {instance.cell} has no name", "name it", instance.line)
             count[instance.cell] = count.get(instance.cell, 0) + 1
             name = f"{instance.cell}${count[instance.cell]}"

@@ -19,7 +19,7 @@ def modules_of(drafts: Mapping[str, Draft], primitives: Iterable[str]) -> dict[s
 
             read_waiting(draft, variants)
         check(draft)
-        modules[draft.name] = draft.finish()
+        modules[draft.name] = draft.finish(variants.primitives)
         if draft.every_port:
             everywhere.append(draft)
     for draft in everywhere:

@@ -21,7 +21,7 @@ from typing import Any, NamedTuple
 from auditor.errors import InternalError, near_misses
 from auditor.verilog.draft import EVERY_PORT, Declared, Draft, Waiting
 from auditor.verilog.items import DECLARED, direction_of, net_kind
-from auditor.verilog.plain import GATES, RefusedError, plain_name
+from auditor.verilog.plain import GATES, NAME, RefusedError, closing, plain_name
 from auditor.verilog.statements import Assign, Connection, Constant, Direction, Instance, Range
 from auditor.verilog.tree import Parameters, expression_of, integer_of, parameter_of, value_of
 from auditor.verilog.variants import Variants
@@ -34,6 +34,7 @@ _NORMALISED = re.compile(
     r"""\\\S++\s|"(?:[^"\\\n]|\\.)*+"|\^~|(\d?)\s*'\s*([sS]?[bBoOdDhH])\s*([\w?])|([(,])\s*(?=,)|(,)\s*(?=\))"""
 )
 _EMPTY = '"an empty position"'
+_HEAD = re.compile(rf"{NAME}\s*+")
 _COORDINATE = re.compile(r'line:(\d+)(?: column:\d+)?: (?:before: "(.*)"|(.*))', re.DOTALL)
 _REMEDY = "mend the text, or give it as plain structural Verilog"
 
@@ -89,6 +90,10 @@ def _give(draft: Draft, given: Sequence[Given], variants: Variants) -> None:
             draft.trouble(f"defparam names {name}, which is no instance of module {draft.name}", remedy, line)
             continue
         instance = draft.instances[place[name]]
+        if instance.cell in variants.families:
+            found = f"{name} is given parameters where it stands and by defparam"
+            draft.trouble(found, "give all where it stands", line)
+            continue
         try:
             cell = variants.name_of(instance.cell, [(one.parameter, one.value) for one in by_parameter.values()])
         except RefusedError as refused:
@@ -187,12 +192,22 @@ def _instance(node: Any, wait: Waiting, parameters: Parameters, variants: Varian
         connections = (*connections, EVERY_PORT)
     array = _range(one.array, parameters) if one.array else None
     cell, primitive = plain_name(node.module), node.module in GATES
-    if node.parameterlist and cell not in variants.primitives:  # what a primitive is given is a delay
+    if node.parameterlist and cell not in variants.drafts:
+        # What a primitive is given is a delay. A cell that is described elsewhere is another one under each text.
+        cell += "" if cell in variants.primitives else f" {_values_as_written(wait.item.text)}"
+    elif node.parameterlist:
         values = [
             (p.paramname and plain_name(p.paramname), value_of(p.argname, parameters)) for p in node.parameterlist
         ]
         cell = variants.name_of(cell, values)
     return Instance(cell, plain_name(one.name), connections, wait.item.line, primitive, array)
+
+
+def _values_as_written(text: str) -> str:
+    """Return `#(...)` of an instance."""
+    head = _HEAD.match(text)
+    start = head.end() if head else 0
+    return text[start : closing(text, text.find("(", start), 0)]
 
 
 def _is_open(value: Any) -> bool:

@@ -143,7 +143,7 @@ class Items:
     def _drive(self, draft: Draft, strength: str, line: int) -> None:
         """Note a drive that is not strong: alone on its net it reads as any other."""
         if "highz" in strength:
-            draft.trouble("a drive that is open at one value", "give it as a gate with an enable", line)
+            draft.trouble("this drive is open at one of its values", "give it as a gate with an enable", line)
         elif "pull" in strength or "weak" in strength:
             draft.note("a pull or weak drive is read as a strong one; with a second driver its net is refused", line)
 

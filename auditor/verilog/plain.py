@@ -16,8 +16,8 @@ WIRED = frozenset({"wand", "wor", "triand", "trior"})
 _OTHER_KEYWORDS = """
 always assign begin buf case casex casez cmos config deassign default defparam disable edge else end endcase
 endconfig endfunction endgenerate endmodule endprimitive endspecify endtable endtask event for force forever fork
-function generate genvar if ifnone initial inout input integer join localparam macromodule module negedge nmos output
-parameter pmos posedge primitive pulldown pullup rcmos real realtime reg release repeat rnmos rpmos rtran rtranif0
+function generate genvar if ifnone initial inout input integer join localparam logic macromodule module negedge nmos
+output parameter pmos posedge primitive pulldown pullup rcmos real realtime reg release repeat rnmos rpmos rtran rtranif0
 rtranif1 scalared signed small specify specparam strong0 strong1 supply0 supply1 table task time tran tranif0 tranif1
 tri tri0 tri1 triand trior trireg unsigned uwire vectored wait wand weak0 weak1 while wire wor
 """

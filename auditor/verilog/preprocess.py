@@ -18,7 +18,8 @@ from auditor.verilog.text import SourceText, read_text
 MOST_INCLUDES = 10_000
 DEEPEST_INCLUDE = 64
 DEEPEST_MACRO = 256
-MOST_CHARACTERS = 1 << 27  # from macros, and as many again from includes; a use of a macro counts for 32 at least
+MOST_FROM_ONE_USE = 1 << 22  # characters, with all macros in its text; each of these counts for 32 at least
+MOST_CHARACTERS = 1 << 27  # from macros, and as many again from includes
 
 _UP_TO_DIRECTIVE = re.compile(rf'(?:[^`\\"/]++|\\\S++|{STRING}|//[^\n]*+|/\*(?s:.*?)(?:\*/|\Z)|[\\"/])*+')
 _WORD = re.compile(rf"`({IDENTIFIER})?")
@@ -111,6 +112,7 @@ class _Run:
         self.frames, self.files = [frame], [frame]
         self.pieces: list[str] = []
         self.line = 1
+        self.from_one_use = 0
         self.spans = [(1, str(frame.path), 1)]
         self.net_types: list[tuple[int, str]] = []
 
@@ -169,11 +171,11 @@ class _Run:
             _HANDLERS[word](self, frame, place)
         elif word in self.macros:
             self._use(self.macros[word], frame, place)
+        elif not word:
+            self._note("found ` alone", "mend the text", place)
         elif word not in self.owner.undefined:
             self.owner.undefined.add(word)
-            remedy = (
-                near_misses(word, self.macros) or f"give --define {word or 'NAME'}=VALUE or the file that defines it"
-            )
+            remedy = near_misses(word, self.macros) or f"give --define {word}=VALUE or the file that defines it"
             self._note(f"macro `{word} is not defined", remedy, place)
 
     def _pass(self, pattern: re.Pattern[str], word: str, frame: _Frame, place: SourcePlace) -> str:
@@ -262,13 +264,15 @@ class _Run:
         except MacroError as error:
             self._note(error.found, error.remedy, place)
             return
-        self.owner.expanded += max(len(text), 32)
+        cost = max(len(text), 32)
+        self.from_one_use = cost + (self.from_one_use if frame.macro else 0)
+        self.owner.expanded += cost
         if len(self.frames) - len(self.files) >= DEEPEST_MACRO:
             again = any(open_one.macro == macro.name for open_one in self.frames)
             found_out = "is part of its own text" if again else f"stands more than {DEEPEST_MACRO} macros deep"
             self._stop(f"macro `{macro.name} {found_out}", "mend its definition", place)
-        if self.owner.expanded > MOST_CHARACTERS:
-            found_out = f"macros make more than {MOST_CHARACTERS} characters of text, at last `{macro.name}"
+        if self.from_one_use > MOST_FROM_ONE_USE or self.owner.expanded > MOST_CHARACTERS:
+            found_out = f"macros make too much text here, at last `{macro.name}"
             self._stop(found_out, "mend the definitions, or give the netlist with macros resolved", place)
         after = "\n" * frame.text.count("\n", start, frame.position)
         if text:
