@@ -1,5 +1,6 @@
 """Making the factor base of one degree: relations by the sieve, then linear algebra."""
 
+from bisect import bisect_left, bisect_right
 from collections.abc import Callable, Sequence
 from typing import TypeAlias
 
@@ -60,7 +61,8 @@ def _relations(
             relation = {k: 4 * exponent for k, exponent in divisors.of(shape.left(u, v)).exponents.items()}
             for k, exponent in divisors.of(shape.right(u, v)).exponents.items():
                 relation[k] = relation.get(k, 0) - exponent
-            relations.append({k: exponent for k, exponent in relation.items() if exponent})
+            if relation := {k: exponent for k, exponent in relation.items() if exponent}:
+                relations.append(relation)
         core = _core(relations, sizes)
         if core and len(relations) > _PLENTY * len(sizes):
             return relations, core
@@ -72,10 +74,10 @@ def _core(relations: Sequence[Relation], sizes: Sequence[int]) -> int:
 
     The smallest such set will do: the others follow from it.
     """
-    greatest = sorted(sizes[max(relation)] for relation in relations if relation)
+    greatest = sorted(max(relation) for relation in relations)
     for size in range(1, sizes[-1] + 1):
-        unknowns = sum(other <= size for other in sizes)
-        if sum(other <= size for other in greatest) > _CORE_SURPLUS * unknowns + 20:
+        unknowns = bisect_right(sizes, size)
+        if bisect_left(greatest, unknowns) > _CORE_SURPLUS * unknowns + 20:
             return unknowns
     return 0
 
