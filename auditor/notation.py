@@ -29,7 +29,7 @@ Vector: TypeAlias = int
 Matrix: TypeAlias = list[int]
 Polynomial: TypeAlias = int
 
-_DIGITS = re.compile(r"(\d+)")
+_DIGITS = re.compile(r"(\d{1,1000})")  # longer runs are cut: Python does not take a number of any length
 
 
 @dataclass(frozen=True, slots=True, order=True)

@@ -6,6 +6,7 @@ from dataclasses import dataclass
 
 from auditor.cells.library import CellLibrary
 from auditor.cone.asynchronous import Asynchronous
+from auditor.cone.buses import check_ties
 from auditor.cone.clock import ClockTree
 from auditor.cone.cone import Channel, Cone, Gate, Obstacle
 from auditor.cone.constants import TIES, check_forced, resolve_mode, spread
@@ -25,8 +26,8 @@ def extract_cone(netlist: Netlist, library: CellLibrary, mode: Mapping[str, int]
     """Return the cone of the channels under the mode (net or port name → 0 or 1).
 
     Raises ``InputError`` with everything that keeps the cone from being closed: unknown names, contradictory
-    constants, unknown cells, nets without driver or with several, loops without storage, clocks left open, two
-    clocks, no storage.
+    constants, unknown cells, nets without driver or with several, ties that a cell drives, loops without storage,
+    clocks left open, two clocks, no storage.
     """
     names = TroubleList()
     forced_values = resolve_mode(netlist, mode, names)
@@ -40,6 +41,7 @@ def extract_cone(netlist: Netlist, library: CellLibrary, mode: Mapping[str, int]
     known = {**TIES, **forced_values}
     spread(wiring, known, list(known))
     closed = _close(wiring, known, ports, [net for _, net in wanted])
+    check_ties(wiring, known, closed.walk.troubles.others)
     return _assemble(wiring, closed, wanted, tuple(forced))
 
 

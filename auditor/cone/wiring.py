@@ -45,9 +45,8 @@ class Wiring:
 
     def pins_on(self, net: int, role: int) -> Iterator[int]:
         """Yield the pins of one role on a net, in the order of the netlist."""
-        for pin in self.by_net[self.net_first[net] : self.net_first[net + 1]].tolist():
-            if self.role[pin] == role:
-                yield pin
+        pins = self.by_net[self.net_first[net] : self.net_first[net + 1]]
+        yield from pins[self.role[pins] == role].tolist()
 
     def gate_inputs_on(self, net: int) -> list[int]:
         """Return the instances that read a net and have an output which input pins decide: no plain flip-flop."""

@@ -21,6 +21,9 @@ from auditor.netlist.template import Registry, Template
 from auditor.notation import SourcePlace, natural_order
 from auditor.verilog.statements import Module
 
+MAX_CHARACTERS = 4_000_000_000
+MOST_TOLD = 20  # modules of a circle that its trouble names
+
 Column = npt.NDArray[np.int32]
 
 
@@ -103,6 +106,8 @@ def _children_first(
         for child, line in reversed(list(called[name].items())):
             if child in path:
                 circle = [*list(path)[list(path).index(child) :], child]
+                if len(circle) > MOST_TOLD:
+                    circle[MOST_TOLD // 2 : -MOST_TOLD // 2] = ["..."]
                 place = modules[name].place_of(line)
                 raise fail(f"modules instantiate each other: {' > '.join(circle)}", "break the circle", place)
             if child in expanded:
@@ -113,13 +118,21 @@ def _children_first(
 def _check_size(templates: Mapping[str, Template], order: Sequence[str], top: Module) -> None:
     """Refuse a hierarchy that would unfold into more than memory holds, before it does. Raises InputError."""
     sizes: dict[str, int] = {}
+    characters: dict[str, int] = {}  # of the names below a module, its own instance name left out
     for name in order:
         template = templates[name]
-        own = max(len(template.names), len(template.scope.names)) + 1
-        sizes[name] = own + sum(sizes[child.module] for child in template.children)
+        own, nets = template.names, template.scope.names[CONSTANT_1 + 1 :]
+        sizes[name] = max(len(own), len(nets)) + 1
+        characters[name] = sum(map(len, own)) + sum(map(len, nets))
+        for child in template.children:
+            sizes[name] += sizes[child.module]
+            characters[name] += characters[child.module] + (len(child.name) + 1) * sizes[child.module]
     if sizes[top.name] > MAX_OBJECTS:
         found = f"module {top.name} unfolds into {sizes[top.name]} nets and instances"
         raise fail(found, f"keep below {MAX_OBJECTS}, or name repeated modules as cells", top.place)
+    if characters[top.name] > MAX_CHARACTERS:
+        found = f"the names below module {top.name} have about {characters[top.name]} characters in all"
+        raise fail(found, f"keep below {MAX_CHARACTERS}: nest modules less deeply or shorten names", top.place)
 
 
 @dataclass(slots=True)

@@ -11,7 +11,7 @@ from auditor.errors import TroubleList, near_misses
 from auditor.netlist.netlist import CONSTANT_0, CONSTANT_1, OPEN
 from auditor.verilog.statements import Concatenation, Constant, Expression, Module, Range, Select
 
-MAX_OBJECTS = 50_000_000
+MAX_OBJECTS = 20_000_000
 MAX_WIDTH = 1 << 24
 
 

@@ -207,15 +207,15 @@ _SUB = "module sub(input [1:0] i, output o); C c(.A(i), .Y(o)); endmodule\n"
             "n.v:1: port b of module m has no direction; declare it input, output or inout",
             "n.v:3: c is declared as a port and is not in the header; add it to the header"]),
         (_HEAD + "wire [60000000:0] w;\nC u(.A(a));\nendmodule", [
-            "n.v:2: w has 60000001 bits; keep below 50000000 bits in a module"]),
+            "n.v:2: w has 60000001 bits; keep below 20000000 bits in a module"]),
         (_HEAD + "C u[60000000:0] (.A(a));\nendmodule", [
-            "n.v:2: u is an array of 60000001 instances; keep below 50000000"]),
+            "n.v:2: u is an array of 60000001 instances; keep below 20000000"]),
         (_HEAD + "C u(.A({1000000{{1000000{a}}}}));\nendmodule", [
             "n.v:2: an expression is 1000000000000 bits wide; keep below 16777216 bits"]),
         ("\n".join(f"module m{k}(input i); {' '.join(f'm{k + 1} u{n}(.i(i));' for n in range(9))} endmodule"
                    for k in range(9)) + "\nmodule m9(input i); C c(.A(i)); endmodule", [
-            "n.v:1: module m0 unfolds into 1743392200 nets and instances; "
-            "keep below 50000000, or name repeated modules as cells"]),
+            "n.v:1: module m0 unfolds into 871696100 nets and instances; "
+            "keep below 20000000, or name repeated modules as cells"]),
     ],
 )  # fmt: skip
 def test_bad_structure_is_one_clear_trouble(tmp_path: Path, text: str, messages: list[str]) -> None:
