@@ -23,6 +23,9 @@ from auditor.phases.find import find_phases
 from auditor.phases.table import RegisterFacts
 from auditor.plan import Plan
 
+# Diagram nodes of one gate in a proof: a register needs a few hundred, and what needs more is refused sooner.
+PROOF_NODES = 5_000
+
 
 def draft(plan: Plan) -> Draft:
     """Return what the netlists of a plan hold, under the constants of its mode. Raises ``InputError``."""
@@ -31,7 +34,7 @@ def draft(plan: Plan) -> Draft:
     troubles = TroubleList()
     stated = resolve_mode(netlist, plan.mode, troubles)
     troubles.raise_any()
-    prove = _prover(library, plan.work_limit)
+    prove = _prover(library, plan.work_limit or PROOF_NODES)
     return propose(Ground(connect(netlist, library), library, input_ports(netlist), prove, _registers), stated)
 
 
@@ -50,7 +53,7 @@ def with_draft(plan: Plan) -> Plan:
     return replace(plan, mode=mode, channels=plan.channels or found.proposal.names, guesses=told)
 
 
-def _prover(library: CellLibrary, work_limit: int | None) -> Prove:
+def _prover(library: CellLibrary, work_limit: int) -> Prove:
     def prove(netlist: Netlist, mode: Mapping[str, int], channels: Sequence[str]) -> Attempt:
         try:
             cone = extract_cone(netlist, library, mode, channels)

@@ -68,7 +68,7 @@ def _type_arcs(
     cell: Cell, instances: Column, nets: Mapping[str, Column], value: np.ndarray[tuple[int], np.dtype[np.int8]]
 ) -> Iterator[tuple[Column, Column, Column]]:
     """Yield (source, target, element) of all instances of a cell, one pattern of constant pins after another."""
-    read = sorted({name for f in _functions(cell) for name in f.inputs if name in nets})
+    read = sorted({name for f in functions_of(cell) for name in f.inputs if name in nets})
     code = np.zeros(len(instances), dtype=np.int64)
     for name in read:
         code = code * 3 + value[nets[name]] + 1
@@ -83,7 +83,8 @@ def _type_arcs(
                 yield nets[source][rows], nets[target][rows], element
 
 
-def _functions(cell: Cell) -> Iterator[Function]:
+def functions_of(cell: Cell) -> Iterator[Function]:
+    """Yield what the stored bits of a cell take and what its outputs show."""
     yield from (storage.data for storage in cell.storage)
     yield from (pin.function for pin in cell.pins.values() if pin.function is not None)
 

@@ -1,6 +1,6 @@
 """Where the streams of a register leave it: output ports and shift registers that XORs and pipelines of it feed."""
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Container, Iterable, Mapping
 from dataclasses import dataclass, field
 from typing import NamedTuple
 
@@ -46,7 +46,7 @@ class _Way:
 
     wiring: Wiring
     known: Mapping[int, int]
-    ports: frozenset[int]
+    ports: Container[int]
     inside: frozenset[int]
     reached: dict[int, int] = field(default_factory=dict)
     mixed: set[int] = field(default_factory=set)
@@ -171,7 +171,7 @@ class _Way:
 
 
 def find_exits(
-    wiring: Wiring, ports: frozenset[int], known: Mapping[int, int], inside: Iterable[int], starts: Iterable[int]
+    wiring: Wiring, ports: Container[int], known: Mapping[int, int], inside: Iterable[int], starts: Iterable[int]
 ) -> list[Exit]:
     """Return the exits of the registers whose instances are ``inside`` and whose outputs are ``starts``.
 

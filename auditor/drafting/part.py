@@ -3,7 +3,7 @@
 Storage outside the part, cells without description and whatever else drives a net across the cut become inputs.
 """
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Container, Iterable, Mapping
 from dataclasses import dataclass
 
 import numpy as np
@@ -49,7 +49,7 @@ class Part:
 
 
 def cut_out(
-    wiring: Wiring, library: CellLibrary, ports: frozenset[int], elements: Iterable[int], known: Mapping[int, int]
+    wiring: Wiring, library: CellLibrary, ports: Container[int], elements: Iterable[int], known: Mapping[int, int]
 ) -> Part | None:
     """Return the part around storage instances of the whole; None where it would be too large.
 
@@ -127,9 +127,10 @@ def _is_passed(cell: Cell | None, clocks: bool) -> bool:
     return not cell.storage or (clocks and all(storage.kind == "latch" for storage in cell.storage))
 
 
-def input_ports(netlist: Netlist) -> frozenset[int]:
-    """Return the nets of all ports of the top that are no outputs."""
-    return frozenset(net for port in netlist.ports if port.direction != "output" for net in port.nets)
+def input_ports(netlist: Netlist) -> dict[int, str]:
+    """Return the nets of all ports of the top that are no outputs, with the names of their bits."""
+    inputs = [port for port in netlist.ports if port.direction != "output"]
+    return {net: bit for port in inputs for net, bit in zip(port.nets, port.bits, strict=True)}
 
 
 def loads(wiring: Wiring, net: int) -> list[tuple[int, str]]:

@@ -3,6 +3,7 @@
 import re
 from collections import Counter
 from collections.abc import Mapping, Sequence
+from itertools import islice
 
 from auditor.cone.constants import TIES, spread
 from auditor.drafting.arcs import find_arcs
@@ -10,10 +11,12 @@ from auditor.drafting.candidate import Attempt, Candidate, Constant
 from auditor.drafting.exits import Exit, find_exits
 from auditor.drafting.loops import Loop, find_loops
 from auditor.drafting.proposal import ChannelGuess, Draft, Proposal
-from auditor.drafting.settle import LEAST_ELEMENTS, STATED, Ground, cured, settle
+from auditor.drafting.settle import LEAST_ELEMENTS, STATED, TANGLED, Ground, cured, settle
+from auditor.drafting.tangle import fallen_loops
 from auditor.machine.machine import ObservedRow
 
 MOST_CANDIDATES = 24
+MOST_TANGLES = 2
 LOGIC = 12  # arcs an element inside a loop; a register has fewer, a state machine more
 CHANNEL_CURES = 4
 _DIGITS = re.compile(r"\d+")
@@ -42,6 +45,14 @@ def _settle_all(ground: Ground, loops: Sequence[Loop], start: Sequence[Constant]
         candidate, fallen = settle(ground, elements, constants)
         candidates.append(candidate)
         waiting[:0] = fallen
+    for tangle in [c for c in candidates if c.because == TANGLED][:MOST_TANGLES]:
+        given = {constant.net: constant.value for constant in start}
+        known = {**TIES, **given}
+        spread(ground.wiring, known, list(known))
+        loose = fallen_loops(ground.wiring, ground.ports, known, frozenset(tangle.elements), LEAST_ELEMENTS)
+        for elements, net, value in islice(loose, MOST_CANDIDATES):
+            guess = ground.constant(net, value, "holds the multiplexers that tie the register to the rest of the chip")
+            candidates.append(settle(ground, elements, [*start, guess])[0])
     return sorted(candidates, key=lambda c: (c.facts is None, c.compacts, -c.size, c.elements))
 
 
@@ -66,7 +77,7 @@ def _choose(
     ground: Ground, candidates: Sequence[Candidate], exits: Sequence[Sequence[Exit]]
 ) -> tuple[Proposal | None, str]:
     """Return the proposal, or None and why none is clear."""
-    order = [k for k, found in enumerate(exits) if found]
+    order = [k for k, found in enumerate(exits) if found and not _is_wider(candidates, k)]
     order.sort(key=lambda k: (-len(exits[k]), _forced(candidates[k]), -candidates[k].size, k))
     if not order:
         return None, "no loop was proved linear whose streams reach an output port or a shift register"
@@ -82,6 +93,13 @@ def _choose(
     if proposal is None and len(together) > 1:
         proposal, because = _prove(ground, candidates, [best])
     return proposal, because
+
+
+def _is_wider(candidates: Sequence[Candidate], k: int) -> bool:
+    """Tell whether a register that is not primitive holds elements of one that is: a scan path closed through it."""
+    own, facts = set(candidates[k].elements), candidates[k].facts
+    primitive = [c for c in candidates if c.facts and c.facts.primitive and not c.compacts]
+    return not (facts and facts.primitive) and any(own.intersection(c.elements) for c in primitive)
 
 
 def _forced(candidate: Candidate) -> int:

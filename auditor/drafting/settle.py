@@ -13,31 +13,35 @@ from auditor.drafting.clocking import open_clocks, release_resets
 from auditor.drafting.justify import OWN_BIT, Constants, justify_net, sources
 from auditor.drafting.loops import find_loops
 from auditor.drafting.part import LARGEST_PART, Part, cut_out, storage_of
+from auditor.drafting.tangle import LARGEST_LOOP, is_tangled
 from auditor.notation import natural_order
 
 LEAST_ELEMENTS = 3  # smaller loops are flags and toggles
 ROUNDS = 12  # times that a loop falls into smaller ones
 MOST_CONSTANTS = 24
 CURES = 8  # nets of which cures are tried in one round
-FORCED = 2  # internal nets that may be held
+FORCED = 2  # gates whose output may be held
+INTERNAL = 4  # constants that no port decides
 
 STATED = "stated"
+TANGLED = "so many gates stand behind its next states that it was not put to the proof"
 _CURE = "--mode "
 
 
 @dataclass(frozen=True, slots=True)
 class Ground:
-    """The whole netlist and the verbs that drafting may use."""
+    """The whole netlist, its input ports (net → name), and the verbs that drafting may use."""
 
     wiring: Wiring
     library: CellLibrary
-    ports: frozenset[int]
+    ports: Mapping[int, str]
     prove: Prove
     describe: Describe
 
     def constant(self, net: int, bit: int, reason: str) -> Constant:
-        """Return a constant of a net of the whole."""
-        return Constant(net, self.wiring.netlist.net_names[net], bit, net in self.ports, reason)
+        """Return a constant of a net of the whole, by the name of its port where it has one."""
+        name = self.ports.get(net) or self.wiring.netlist.net_names[net]
+        return Constant(net, name, bit, net in self.ports, reason)
 
 
 @dataclass(slots=True)
@@ -80,10 +84,11 @@ def settle(
     aside: list[tuple[tuple[int, ...], tuple[Constant, ...]]] = []
     for _ in range(ROUNDS):
         fixed = {net: constant.value for net, constant in found.items()}
-        part = cut_out(ground.wiring, ground.library, ground.ports, elements, fixed)
-        if part is None:
+        small = len(elements) <= LARGEST_LOOP
+        part = cut_out(ground.wiring, ground.library, ground.ports, elements, fixed) if small else None
+        local = {net: fixed[whole] for net, whole in enumerate(part.nets) if whole in fixed} if part else {}
+        if part is None or is_tangled(part, local):
             break
-        local = {net: fixed[whole] for net, whole in enumerate(part.nets) if whole in fixed}
         search = _Search(part, Constants(part, local), {})
         attempt, loops = _cure(ground, search)
         for net, reason in search.reasons.items():
@@ -93,8 +98,7 @@ def settle(
             return _candidate(ground, search, attempt, tuple(found.values())), aside
         elements, *others = (tuple(part.instances[k] for k in loop) for loop in loops)
         aside += [(loop, tuple(found.values())) for loop in others]
-    because = f"more than {LARGEST_PART} instances stand behind its next states"
-    return Candidate(elements, _names(ground, elements), (), tuple(found.values()), None, (), "", because), aside
+    return Candidate(elements, _names(ground, elements), (), tuple(found.values()), None, (), "", TANGLED), aside
 
 
 def _cure(ground: Ground, search: _Search) -> tuple[Attempt, list[tuple[int, ...]]]:
@@ -107,7 +111,8 @@ def _cure(ground: Ground, search: _Search) -> tuple[Attempt, list[tuple[int, ...
     forced = 0
     while True:
         attempt = search.attempt(ground, search.constants)
-        if attempt.cone is None or attempt.machine is not None or len(search.reasons) > MOST_CONSTANTS:
+        internal = sum(net not in search.part.ports for net in search.reasons)
+        if attempt.cone is None or attempt.machine or len(search.reasons) > MOST_CONSTANTS or internal > INTERNAL:
             return attempt, [search.part.elements]
         best = _best(ground, search, attempt, forced < FORCED)
         if best is None:

@@ -70,7 +70,8 @@ def _candidate(candidate: Candidate, exits: Sequence[Exit]) -> str:
     chains = [e.chain for e in exits if not e.port]
     parts.append(f"{len(exits)} channels leave it")
     if chains:
-        parts.append(f"{len(chains)} shift registers fed, of {min(chains)} to {max(chains)} stages")
+        span = f"{min(chains)} to {max(chains)}" if min(chains) < max(chains) else f"{max(chains)}"
+        parts.append(f"{len(chains)} shift registers fed, of {span} stages")
     return "; ".join(parts)
 
 
