@@ -20,6 +20,8 @@ from auditor.plan_file import read_plan
 from auditor.risks.waivers import check_waivers
 
 if TYPE_CHECKING:
+    from rich.console import Console
+
     from auditor.report.facts import AuditFacts
 
 Result = TypeVar("Result")
@@ -30,6 +32,7 @@ STATUS = {"pass": 0, "fail": 1, "undecided": 3}
 
 HELP = """\
 usage: auditor audit [NETLIST...] [options]
+       auditor compare OLD NEW [options]
        auditor draft NETLIST... --cells F [--top M]
        auditor --version | --help
 
@@ -38,9 +41,11 @@ taps and phase, the separations, and the load of every flip-flop.
 
   auditor audit generator.v --cells library.lib --mode scan_en=0
   auditor audit --plan plan.toml --json report.json
+  auditor compare old.v new.v --cells library.lib
   auditor draft generator.v --cells library.lib
 
-auditor draft writes a starter plan out of the netlist. auditor audit --help lists the options.
+auditor compare tells whether two revisions do the same, and which gates did it if not. auditor draft writes a
+starter plan out of the netlist. auditor audit --help lists the options.
 """
 
 
@@ -71,6 +76,8 @@ def _command(words: Sequence[str]) -> int:
     command = words[0] if words else ""
     if command == "audit":
         return _audit(read_arguments(words[1:]))
+    if command == "compare":
+        return _compare(words[1:])
     if command == "draft":
         return _draft(read_draft_arguments(words[1:]))
     if command == "--version":
@@ -80,7 +87,7 @@ def _command(words: Sequence[str]) -> int:
         print(HELP, end="")
         return 0
     remedy = (
-        near_misses(command, ["audit", "draft", "--version", "--help"])
+        near_misses(command, ["audit", "compare", "draft", "--version", "--help"])
         or "write auditor audit NETLIST..., or see --help"
     )
     raise fail(f"{command} is no command of auditor" if command else "no command is given", remedy, COMMAND_LINE)
@@ -101,24 +108,58 @@ def _audit(request: Request) -> int:
     from auditor.report.json_report import json_text  # noqa: PLC0415
     from auditor.report.progress import stages  # noqa: PLC0415
     from auditor.report.terminal import print_audits  # noqa: PLC0415
-    from auditor.report.write import write_whole  # noqa: PLC0415
 
     with stages(Console(stderr=True), not request.quiet and sys.stderr.isatty()) as progress:
         audits = _or_draft(plan, lambda: audit_modes(plan, progress=progress))
         text = json_text(audits) if request.json else ""
+    _put(request.json, text, request.quiet, lambda console: print_audits(audits, console))
+    if not request.quiet and any(_left_open(facts) for facts in audits.values()):
+        _say(f"The mode leaves the register open: {draft_command(plan)} proposes constants.\n")
+    return STATUS[worst(audits)]
+
+
+def _compare(words: Sequence[str]) -> int:
+    """Compare two revisions, write the comparison, then show it; return the exit status."""
+    from auditor.compare_arguments import HELP as COMPARE_HELP  # noqa: PLC0415 - of this command alone
+    from auditor.compare_arguments import read_compare_arguments  # noqa: PLC0415
+
+    if {"--help", "-h"} & set(words):
+        print(COMPARE_HELP, end="")
+        return 0
+    request = read_compare_arguments(words)
+    plans = [merge(read_plan(side.plan) if side.plan else None, side.options) for side in (request.old, request.new)]
+    for plan in plans:
+        _check(plan, request.json)
+    from rich.console import Console  # noqa: PLC0415 - an error above is told without loading it
+
+    from auditor.compare import compare_plans  # noqa: PLC0415
+    from auditor.report.comparison_json import comparison_text  # noqa: PLC0415
+    from auditor.report.comparison_terminal import print_comparisons  # noqa: PLC0415
+    from auditor.report.progress import stages  # noqa: PLC0415
+
+    with stages(Console(stderr=True), not request.quiet and sys.stderr.isatty()) as progress:
+        found = compare_plans(plans[0], plans[1], progress)
+        text = comparison_text(found) if request.json else ""
+    _put(request.json, text, request.quiet, lambda console: print_comparisons(found, console))
+    return {"same": 0, "differs": 1, "undecided": 3}[found.outcome]
+
+
+def _put(json: str | None, text: str, quiet: bool, show: Callable[["Console"], None]) -> None:
+    """Write the JSON text where it is to go, then the screen where it is wanted."""
+    from rich.console import Console  # noqa: PLC0415 - an error is told without loading it
+
+    from auditor.report.write import write_whole  # noqa: PLC0415
+
     with _closed_pipe_allowed():
-        if request.json and request.json != "-":
-            write_whole(Path(request.json), text)
-        elif request.json:
+        if json and json != "-":
+            write_whole(Path(json), text)
+        elif json:
             sys.stdout.write(text)
             sys.stdout.flush()
-        if not request.quiet:
-            screen = sys.stderr if request.json == "-" else sys.stdout
-            print_audits(audits, Console(file=screen, highlight=False))
+        if not quiet:
+            screen = sys.stderr if json == "-" else sys.stdout
+            show(Console(file=screen, highlight=False))
             screen.flush()
-            if any(_left_open(facts) for facts in audits.values()):
-                _say(f"The mode leaves the register open: {draft_command(plan)} proposes constants.\n")
-    return STATUS[worst(audits)]
 
 
 def _or_draft(plan: Plan, carry_out: Callable[[], Result]) -> Result:

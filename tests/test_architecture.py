@@ -9,7 +9,7 @@ import pytest
 PACKAGE = Path(__file__).parents[1] / "auditor"
 
 # The route. A stage may import from stages before it, and from them only nouns.
-ROUTE = ("verilog", "netlist", "cells", "cone", "machine", "replay", "phases", "drafting", "risks", "report")
+ROUTE = ("verilog", "netlist", "cells", "cone", "machine", "replay", "phases", "drafting", "risks", "revisions", "report")
 
 # What a stage shows to the ones after it: its data classes, and pure questions asked of them.
 NOUNS = {
@@ -18,9 +18,10 @@ NOUNS = {
     "cells": {"library", "function", "primitives", "cell_table"},
     "cone": {"cone", "constants", "fold", "wiring"},
     "machine": {"machine"},
-    "phases": {"table", "separations", "overlap"},
+    "phases": {"table", "separations", "overlap", "streams", "leads"},
     "drafting": {"candidate", "proposal"},
     "risks": {"finding"},
+    "revisions": {"comparison"},
     "report": {"facts"},
 }
 EVERYWHERE = {"notation", "errors", "gf2", "plan", ""}

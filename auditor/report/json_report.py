@@ -28,7 +28,7 @@ Json: TypeAlias = dict[str, Any]
 
 def json_text(audits: Audits) -> str:
     """Return the report as text: ASCII, laid out so that a change of one fact is a change of few lines."""
-    return _layout(as_json(audits), "") + "\n"
+    return layout(as_json(audits), "") + "\n"
 
 
 def as_json(audits: Audits) -> Json:
@@ -88,7 +88,7 @@ def _found(facts: AuditFacts) -> Json:
         "channels": [_channel(view, facts) for view in channel_views(facts)],
         "cut_nets": [{**_channel(view, facts), "channel": view.row.cut_from} for view in cut_views(facts) if view.row],
         "flip_flops": [_flip_flop(load, facts) for load in facts.cone.loads],
-        "findings": [_finding(finding) for finding in facts.findings],
+        "findings": [finding_json(finding) for finding in facts.findings],
         "assumed": list(facts.assumed),
         "undecided": list(facts.undecided),
     }
@@ -256,7 +256,8 @@ def _rounded(figure: float | None) -> float | None:
     return None if figure is None else round(float(figure), 3)
 
 
-def _finding(finding: Finding) -> Json:
+def finding_json(finding: Finding) -> Json:
+    """Return a finding."""
     place = finding.place
     return {
         "slug": finding.slug,
@@ -269,7 +270,7 @@ def _finding(finding: Finding) -> Json:
     }
 
 
-def _layout(value: object, margin: str) -> str:
+def layout(value: object, margin: str) -> str:
     """Return JSON text: on one line what is short and what is flat, else an entry a line."""
     whole = json.dumps(value, allow_nan=False)
     if not isinstance(value, dict | list) or len(margin) + len(whole) <= _SHORT_LINE:
@@ -279,5 +280,5 @@ def _layout(value: object, margin: str) -> str:
         return whole
     keys = [json.dumps(key) + ": " for key in value] if isinstance(value, dict) else [""] * len(value)
     inner = margin + "  "
-    lines = ",\n".join(inner + key + _layout(entry, inner) for key, entry in zip(keys, entries, strict=True))
+    lines = ",\n".join(inner + key + layout(entry, inner) for key, entry in zip(keys, entries, strict=True))
     return f"{whole[0]}\n{lines}\n{margin}{whole[-1]}"

@@ -1,0 +1,90 @@
+"""Which channels of two machines agree under one state map: as many as can be found together."""
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+
+from auditor.notation import Matrix, Vector
+from auditor.revisions.relations import Relations
+from auditor.revisions.steady import Steady
+
+RowPair = tuple[Vector, Vector]
+_SEEDS = 8
+
+
+@dataclass(frozen=True, slots=True)
+class Alignment:
+    """A state map and the pairs that agree under it: place among the pairs → whether the new one is inverted."""
+
+    relations: Relations
+    inverted: Mapping[int, bool]
+
+    @property
+    def plain(self) -> int:
+        """The number of pairs that agree without inversion."""
+        return sum(not inverted for inverted in self.inverted.values())
+
+
+def align(old_step: Matrix, new_step: Matrix, pairs: Sequence[RowPair]) -> Alignment:
+    """Return the largest set of pairs found that agree under one map; it is complete where all pairs can agree.
+
+    Each pair that disagrees with all maps so far is a seed of another one, until more than half of the pairs agree.
+    """
+    best = Alignment(Relations(old_step, new_step), {})
+    tried: set[int] = set()
+    for _ in range(_SEEDS):
+        fresh = [place for place, (old, new) in enumerate(pairs) if place not in tried and old > 1 and new > 1]
+        order = [*fresh[:1], *(place for place in range(len(pairs)) if place not in fresh[:1])]
+        found = _grow(old_step, new_step, pairs, order)
+        if (len(found.inverted), found.plain) > (len(best.inverted), best.plain):
+            best = found
+        tried |= set(found.inverted) | set(fresh[:1])
+        if 2 * len(best.inverted) > len(pairs) or len(fresh) <= 1:
+            break
+    return best
+
+
+def _grow(old_step: Matrix, new_step: Matrix, pairs: Sequence[RowPair], order: Sequence[int]) -> Alignment:
+    relations, inverted = Relations(old_step, new_step), dict[int, bool]()
+    for place in order:
+        old, new = pairs[place]
+        if relations.relate(old, new):
+            inverted[place] = False
+        elif relations.relate(old, new ^ 1):
+            inverted[place] = True
+    return Alignment(relations, inverted)
+
+
+def complete(old_step: Matrix, new_step: Matrix, pairs: Sequence[RowPair]) -> Alignment | None:
+    """Return an alignment of all pairs in the order given, None as soon as one does not agree."""
+    relations, inverted = Relations(old_step, new_step), dict[int, bool]()
+    for place, (old, new) in enumerate(pairs):
+        if relations.relate(old, new):
+            inverted[place] = False
+        elif relations.relate(old, new ^ 1):
+            inverted[place] = True
+        else:
+            return None
+    return Alignment(relations, inverted)
+
+
+def agreeing(relations: Relations, pairs: Sequence[RowPair]) -> Alignment:
+    """Return which pairs agree under relations already made."""
+    inverted = {}
+    for place, (old, new) in enumerate(pairs):
+        if relations.holds(old, new):
+            inverted[place] = False
+        elif relations.holds(old, new ^ 1):
+            inverted[place] = True
+    return Alignment(relations, inverted)
+
+
+def align_registers(old: Steady, new: Steady, names: Sequence[tuple[int, int]], least: int) -> Relations | None:
+    """Return the map that elements of one name in both registers make, complements allowed.
+
+    None where fewer than ``least`` are seen in both machines, or where they make no map: the names then say nothing.
+    """
+    seen = [(old.elements[i], new.elements[j]) for i, j in names if i in old.elements and j in new.elements]
+    if len(seen) < least:
+        return None
+    found = complete(old.step, new.step, seen)
+    return found.relations if found and found.relations.dimension == old.width == new.width else None
