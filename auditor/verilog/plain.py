@@ -2,6 +2,7 @@
 
 import re
 from collections.abc import Iterator
+from functools import partial
 from typing import NamedTuple
 
 from auditor.verilog.statements import Concatenation, Constant, Expression, Select
@@ -17,9 +18,9 @@ _OTHER_KEYWORDS = """
 always assign begin buf case casex casez cmos config deassign default defparam disable edge else end endcase
 endconfig endfunction endgenerate endmodule endprimitive endspecify endtable endtask event for force forever fork
 function generate genvar if ifnone initial inout input integer join localparam logic macromodule module negedge nmos
-output parameter pmos posedge primitive pulldown pullup rcmos real realtime reg release repeat rnmos rpmos rtran rtranif0
-rtranif1 scalared signed small specify specparam strong0 strong1 supply0 supply1 table task time tran tranif0 tranif1
-tri tri0 tri1 triand trior trireg unsigned uwire vectored wait wand weak0 weak1 while wire wor
+output parameter pmos posedge primitive pulldown pullup rcmos real realtime reg release repeat rnmos rpmos rtran
+rtranif0 rtranif1 scalared signed small specify specparam strong0 strong1 supply0 supply1 table task time tran tranif0
+tranif1 tri tri0 tri1 triand trior trireg unsigned uwire vectored wait wand weak0 weak1 while wire wor
 """
 RESERVED = GATES | frozenset(_OTHER_KEYWORDS.split())
 
@@ -34,6 +35,10 @@ class RefusedError(Exception):
     def __init__(self, found: str, remedy: str) -> None:
         super().__init__(found)
         self.found, self.remedy = found, remedy
+
+
+# The constructor of a named tuple without the call of Python code that its own one makes.
+_bit = partial(tuple.__new__, Select)
 
 
 class NotPlainError(Exception):
@@ -113,6 +118,18 @@ class PlainNames(dict[str, str]):
         return name
 
 
+class PlainPins(dict[str, str]):
+    """What stands before the bracket of a connection, as ``, .A``, → the pin, computed once each."""
+
+    def __init__(self, names: PlainNames) -> None:
+        super().__init__()
+        self.names = names
+
+    def __missing__(self, text: str) -> str:
+        name = self[text] = self.names[text.partition(".")[2].strip()]
+        return name
+
+
 class PlainValues(dict[str, Expression | None]):
     """Text of a plain value → expression, None where empty, computed once each; else raises NotPlainError.
 
@@ -124,12 +141,25 @@ class PlainValues(dict[str, Expression | None]):
     _part = rf"{SPACE}(?:({NAME}){SPACE}(?:{_select})?|({_number})){SPACE}"
     _one = re.compile(_part)
 
+    def __init__(self) -> None:
+        super().__init__()
+        self.vectors: dict[str, str] = {}
+
     def __missing__(self, text: str) -> Expression | None:
         value: Expression | None
+        if text[-1:] == "]":
+            head, _, rest = text.partition("[")
+            vector = self.vectors.get(head)
+            if vector is not None and rest[:-1].isdecimal() and len(rest) < 10:
+                index = int(rest[:-1])
+                value = self[text] = _bit((vector, index, index))
+                return value
         if text.isidentifier() and text.isascii() and text not in RESERVED:
             value = text
         elif match := self._one.fullmatch(text):
             value = self._value(*match.groups())
+            if isinstance(value, Select) and text.startswith(f"{value.net}["):
+                self.vectors[value.net] = value.net
         elif not text.strip():
             value = None
         else:

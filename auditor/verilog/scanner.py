@@ -22,6 +22,7 @@ from auditor.verilog.plain import (
     DepthError,
     NotPlainError,
     PlainNames,
+    PlainPins,
     PlainValues,
     plain_name,
 )
@@ -32,6 +33,10 @@ S = SPACE
 _POSITION = r"(?>[^(),{}\\;.]++|\\\S++\s)++"
 _POSITIONS = re.compile(_POSITION)
 _INSTANCE = re.compile(rf"{S}({NAME}){S}({NAME}|){S}\((?:({NAMED_BODY})|({_POSITION}(?:,{_POSITION})*+))\){S};")
+# Without brackets in names, so that a connection can be cut at its own.
+_BARE = r"[A-Za-z_][\w$]*+"
+_TIE = rf"\.{_BARE}{S}\([^()\\;]*+(?:\\[^\s();]++\s[^()\\;]*+)*+\)"
+_COMMON = re.compile(rf"{S}({_BARE})\s++({_BARE}|\\\S++\s){S}\(({S}{_TIE}(?:{S},{S}{_TIE})*+){S}\){S};")
 _WORD = re.compile(rf"{S}(?:([A-Za-z_][\w$]*+)|(\\\S++\s)|(.))")
 _STATEMENT = re.compile(r'(?>[^;\\"]++|\\\S++\s|"(?:[^"\\\n]|\\.)*+")*+;')
 _MODULE_WORD = re.compile(r"\\\S++|\b(endmodule|module|macromodule)\b")
@@ -44,7 +49,7 @@ _NAME_LIST = re.compile(
     rf"{S}(?:(input|output|inout)\b{S}(?:(wire|tri|logic)\b{S})?|(wire|tri|logic|supply0|supply1)\b{S})(?:{BOUNDS}{S})?"
     rf"({NAME}{S}(?:,{S}{NAME}{S})*+);"
 )
-_BARE_NAME = re.compile(r"[A-Za-z_][\w$]*+|\\\S++")
+_BARE_NAME = re.compile(rf"{_BARE}|\\\S++")
 
 
 class Scanned(NamedTuple):
@@ -70,6 +75,7 @@ class _Scanner:
         self.position, self.counted, self.line = 0, 0, 1
         self.primitives: list[str] = []
         self.names, self.values = PlainNames(), PlainValues()
+        self.pins = PlainPins(self.names)
         self.items = Items(self.names, self.values)
         self.drafts: list[Draft] = []
         self.draft: Draft | None = None
@@ -96,29 +102,59 @@ class _Scanner:
         return Scanned(self.drafts, self.primitives)
 
     def _plain_instances(self, draft: Draft) -> None:
-        """Read plain instances as long as they follow each other: the loop that a large netlist spends its time in."""
-        text, names, values = self.text, self.names, self.values
+        """Read plain instances as long as they follow each other."""
+        while True:
+            self._common_instances(draft)
+            if not self._plain_instance(draft):
+                return
+
+    def _common_instances(self, draft: Draft) -> None:
+        """Read instances of the most common form: the loop that a large netlist spends its time in."""
+        text, names = self.text, self.names
+        pin, value = self.pins.__getitem__, self.values.__getitem__
         position, counted, line = self.position, self.counted, self.line
-        match_instance, find_pins, append = _INSTANCE.match, PINS.findall, draft.instances.append
+        match_instance, count, append = _COMMON.match, text.count, draft.instances.append
         while match := match_instance(text, position):
-            cell, name, named, by_position = match.groups()
-            primitive = cell in GATES
-            if (cell in RESERVED and not (primitive and by_position)) or name in RESERVED:
+            cell, name, body = match.groups()
+            if name in RESERVED:
                 break
-            start = match.start(1)
-            line += text.count("\n", counted, start)
-            counted = start
+            # No bracket stands in a pin or a value: between them stand in turn what names a pin and a value.
+            parts = body.replace(")", "(").split("(")
             try:
-                if named:
-                    connections = tuple([connect((names[pin], values[value])) for pin, value in find_pins(named)])
-                else:
-                    connections = tuple([connect((None, values[value])) for value in _POSITIONS.findall(by_position)])
+                connections = tuple(map(connect, zip(map(pin, parts[:-1:2]), map(value, parts[1::2]), strict=True)))
+                cell = names[cell]
             except NotPlainError:
                 break
-            own = plain_name(name) if name[:1] == "\\" else name
-            append(instantiate((cell if primitive else names[cell], own, connections, line, primitive, None)))
+            start = match.start(1)
+            line += count("\n", counted, start)
+            counted = start
+            own = plain_name(name) if name[0] == "\\" else name
+            append(instantiate((cell, own, connections, line, False, None)))
             position = match.end()
         self.position, self.counted, self.line = position, counted, line
+
+    def _plain_instance(self, draft: Draft) -> bool:
+        """Read one plain instance of any form, if one is here."""
+        match = _INSTANCE.match(self.text, self.position)
+        if not match:
+            return False
+        cell, name, named, by_position = match.groups()
+        primitive = cell in GATES
+        if (cell in RESERVED and not (primitive and by_position)) or name in RESERVED:
+            return False
+        names, values = self.names, self.values
+        try:
+            if named:
+                connections = tuple([connect((names[pin], values[value])) for pin, value in PINS.findall(named)])
+            else:
+                connections = tuple([connect((None, values[value])) for value in _POSITIONS.findall(by_position)])
+        except NotPlainError:
+            return False
+        line = self._line_at(match.start(1))
+        cell = cell if primitive else names[cell]
+        draft.instances.append(instantiate((cell, plain_name(name), connections, line, primitive, None)))
+        self.position = match.end()
+        return True
 
     def _statement(self, match: re.Match[str], line: int) -> None:
         """Read the statement whose first word was matched."""
