@@ -60,7 +60,7 @@ class Draft:
     The module begins on line ``start`` of the whole text, whose lines ``spans`` places; its own lines are less by
     ``shift``, so that they are those of the file in which it begins. ``plain`` turns False with the first parameter:
     any name may then be a number.
-    ``given`` are values for its parameters.
+    ``given`` are values for its parameters; ``every_port`` says whether an instance connects `.*`.
     """
 
     name: str
@@ -72,6 +72,7 @@ class Draft:
     plain: bool = True
     implicit_nets: bool = True
     last_line: int = 0
+    every_port: bool = False
     given: dict[str, Constant] = field(default_factory=dict)
     signed: set[str] = field(default_factory=set)
     ports: list[HeaderPort] = field(default_factory=list)
@@ -98,11 +99,6 @@ class Draft:
     def trouble(self, found: str, remedy: str, line: int) -> None:
         """Note a trouble on a line of this module."""
         self.troubles.add(found, remedy, self.place_of(line))
-
-    @property
-    def every_port(self) -> bool:
-        """Return whether an instance here connects `.*`."""
-        return any(connection is EVERY_PORT for instance in self.instances for connection in instance.connections)
 
     def note(self, fact: str, line: int) -> None:
         """Note what is no trouble and should be known."""

@@ -208,6 +208,7 @@ class Items:
             # The first instance stands where its statement begins, a further one where its name stands.
             above = item.line - line if number == 0 else 0
             text, every = _explicit(item.text)
+            draft.every_port |= bool(every)
             whole = Item(f"{head[1]}{values}" + "\n" * above + " " + text, item.line - above)
             instance = self._plain_item(whole) if draft.plain else None
             if instance is None:

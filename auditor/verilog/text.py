@@ -88,9 +88,9 @@ def _read_bytes(path: Path, place: SourcePlace, troubles: TroubleList) -> bytes 
 
 def blank(source: SourceText, troubles: TroubleList) -> SourceText | None:
     """Return a text without comments and attributes, or None if a trouble was noted."""
-    tokens = [pattern for sign, pattern in _TOKENS if sign in source.text]
     if not any(sign in source.text for sign in ("//", "/*", "(*")):
         return source
+    tokens = [pattern for sign, pattern in _TOKENS if sign in source.text]
     noted = len(troubles.troubles)
     blanked = re.sub("|".join(tokens), _replacement(source, troubles), source.text)
     return source._replace(text=blanked) if len(troubles.troubles) == noted else None
