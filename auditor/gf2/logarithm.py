@@ -116,13 +116,16 @@ def _large_part(
 ) -> tuple[list[int], int]:
     """Return logarithms by index calculus and their modulus: 1 if it is not needed, not possible or not allowed."""
     nothing = [0] * len(members), 1
-    if ring.degree > LARGEST_DEGREE or not len(members) or max(parts, default=1).bit_length() <= _SEARCHED_BITS:
+    if ring.degree > LARGEST_DEGREE or max(parts, default=1).bit_length() <= _SEARCHED_BITS:
         return nothing
     # The table holds for all polynomials of the degree, so it is made modulo all large primes, whatever this order.
     whole = prod(part for part in _prime_powers((1 << ring.degree) - 1, ring.degree) if part.bit_length() > _GROUP_BITS)
     modulus = gcd(whole, prod(parts))
+    if not len(members):
+        return [], modulus
     try:
-        return field_logarithms(ring.unpack(members), ring.f, tables(ring.degree, whole, work), modulus, work), modulus
+        base = tables(ring.degree, whole, work)
+        return field_logarithms(ring.unpack(members), ring.f, base, modulus, work), modulus
     except OutOfWork:
         return nothing
 

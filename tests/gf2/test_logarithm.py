@@ -163,11 +163,14 @@ def test_a_product_adds_logarithms():
 
 
 def test_a_register_of_127_stages():
-    """Known exponents come back modulo 2^127 - 1, with a dense polynomial."""
-    f, exponents = _primitive(127), [0, 1, 2**126, *(pow(3, 90 + k) >> 20 & (1 << 126) - 1 for k in range(5))]
-    result = logarithms([power_modulo(2, s, f) for s in exponents], f)
+    """Modulo 2^127 - 1, with x^127 + x + 1: exponents come back, of small powers and others, and other short values."""
+    f = from_exponents((127, 1, 0))
+    exponents = [0, 1, 2, 63, 64, 126, 127, 2**126, *(pow(3, 90 + k) >> 20 & (1 << 126) - 1 for k in range(5))]
+    short = [5, 7, (1 << 64) - 1, (1 << 127) - 1, 1 << 64 | 1]
+    result = logarithms([*(power_modulo(2, s, f) for s in exponents), *short], f)
     assert result.complete
-    assert result.values == tuple(exponents)
+    assert result.values[: len(exponents)] == tuple(exponents)
+    assert [power_modulo(2, found, f) for found in result.values[len(exponents) :]] == short
 
 
 def test_index_calculus_where_x_is_no_generator():
@@ -190,7 +193,8 @@ def test_no_table_is_made_where_none_is_needed():
         return make_factor_base(n, modulus, work)
 
     assert logarithms(_values(62, 3), _primitive(62), tables=table).complete
-    assert logarithms([0], _primitive(49), tables=table).values == (None,)
+    nothing = logarithms([0], _primitive(49), tables=table)
+    assert (nothing.values, nothing.complete) == ((None,), True)
     assert not made
     assert logarithms([3], _primitive(49), tables=table).complete
     assert made == [49]

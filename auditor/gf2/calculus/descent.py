@@ -19,6 +19,7 @@ _BEYOND = 7  # an element is split into factors of the base degree and this much
 _ATTEMPTS = 40  # multiples of an element that are split before the search is given up
 _SPLIT_SIZES = (4, 6)  # coefficients of the multipliers of fractions
 _RELATION_SIZES = (5, 6)  # and of those of relations
+_MARGIN = 64  # coefficients that a polynomial to be factored may have beyond the degree of the field
 
 Product = dict[Polynomial, int]
 
@@ -29,7 +30,8 @@ class Descent:
     def __init__(self, base: FactorBase, work: Work) -> None:
         self._base, self._work = base, work
         self._primes = irreducibles(base.degree).tolist()
-        self._divisors = Divisors(base.degree, 128)
+        # A fraction of a short element may have a part as long as a multiple of the field polynomial.
+        self._divisors = Divisors(base.degree, degree(base.field) + _MARGIN)
         self._shape = Shape(base.field)
         self._quarter = pow(4, -1, base.modulus)
         self._known = {p: log for p, log in zip(self._primes, base.logs, strict=True) if log is not None}
