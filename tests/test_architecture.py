@@ -9,16 +9,30 @@ import pytest
 PACKAGE = Path(__file__).parents[1] / "auditor"
 
 # The route. A stage may import from stages before it, and from them only nouns.
-ROUTE = ("verilog", "netlist", "cells", "cone", "machine", "replay", "phases", "drafting", "risks", "revisions", "report")
+ROUTE = (
+    "verilog",
+    "netlist",
+    "cells",
+    "cone",
+    "machine",
+    "replay",
+    "phases",
+    "array",
+    "drafting",
+    "risks",
+    "revisions",
+    "report",
+)
 
 # What a stage shows to the ones after it: its data classes, and pure questions asked of them.
 NOUNS = {
     "verilog": {"statements"},
     "netlist": {"netlist"},
-    "cells": {"library", "function", "primitives", "cell_table"},
+    "cells": {"library", "function", "primitives", "cell_table", "words"},
     "cone": {"cone", "constants", "fold", "wiring"},
-    "machine": {"machine"},
+    "machine": {"machine", "diagrams"},
     "phases": {"table", "separations", "overlap", "streams", "leads"},
+    "array": {"scan_array", "circuit"},
     "drafting": {"candidate", "proposal"},
     "risks": {"finding"},
     "revisions": {"comparison"},
@@ -32,7 +46,7 @@ LIBRARIES = {
     "networkx": ("cone/",),
     "dd": ("machine/",),
     "rich": ("report/", "cli.py"),
-    "numpy": ("netlist/", "cone/", "replay/", "gf2/", "phases/", "drafting/", "verilog/"),
+    "numpy": ("netlist/", "cells/", "cone/", "replay/", "gf2/", "phases/", "array/", "drafting/", "verilog/"),
 }
 
 SOURCES = sorted(path.relative_to(PACKAGE).as_posix() for path in PACKAGE.rglob("*.py"))

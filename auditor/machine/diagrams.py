@@ -7,7 +7,7 @@ forms of the state; where the forms under a function depend on each other, one i
 others, so that the remaining ones are free and the answer is exact both ways.
 """
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field
 
 from dd.bdd import BDD  # the plain layer: its ints need no reference counting
@@ -129,6 +129,20 @@ class Diagrams:
     def with_constant(self, diagram: int, variable: int, bit: int) -> int:
         """Return the cofactor of a diagram under variable = bit."""
         return int(self.manager.let({str(variable): bool(bit)}, diagram))
+
+    def restricted(self, diagram: int, bits: Mapping[int, int]) -> int:
+        """Return the cofactor of a diagram under variable = bit for several variables."""
+        return int(self.manager.let({str(variable): bool(bit) for variable, bit in bits.items()}, diagram))
+
+    def constant_of(self, diagram: int) -> int | None:
+        """Return the bit of a diagram that is constant, else None."""
+        return int(diagram > 0) if abs(diagram) == 1 else None
+
+    def branches(self, diagram: int) -> tuple[int, int, int]:
+        """Return the first variable of a diagram that is no constant, and the cofactors for 0 and for 1."""
+        level, low, high = _inner(self.manager.succ(abs(diagram)))
+        sign = 1 if diagram > 0 else -1
+        return int(self.manager.var_at_level(level)), sign * low, sign * high
 
     def _dependent(self, variables: Iterable[int]) -> dict[int, list[int]]:
         """Return each variable whose form is the sum of forms of earlier variables, with those variables."""

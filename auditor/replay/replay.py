@@ -8,11 +8,12 @@ import numpy as np
 import numpy.typing as npt
 
 from auditor.cells.library import CellLibrary
+from auditor.cells.words import ALL_ONES, Words
 from auditor.cone.cone import Cone
 from auditor.errors import InternalError
 from auditor.gf2.matrix import ones
 from auditor.machine.machine import AffineRow, LinearMachine
-from auditor.replay.simulator import ALL_ONES, Simulator, Words
+from auditor.replay.simulator import Simulator
 
 WORDS = 2  # 128 lanes: reset, all zeros, all ones and 125 random states
 CYCLES = 256

@@ -5,9 +5,10 @@ from collections.abc import Sequence
 import numpy as np
 
 from auditor.cells.library import CellLibrary
+from auditor.cells.words import ALL_ONES
 from auditor.cone.cone import Cone
 from auditor.notation import Vector
-from auditor.replay.simulator import ALL_ONES, Simulator
+from auditor.replay.simulator import Simulator
 
 SEED = 0x0B5
 

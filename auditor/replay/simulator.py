@@ -13,53 +13,10 @@ import numpy.typing as npt
 
 from auditor.cells.library import Cell, CellLibrary, Function, Storage
 from auditor.cells.primitives import find_cell
+from auditor.cells.words import ALL_ONES, Batch, Words, in_batches
 from auditor.cone.cone import ClockLatch, Cone, Gate, StorageElement
 from auditor.errors import InternalError
 from auditor.netlist.netlist import OPEN
-
-Words = npt.NDArray[np.uint64]
-ALL_ONES = np.uint64(0xFFFF_FFFF_FFFF_FFFF)
-
-
-class WordAlgebra:
-    """Functions evaluated on words."""
-
-    def constant(self, bit: int) -> Words:
-        """Return 0 or 1 in every lane."""
-        return np.array(ALL_ONES if bit else 0, dtype=np.uint64)
-
-    def invert(self, a: Words) -> Words:
-        """Return NOT a."""
-        return np.bitwise_not(a)
-
-    def conjoin(self, a: Words, b: Words) -> Words:
-        """Return a AND b."""
-        return np.bitwise_and(a, b)
-
-    def disjoin(self, a: Words, b: Words) -> Words:
-        """Return a OR b."""
-        return np.bitwise_or(a, b)
-
-    def add(self, a: Words, b: Words) -> Words:
-        """Return a XOR b."""
-        return np.bitwise_xor(a, b)
-
-
-_WORDS = WordAlgebra()
-
-
-@dataclass(frozen=True, slots=True)
-class Batch:
-    """Equal functions evaluated at once: ``inputs`` (inputs of the function, g) and ``outputs`` (g,) are slots."""
-
-    function: Function
-    inputs: npt.NDArray[np.intp]
-    outputs: npt.NDArray[np.intp]
-
-    def value(self, values: Words) -> Words:
-        """Return (g, words)."""
-        value = self.function.evaluate([values[row] for row in self.inputs], _WORDS)
-        return value if value.ndim else np.full((len(self.outputs), values.shape[1]), value)
 
 
 @dataclass(slots=True)
@@ -191,22 +148,22 @@ class Simulator:
     def _batches(self, gates: Sequence[Gate]) -> list[Batch]:
         """Group gates by level, then by function; the level is that of the folded cone, sources first."""
         level: dict[int, int] = {}
-        groups: dict[tuple[int, Function], list[tuple[tuple[int, ...], int]]] = {}
+        places = []
         for gate in gates:
             level[gate.output] = 1 + max((level.get(wire, 0) for wire in gate.inputs), default=0)
             function = self._function_of(gate)
-            place = (self._inputs(function, gate.instance), self._slot(gate.output))
-            groups.setdefault((level[gate.output], function), []).append(place)
-        return [_batch(function, groups[depth, function]) for depth, function in sorted(groups, key=lambda g: g[0])]
+            inputs = self._inputs(function, gate.instance)
+            places.append((level[gate.output], function, inputs, self._slot(gate.output)))
+        return in_batches(places)
 
     def _storage_batches(self, choose: Callable[[Storage], Function | None]) -> list[Batch]:
         """Group one function of every stored bit, such as its data; the outputs are places in ``bits``."""
-        groups: dict[Function, list[tuple[tuple[int, ...], int]]] = {}
+        places = []
         for number, bit in enumerate(self.bits):
             function = choose(self._storage(bit))
             if function is not None:
-                groups.setdefault(function, []).append((self._inputs(function, bit.instance), number))
-        return [_batch(function, places) for function, places in groups.items()]
+                places.append((0, function, self._inputs(function, bit.instance), number))
+        return in_batches(places)
 
     def _function_of(self, gate: Gate) -> Function:
         cell = self._cell(gate.instance)
@@ -227,8 +184,3 @@ class Simulator:
 def _select(lanes: Words, then: Words, otherwise: Words) -> Words:
     """Return ``then`` in the lanes that are 1, ``otherwise`` in the rest."""
     return np.asarray(np.bitwise_xor(otherwise, np.bitwise_and(np.bitwise_xor(then, otherwise), lanes)))
-
-
-def _batch(function: Function, places: Sequence[tuple[tuple[int, ...], int]]) -> Batch:
-    inputs = np.array([slots for slots, _ in places], dtype=np.intp).reshape(len(places), -1).T
-    return Batch(function, inputs, np.array([slot for _, slot in places], dtype=np.intp))
