@@ -23,6 +23,7 @@ class Patterns:
     shift_cycles: int
     capture_cycles: int = 0
     generator_in_capture: str = "holds"  # or "advances"
+    twin_window: int = 0  # scan cells of patterns up to so many apart are compared
 
     @property
     def clocks_per_pattern(self) -> int:
@@ -46,6 +47,7 @@ MACRO = re.compile(r"[A-Za-z_]\w*")  # what a macro may be called
 LEAST_LIMIT = {"separation": 1, "fan_out": 1, "taps": 1, "depth": 0}
 BEYOND = 10**18  # every stated number is smaller
 LONGEST_CHAIN = 10**7  # scan cells; far beyond any chain, and short enough to go through
+LONGEST_TWIN_WINDOW = 10**4  # patterns
 
 
 @dataclass(frozen=True, slots=True)
@@ -56,6 +58,9 @@ class Plan:
     ``modes``     name → a mode, where the plan names several; ``mode`` is then empty
     ``defines``   macros of the netlist and of cell models → their texts; ``include`` folders of included files
     ``chain_length``  scan cells of every chain, or None where not stated
+    ``chain_file``, ``scan_outputs``  what tells the chains in its place: a file, or the nets they end at
+    ``relations``  3 or 4: constant sums of up to so many scan cells are searched; None: of three where that is cheap
+    ``seeds``      name → state, bit k for storage element k
     ``guesses``   a sentence on everything in the plan that was drafted and not stated
     """
 
@@ -76,6 +81,10 @@ class Plan:
     guesses: tuple[str, ...] = ()
     defines: Mapping[str, str] = field(default_factory=dict)
     include: tuple[Path, ...] = ()
+    chain_file: Path | None = None
+    scan_outputs: tuple[str, ...] = ()
+    relations: int | None = None
+    seeds: Mapping[str, int] = field(default_factory=dict)
 
     def by_mode(self) -> dict[str, "Plan"]:
         """Return a plan of one mode for each of the modes; the name is empty where the plan names none."""
@@ -100,14 +109,19 @@ class Options:
     work_limit: int | None = None
     defines: Mapping[str, str] = field(default_factory=dict)
     include: tuple[Path, ...] = ()
+    chain_file: Path | None = None
+    scan_outputs: tuple[str, ...] = ()
+    relations: int | None = None
 
 
 def merge(plan: Plan | None, options: Options) -> Plan:
     """Return the plan under the options: a given list replaces the plan's, mode, limits, defines do so key by key.
 
-    A net that the options hold is held in every mode of the plan.
+    A net that the options hold is held in every mode of the plan. Chains that the options tell, by whichever of the
+    three ways, replace the plan's.
     """
     stated = plan or Plan(netlists=())
+    chains = options if options.chain_length or options.chain_file or options.scan_outputs else stated
     return replace(
         stated,
         netlists=options.netlists or stated.netlists,
@@ -117,7 +131,10 @@ def merge(plan: Plan | None, options: Options) -> Plan:
         modes={name: {**mode, **options.mode} for name, mode in stated.modes.items()},
         channels=options.channels or stated.channels,
         reference=stated.reference if options.reference is None else options.reference,
-        chain_length=stated.chain_length if options.chain_length is None else options.chain_length,
+        chain_length=chains.chain_length,
+        chain_file=chains.chain_file,
+        scan_outputs=chains.scan_outputs,
+        relations=stated.relations if options.relations is None else options.relations,
         limits=replace(stated.limits, **options.limits),
         fail_at=options.fail_at or stated.fail_at,
         work_limit=stated.work_limit if options.work_limit is None else options.work_limit,

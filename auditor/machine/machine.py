@@ -79,6 +79,7 @@ class LinearMachine:
     ``reset_known``, ``reset_state``   which elements the asynchronous pins set, and to what (n bits each)
     ``transient``     T, the nilpotency index of A         ``cycling_degree``  rank of A^n
     ``xor_fan_out``   (n,) pairs (XOR node, input) reached from the element
+    ``network_xors``  two-input XORs between registers and channels, those that several channels share counted once
     """
 
     storage: tuple[str, ...]
@@ -94,6 +95,7 @@ class LinearMachine:
     transient: int
     cycling_degree: int
     xor_fan_out: tuple[int, ...]
+    network_xors: int = 0
 
     @property
     def size(self) -> int:

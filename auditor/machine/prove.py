@@ -186,8 +186,8 @@ def _machine(ground: _Ground, observed: list[ObservedRow]) -> LinearMachine:
     transition = tuple(row.state for row in rows)
     place = {number: k for k, number in enumerate(kept)}
     elements = [cone.elements[number] for number in kept]
-    sinks = [c.wire for c in cone.channels if c.wire in ground.prover.rows and c.constant is None]
-    sinks += [data_wire(number) for number in kept]
+    fed = [c.wire for c in cone.channels if c.wire in ground.prover.rows and c.constant is None]
+    sinks = fed + [data_wire(number) for number in kept]
     return LinearMachine(
         storage=tuple(element.name for element in elements),
         free_inputs=tuple(cone.wire_name(wire) for wire in cone.free_inputs),
@@ -202,4 +202,5 @@ def _machine(ground: _Ground, observed: list[ObservedRow]) -> LinearMachine:
         transient=nilpotency_index(transition),
         cycling_degree=rank_of_cycling_part(transition),
         xor_fan_out=ground.network.fan_out(sinks, [element.wire for element in elements]),
+        network_xors=ground.network.two_input(fed),
     )

@@ -52,6 +52,12 @@ class XorNetwork:
                             count[start] += 1
         return tuple(count[wire] for wire in stored)
 
+    def two_input(self, sinks: Iterable[int]) -> int:
+        """Return the two-input XORs in the cones of the sinks together, each counted once."""
+        seen: set[int] = set()
+        nodes = (node for sink in sinks for node in self._cone(sink, seen))
+        return sum(max(0, len(self.behind.get(node, ())) - 1) for node in nodes)
+
     def _before(self, node: int) -> list[int]:
         """Return the nodes before a node; a pipeline bit leads on to what it takes."""
         wires = self.behind.get(node) or ((self.next_state[node],) if node in self.next_state else ())

@@ -1,0 +1,64 @@
+"""How many different patterns the chains get, one load after another, before the first comes again."""
+
+from collections.abc import Iterable, Iterator
+from math import gcd, lcm
+
+from auditor.array.rows import ChainRows
+from auditor.array.scan_array import Loads, Start
+from auditor.gf2 import matrix
+from auditor.machine.machine import LinearMachine
+from auditor.notation import Vector
+from auditor.phases.table import PhaseTable
+
+
+def distinct_loads(period: int | None, clocks: int) -> int | None:
+    """Return how many states of a cycle are met by steps of so many clocks."""
+    return None if period is None else period // gcd(period, clocks)
+
+
+def find_loads(
+    machine: LinearMachine, table: PhaseTable, rows: ChainRows, clocks: int, from_reset: int | None
+) -> Loads:
+    """Return the different loads for the orbit from reset, where its period is given, else for most states.
+
+    They tell all states of the cycling part apart, and so are as many as the states met, where the rows of the scan
+    cells span that part.
+    """
+    start: Start = "reset"
+    period = from_reset
+    if period is None:
+        channel = {row.name: k for k, row in enumerate(machine.observed) if not row.cut_from}
+        groups = {table.phases[channel[chain.channel]].group for chain in rows.chains}
+        moduli = [table.classes[group].modulus for group in sorted(g for g in groups if g is not None)]
+        known = [modulus for modulus in moduli if modulus is not None]
+        period = lcm(*known) if known and len(known) == len(moduli) and None not in groups else None
+        one = len(table.registers) == 1 and bool(table.registers[0].primitive)
+        start = "any state outside lock-up" if one else "the states of the longest cycles"
+    exact = load_rank(rows) == machine.cycling_degree
+    return Loads(period, distinct_loads(period, clocks), exact, start)
+
+
+def load_rank(rows: ChainRows) -> int:
+    """Return the dimension of the space that the linear parts of all scan cells span.
+
+    So many cells of one chain in a row as the channels' space has dimensions span all that the chain can.
+    """
+    span = matrix.Span()
+    for channel, chain in zip(rows.rows, rows.chains, strict=True):
+        delays = set(chain.delays) if chain.cells else range(1, chain.length + 1)
+        row = matrix.row_times(channel, matrix.power(rows.step, rows.greatest_delay - chain.greatest_delay))
+        last = max(-1, chain.greatest_delay - 2 * rows.dimension - 1)
+        cells = _stepped(rows, row, range(chain.greatest_delay, last, -1))
+        for delay, shown in cells:
+            if span.dimension == rows.dimension:
+                return span.dimension
+            if delay in delays:
+                span.add(shown >> 1)
+    return span.dimension
+
+
+def _stepped(rows: ChainRows, row: Vector, delays: Iterable[int]) -> Iterator[tuple[int, Vector]]:
+    """Yield the row of each of the falling delays, ``row`` being the first."""
+    for delay in delays:
+        yield delay, row
+        row = matrix.row_times(row, rows.step)
