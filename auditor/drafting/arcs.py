@@ -4,6 +4,7 @@ from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 
 import numpy as np
+import numpy.typing as npt
 
 from auditor.cells.function import restrict, support
 from auditor.cells.library import Cell, Function
@@ -24,6 +25,11 @@ class Arcs:
     source: Column
     target: Column
     element: Column
+
+    def among(self, chosen: npt.NDArray[np.bool_]) -> "Arcs":
+        """Return the arcs between chosen nets; ``chosen`` (N,) is True for those."""
+        kept = chosen[self.source] & chosen[self.target]
+        return Arcs(self.source[kept], self.target[kept], self.element[kept])
 
 
 def find_arcs(wiring: Wiring, known: Mapping[int, int]) -> Arcs:
@@ -65,7 +71,7 @@ def _by_type(wiring: Wiring) -> Iterator[tuple[Cell, Column, dict[str, Column]]]
 
 
 def _type_arcs(
-    cell: Cell, instances: Column, nets: Mapping[str, Column], value: np.ndarray[tuple[int], np.dtype[np.int8]]
+    cell: Cell, instances: Column, nets: Mapping[str, Column], value: npt.NDArray[np.int8]
 ) -> Iterator[tuple[Column, Column, Column]]:
     """Yield (source, target, element) of all instances of a cell, one pattern of constant pins after another."""
     read = sorted({name for f in functions_of(cell) for name in f.inputs if name in nets})

@@ -34,9 +34,7 @@ class Constants:
 
     def value_of(self, folded: Folded) -> int | None:
         """Return the value of a function under the constants, None where they leave it open."""
-        wires = {str(wire): wire for wire in folded.wires}
-        named = Function(tuple(map(str, folded.wires)), folded.function.program)
-        return fold(named, wires, self.known).constant
+        return settled(folded, self.known).constant
 
 
 def gate_behind(wiring: Wiring, net: int, known: Mapping[int, int]) -> Folded | None:
@@ -135,8 +133,7 @@ def _fixed(folded: Folded, setting: Mapping[int, int]) -> int | None:
 
 def settled(folded: Folded, setting: Mapping[int, int]) -> Folded:
     """Return a function on its wires with some of them constant."""
-    names = tuple(map(str, folded.wires))
-    return fold(Function(names, folded.function.program), dict(zip(names, folded.wires, strict=True)), setting)
+    return fold(folded.function, dict(zip(folded.function.inputs, folded.wires, strict=True)), setting)
 
 
 def is_sum(folded: Folded) -> bool:

@@ -89,10 +89,11 @@ def _choose(
     for k in [k for k in order if k not in together]:
         if 2 * len(exits[k]) > len(exits[best]):
             return None, f"registers {best + 1} and {k + 1} need different modes or clocks, and each has channels"
-    proposal, because = _prove(ground, candidates, together)
-    if proposal is None and len(together) > 1:
-        proposal, because = _prove(ground, candidates, [best])
-    return proposal, because
+    if len(together) > 1:
+        proposal, _ = _prove(ground, candidates, together, _exits(ground, [candidates[k] for k in together]))
+        if proposal:
+            return proposal, ""
+    return _prove(ground, candidates, [best], exits[best])
 
 
 def _is_wider(candidates: Sequence[Candidate], k: int) -> bool:
@@ -112,11 +113,12 @@ def _agree(chosen: Sequence[Candidate], other: Candidate) -> bool:
     return other.clock == chosen[0].clock and all(given.get(c.net, c.value) == c.value for c in other.constants)
 
 
-def _prove(ground: Ground, candidates: Sequence[Candidate], chosen: Sequence[int]) -> tuple[Proposal | None, str]:
+def _prove(
+    ground: Ground, candidates: Sequence[Candidate], chosen: Sequence[int], exits: Sequence[Exit]
+) -> tuple[Proposal | None, str]:
     """Audit the chosen registers in the whole netlist and keep the channels that come out linear."""
     netlist = ground.wiring.netlist
     registers = [candidates[k] for k in chosen]
-    exits = _exits(ground, registers)
     constants = list({c.net: c for register in registers for c in register.constants}.values())
     names = [e.port or netlist.net_names[e.net] for e in exits]
     if not names:

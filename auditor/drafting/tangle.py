@@ -15,14 +15,14 @@ from auditor.cone.constants import spread
 from auditor.cone.wiring import Wiring
 from auditor.drafting.arcs import find_arcs, functions_of
 from auditor.drafting.justify import gate_behind, root_of
-from auditor.drafting.loops import find_loops
+from auditor.drafting.loops import find_loops, strong_parts
 from auditor.drafting.part import Part
 from auditor.netlist.netlist import OPEN
 
 LARGEST_LOOP = 4096  # storage instances
 MOST_WORK = 150_000  # gates behind an element squared, over all elements: what naming spoilers may cost
 REGION = 200  # gates behind one element that are counted
-SELECTS = 4  # nets that are tried
+SELECTS = 3  # nets that are tried
 
 
 def is_tangled(part: Part, known: Mapping[int, int]) -> bool:
@@ -46,12 +46,15 @@ def fallen_loops(
 ) -> Iterator[tuple[tuple[int, ...], int, int]]:
     """Yield (elements, net, value): the loops of at most ``LARGEST_LOOP`` that a tangle leaves with a select held."""
     met: set[tuple[int, ...]] = set()
+    nets = len(wiring.netlist.net_names)
+    arcs = find_arcs(wiring, known)
+    part = strong_parts(arcs.source, arcs.target, nets)
+    of_tangle = np.isin(part, part[arcs.target[np.isin(arcs.element, list(tangle))]]) & (part >= 0)
     for net in _selects(wiring, ports, known):
         for value in (0, 1):
             held = {**known, net: value}
             spread(wiring, held, [net])
-            loops = find_loops(find_arcs(wiring, held), len(wiring.netlist.net_names), least)
-            for loop in loops:
+            for loop in find_loops(find_arcs(wiring, held).among(of_tangle), nets, least):
                 small = len(loop.elements) <= min(LARGEST_LOOP, len(tangle) - 1)
                 if small and loop.elements not in met and tangle.issuperset(loop.elements):
                     met.add(loop.elements)
