@@ -194,4 +194,6 @@ def _constant(expression: Any) -> int:
     kind = type(expression).__name__
     if kind == "UnaryExpression":  # the texts of these tests know one: minus
         return -_constant(expression.operand)
+    if kind == "NamedValueExpression":  # a parameter
+        return int(expression.symbol.value.value)
     return _constant(expression.operand) if kind == "ConversionExpression" else int(expression.value)
