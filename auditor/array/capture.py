@@ -12,7 +12,7 @@ from auditor.cells.library import Cell, Function
 from auditor.cone.cone import Gate
 from auditor.cone.constants import TIES, resolve_mode, spread
 from auditor.cone.fold import OPEN_PIN, Folded, fold
-from auditor.cone.wiring import NO_DRIVER, SEVERAL_DRIVERS, Wiring
+from auditor.cone.wiring import NO_DRIVER, SEVERAL_DRIVERS, UNKNOWN_CELL, Wiring
 from auditor.errors import TroubleList
 from auditor.notation import natural_order
 
@@ -143,10 +143,16 @@ class _Walk:
         elif driver == SEVERAL_DRIVERS or wire in self.ports:
             self.outside[wire] = "a net with several drivers"
         elif driver == NO_DRIVER:
-            self.outside[wire] = "a net without driver"
+            self.outside[wire] = self._without_driver(wire)
         else:
             return self._gate(wire, *self.wiring.pin_of(driver))
         return None
+
+    def _without_driver(self, net: int) -> str:
+        """Say what a net is that nothing known drives: a cell without description may well drive it."""
+        for pin in self.wiring.pins_on(net, UNKNOWN_CELL):
+            return f"a net at {self.wiring.netlist.cell_of(self.wiring.pin_of(pin)[0]).name}, which no file describes"
+        return "a net without driver"
 
     def _gate(self, net: int, instance: int, pin_name: str) -> tuple[Folded, int] | None:
         cell = self.wiring.cell(instance)

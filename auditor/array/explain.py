@@ -46,7 +46,8 @@ def _contradicted(needs: Sequence[tuple[int, int]], rows: Sequence[Vector]) -> t
         members = [loaded[k] for k in matrix.ones(span.add(rows[source] & ~1))]
         if sum(bit ^ rows[source] & 1 for source, bit in members) & 1:
             found.append(sorted(source for source, _ in members))
-    return tuple(min(found, key=len)) if found else ()
+    shortest = min(found, key=len, default=[])
+    return tuple(shortest)
 
 
 def confirm_examples(circuit: Circuit, nets: Sequence[FrozenNet]) -> None:

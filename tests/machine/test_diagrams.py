@@ -94,3 +94,19 @@ def test_cofactors_fix_one_form() -> None:
     assert algebra.affine(multiplexer) is None
     for bit in (0, 1):
         assert algebra.affine(algebra.with_constant(multiplexer, 0, bit)) == (frozenset({1 if bit else 2}), 0)
+
+
+def test_branches_lead_to_every_value() -> None:
+    """Following the branches by the bits of an assignment ends at the function's value there."""
+    for table in range(256):
+        algebra = Diagrams()
+        variables = [algebra.variable(1 << k, k) for k in range(3)]
+        diagram = diagram_of(algebra, table, variables)
+        for assignment in range(8):
+            node = diagram
+            while algebra.constant_of(node) is None:
+                variable, low, high = algebra.branches(node)
+                node = high if assignment >> variable & 1 else low
+            assert algebra.constant_of(node) == table >> assignment & 1
+            bits = {k: assignment >> k & 1 for k in range(3)}
+            assert algebra.constant_of(algebra.restricted(diagram, bits)) == table >> assignment & 1

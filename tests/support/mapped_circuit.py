@@ -137,25 +137,34 @@ def generator(stages: Sequence[int], channels: Sequence[Sequence[int]]) -> list[
 
 
 def chip(
-    stages: Sequence[int], channels: Sequence[Sequence[int]], length: int, gates: int, seed: int, inputs: int = 0
+    stages: Sequence[int],
+    channels: Sequence[Sequence[int]],
+    length: int,
+    gates: int,
+    seed: int,
+    inputs: int = 0,
+    outputs: int = 0,
+    widths: tuple[int, int] = (4, 16),
 ) -> str:
     """Return a module ``chip``: generator, a chain of ``length`` scan cells a channel, a circuit of about ``gates``.
 
-    Chain i has the cells ``c<i>_<j>``, j from 1 at the scan input; ``si[i]`` feeds it while ``scan_en`` is 1.
+    Chain i has the cells ``c<i>_<j>``, j from 1 at the scan input; ``si[i]`` feeds it while ``scan_en`` is 1. The
+    circuit has input ports ``in`` and output ports ``po``; blocks read words of ``widths`` bits.
     """
     rng = random.Random(seed)
     drawing = Drawing(rng)
     cells = [(i, j) for i in range(len(channels)) for j in range(1, length + 1)]
-    outputs = [f"q{i}_{j}" for i, j in cells]
-    sources = outputs + [f"in[{k}]" for k in range(inputs)]
+    sources = [f"q{i}_{j}" for i, j in cells] + [f"in[{k}]" for k in range(inputs)]
     results: list[str] = []
     while len(drawing.lines) < gates:
-        width = rng.randint(4, 16)
+        width = rng.randint(*widths)
         words = [_word(rng, sources, width) for _ in range(2)]
         results += rng.choice(BLOCKS)(drawing, *words)
     rng.shuffle(results)
-    ports = f"input clk, input rst_n, input scan_en, output [{len(channels) - 1}:0] so"
-    lines = [f"module chip ({ports}{f', input [{inputs - 1}:0] in' if inputs else ''});"]
+    ports = ["input clk", "input rst_n", "input scan_en", f"output [{len(channels) - 1}:0] so"]
+    ports += [f"input [{inputs - 1}:0] in"] if inputs else []
+    ports += [f"output [{outputs - 1}:0] po"] if outputs else []
+    lines = [f"module chip ({', '.join(ports)});"]
     lines += [f"  wire [{max(stages) - 1}:0] x;", f"  wire [{len(channels) - 1}:0] si;"]
     lines += generator(stages, channels)
     for number, (i, j) in enumerate(cells):
@@ -166,6 +175,7 @@ def chip(
         )
     lines += drawing.lines
     lines += [f"  assign so[{i}] = q{i}_{length};" for i in range(len(channels))]
+    lines += [f"  assign po[{k}] = {results[(len(cells) + k) % len(results)]};" for k in range(outputs)]
     return "\n".join([*lines, "endmodule", ""])
 
 
