@@ -17,7 +17,7 @@ _COMMENT = r"//[^\n]*?(?=\\?\n|\Z)|/\*(?s:.*?)(?:\*/|\Z)"
 BODY = re.compile(rf'(?:[^\\\n"/]++|\\\n|\\\S++|{STRING}|{_COMMENT}|[\\"/])*+')
 _DROPPED = re.compile(rf"(\\\n|{_COMMENT}|\n)|{STRING}|\\\S++")
 _ESCAPED_LAST = re.compile(r"\\\S*\Z")
-_SUBSTITUTED = re.compile(rf'``|`"|{STRING}|\\\S++|`?{IDENTIFIER}')
+_SUBSTITUTED = re.compile(rf'``|`"|{STRING}|\\\S++|(?<![\w$\'])`?{IDENTIFIER}')
 _ARGUMENT_TOKEN = re.compile(rf"{STRING}|\\\S++|{_COMMENT}|[(\[{{]|[)\]}}]|,")
 _PARAMETER = re.compile(rf"\s*+({IDENTIFIER})\s*+(?:=(.*))?", re.DOTALL)
 

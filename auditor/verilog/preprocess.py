@@ -175,7 +175,10 @@ class _Run:
             self._note("found ` alone", "mend the text", place)
         elif word not in self.owner.undefined:
             self.owner.undefined.add(word)
-            remedy = near_misses(word, self.macros) or f"give --define {word}=VALUE or the file that defines it"
+            few = len(self.owner.undefined) < 20
+            remedy = (
+                few and near_misses(word, self.macros)
+            ) or f"give --define {word}=VALUE or the file that defines it"
             self._note(f"macro `{word} is not defined", remedy, place)
 
     def _pass(self, pattern: re.Pattern[str], word: str, frame: _Frame, place: SourcePlace) -> str:
