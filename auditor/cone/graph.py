@@ -30,8 +30,7 @@ def gates_in_order(gates: Mapping[int, tuple[Folded, int]]) -> tuple[list[int], 
     try:
         return [wire for wire in nx.topological_sort(graph) if wire in gates], []
     except nx.NetworkXUnfeasible:
-        loop = [gates[output][1] for _, output in nx.find_cycle(graph)]
-        return [], loop
+        return [], [gates[output][1] for output in _loop(graph)]
 
 
 def feedback_parts(graph: nx.DiGraph, element_of: Mapping[int, int]) -> tuple[tuple[int, ...], ...]:
@@ -47,10 +46,21 @@ def feedback_parts(graph: nx.DiGraph, element_of: Mapping[int, int]) -> tuple[tu
 def latch_loop(graph: nx.DiGraph, open_together: Iterable[int]) -> Sequence[int]:
     """Return the wires of a loop through latches that are open at the same time, or nothing."""
     latches = set(open_together)
+    if not latches:
+        return []
     through = graph.edge_subgraph(
         (a, b) for a, b, storage in graph.edges(data="storage") if not storage or b in latches
     )
-    try:
-        return [b for _, b in nx.find_cycle(through)]
-    except nx.NetworkXNoCycle:
-        return []
+    return _loop(through)
+
+
+def _loop(graph: nx.DiGraph) -> list[int]:
+    """Return the wires of a loop, or nothing.
+
+    Inside a strongly connected part a search meets its own path before it has to turn back, so it takes linear
+    time; over the whole graph the package's search is quadratic.
+    """
+    for part in nx.strongly_connected_components(graph):
+        if len(part) > 1 or any(graph.has_edge(wire, wire) for wire in part):
+            return [wire for _, wire in nx.find_cycle(graph.subgraph(part).copy())]
+    return []

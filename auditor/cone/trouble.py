@@ -7,6 +7,8 @@ from auditor.cone.wiring import OUTPUT, UNKNOWN_CELL, UNLISTED, Wiring
 from auditor.errors import TroubleList
 from auditor.notation import SourcePlace, natural_order
 
+MOST_TOLD = 100  # instances of a loop that its trouble names
+
 
 @dataclass(slots=True)
 class ConeTroubles:
@@ -90,9 +92,12 @@ class ConeTroubles:
         )
 
     def loop(self, instances: list[int]) -> None:
-        """Note a loop without storage, as the whole path."""
+        """Note a loop without storage, as the whole path; of a very long one its ends."""
         netlist = self.wiring.netlist
-        path = " → ".join(netlist.instance_names[i] for i in [*instances, instances[0]])
+        names = [netlist.instance_names[i] for i in [*instances, instances[0]]]
+        if len(names) > MOST_TOLD:
+            names[MOST_TOLD // 2 : -MOST_TOLD // 2] = ["..."]
+        path = " → ".join(names)
         self.others.add(
             f"loop without storage: {path}",
             "break the loop or give --mode a constant that opens it",

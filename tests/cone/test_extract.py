@@ -166,6 +166,18 @@ def test_two_drivers_are_named(tmp_path: Path) -> None:
     ]
 
 
+def test_a_black_box_is_an_unknown_cell_inside_and_a_load_outside(tmp_path: Path) -> None:
+    """A module without content whose output reaches the cone is told with its pins; one that only reads is a load."""
+    box = "\nendmodule\nmodule box (input [1:0] I, input E, output O);"
+    outside = cone_of(tmp_path, RING + "\n  wire z; box u9 (.I({a, b}), .E(a), .O(z));" + box)
+    assert [load.direct for load in outside.loads] == [(4,), (3,)]
+    inside = RING.replace("km_xor2 g (.A(a), .B(b), .Y(f))", "box g (.I({a, b}), .E(1'b1), .O(f))")
+    (trouble,) = troubles_of(tmp_path, inside + box)
+    assert trouble.startswith(
+        "t.v:5: 1 unknown cell inside the cone:\n  box (I[1], I[0], E, O): 1 in the cone, first g at t.v:5; "
+    )
+
+
 def test_a_driverless_net_and_an_open_pin_are_told_together(tmp_path: Path) -> None:
     """A net without driver and an open input, both inside the cone, are reported in one go."""
     body = """\

@@ -1,5 +1,7 @@
 """The flat netlist: connectivity against an outside front end, names, and what is refused."""
 
+import random
+import re
 from pathlib import Path
 
 import pytest
@@ -145,12 +147,71 @@ def test_implicit_nets_are_those_of_the_standard(tmp_path: Path) -> None:
     assert netlist.net_place(netlist.net_of_name["o"]).line == 2
 
 
+def _tower(levels: int, calls: int = 1, instance: str = "u") -> str:
+    """Return modules m0, m1 ... each of which instantiates the next, the last a cell."""
+    modules = [
+        f"module m{k}(input i); {' '.join(f'm{k + 1} {instance}{n or str()}(.i(i));' for n in range(calls))} endmodule"
+        for k in range(levels)
+    ]
+    return "\n".join([*modules, f"module m{levels}(input i); C c(.A(i)); endmodule"])
+
+
 def test_a_deep_hierarchy_is_no_recursion(tmp_path: Path) -> None:
-    """Three thousand levels are laid down, and the net through them is one."""
-    levels = [f"module m{k}(input i); m{k + 1} u(.i(i)); endmodule" for k in range(3000)]
-    netlist = _flat(tmp_path, "\n".join([*levels, "module m3000(input i); C c(.A(i)); endmodule"]))
-    assert _pins(netlist, ".".join(["u"] * 3000 + ["c"])) == {"A": "i"}
+    """Five thousand levels are laid down, and the net through them is one."""
+    netlist = _flat(tmp_path, _tower(5000))
+    assert _pins(netlist, ".".join(["u"] * 5000 + ["c"])) == {"A": "i"}
     assert len(netlist.net_names) == 3
+
+
+def test_a_hierarchy_that_memory_cannot_hold_is_refused(tmp_path: Path) -> None:
+    """2^40 copies of a module are counted and not made, and so are the characters of their names."""
+    (many,) = _messages(tmp_path, _tower(40, calls=2))
+    assert re.fullmatch(r"n\.v:1: module m0 unfolds into (\d+) nets and instances; keep below 20000000, .*", many)
+    assert int(many.split()[5]) >= 2**40
+    (long,) = _messages(tmp_path, _tower(3000, instance="u" * 1000))
+    assert long.startswith("n.v:1: the names below module m0 have about ")
+    assert long.endswith(" characters in all; keep below 4000000000: nest modules less deeply or shorten names")
+
+
+def test_a_long_circle_of_modules_is_told_by_its_ends(tmp_path: Path) -> None:
+    """Five thousand modules in a circle are found without recursion and told in one readable line."""
+    (message,) = _messages(tmp_path, _tower(5000).replace("C c(.A(i))", "m0 c(.i(i))"))
+    assert message.startswith("n.v:5001: modules instantiate each other: m0 > m1 > m2 > ")
+    assert message.endswith(" > m4999 > m5000 > m0; break the circle")
+    assert len(message) < 400
+
+
+def test_a_long_chain_of_aliases_is_one_net(tmp_path: Path) -> None:
+    """A port keeps its name among twenty thousand nets that are one with it, tied in any order."""
+    count = 20_000
+    ties = [f"assign n{k + 1} = n{k};" for k in range(count)]
+    random.Random(7).shuffle(ties)
+    wires = ", ".join(f"n{k}" for k in range(count + 1))
+    text = f"module t(input a);\nwire {wires};\nassign n0 = a;\n{' '.join(ties)}\nC c(.A(n{count}));\nendmodule"
+    netlist = _flat(tmp_path, text)
+    assert _pins(netlist, "c") == {"A": "a"}
+    assert len(netlist.net_names) == 3
+    assert len(netlist.net_of_name) == count + 2
+
+
+def test_every_character_of_an_escaped_name_is_kept(tmp_path: Path) -> None:
+    """Module, net, instance and pin may be named by any printable ASCII characters (IEEE 1364-2005, 3.7.1)."""
+    legal = "".join(map(chr, range(33, 127)))
+    names = [legal, *legal, *(f"x{sign}y" for sign in legal)]
+    lines = [f"wire \\{name} ; C \\{name} (.\\{name} (\\{name} ));" for name in names]
+    netlist = _flat(tmp_path, f"module \\{legal} (input \\in/0 );\n" + "\n".join(lines) + "\nendmodule")
+    assert netlist.top == legal
+    assert list(netlist.instance_names) == names
+    assert all(_pins(netlist, name) == {name: name} for name in names)
+
+
+def test_a_name_of_many_digits_is_a_name(tmp_path: Path) -> None:
+    """Digits beyond what Python takes for a number stand in a name, and in the order of names."""
+    digits = "1" * 6000
+    netlist = _flat(
+        tmp_path, f"module t(input n{digits}2);\nwire n{digits}1; assign n{digits}1 = n{digits}2;\nendmodule"
+    )
+    assert netlist.net_names[2] == f"n{digits}1"
 
 
 _SUB = "module sub(input [1:0] i, output o); C c(.A(i), .Y(o)); endmodule\n"
@@ -166,6 +227,10 @@ _SUB = "module sub(input [1:0] i, output o); C c(.A(i), .Y(o)); endmodule\n"
         (_SUB + _HEAD + "sub u(.i(v[2:0]), .o(y));\nsub w(.i(a));\nendmodule", [
             "n.v:3: port i of u is 2 bits wide and its connection 3; give the connection the width of the port",
             "n.v:4: port i of w is 2 bits wide and its connection 1; give the connection the width of the port"]),
+        ("module C(input [1:0] A, output Y); endmodule\n" + _HEAD
+         + "C u(.A(v), .Y(y));\nC w(.A(q), .Y(q));\nendmodule", [
+            "n.v:3: port A of u is 2 bits wide and its connection 4; give the connection the width of the port",
+            "n.v:4: port Y of w is 1 bit wide and its connection 2; give the connection the width of the port"]),
         (_SUB + _HEAD + "sub u(.i(q), .oo(y));\nendmodule", [
             "n.v:3: sub has no port oo; mend the name: did you mean o?"]),
         (_SUB + _HEAD + "sub u(.i(q), .z(y));\nendmodule", [
