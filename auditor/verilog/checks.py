@@ -33,20 +33,29 @@ def _check_signed(draft: Draft, assign: Assign) -> None:
     if not operands or not all(isinstance(operand, str) and operand in draft.signed for operand in operands):
         return
     widths = {_width(draft, operand) for operand in operands}
-    if widths != {sum(_width(draft, part) for part in _operands(assign.left))}:
+    if widths != {sum(_width(draft, part) for part in _parts(assign.left))}:
         found = f"{operands[0]} is signed, and its sign would fill the wider net"
         draft.trouble(found, "write the sign bits out, or declare it without signed", assign.line)
 
 
 def _operands(root: Expression) -> Iterator[Expression]:
-    """Yield the leaves whose widths meet: all but conditions and what is reduced; of the left side the parts."""
+    """Yield the operands of a value whose widths meet: not conditions, nor what is reduced or joined."""
     stack = [root]
     while stack:
         value = stack.pop()
-        if isinstance(value, Concatenation) and value is root:
-            stack.extend(value.parts)
-        elif isinstance(value, Operation) and value.operator not in _SELF_DETERMINED:
+        if isinstance(value, Operation) and value.operator not in _SELF_DETERMINED:
             stack.extend(value.operands[value.operator == "?:" :])
+        else:
+            yield value
+
+
+def _parts(root: Expression) -> Iterator[Expression]:
+    """Yield the parts of a concatenation, or the value that is none."""
+    stack = [root]
+    while stack:
+        value = stack.pop()
+        if isinstance(value, Concatenation):
+            stack.extend(value.parts)
         else:
             yield value
 
@@ -62,8 +71,8 @@ def _check_wired(draft: Draft, wired: set[str]) -> None:
     """Note each wired net that is assigned a constant, or one bit of which is assigned twice."""
     met: dict[str, set[int | None]] = {}
     for assign in draft.assigns:
-        constant = any(isinstance(part, Constant) for part in _operands(assign.right))
-        for part in _operands(assign.left):
+        constant = any(isinstance(part, Constant) for part in _parts(assign.right))
+        for part in _parts(assign.left):
             net = part.net if isinstance(part, Select) else part
             if not isinstance(net, str) or net not in wired:
                 continue

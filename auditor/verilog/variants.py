@@ -8,7 +8,7 @@ from auditor.verilog.draft import Draft
 from auditor.verilog.plain import NAME, RefusedError, plain_name
 from auditor.verilog.statements import Constant
 
-MOST_VARIANTS = 10_000
+MOST_VARIANTS = 1000
 _PARAMETER = re.compile(rf"parameter\b[^=\\]*?({NAME})\s*=")
 
 # The values given to an instance, by name or in order.
