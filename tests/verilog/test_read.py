@@ -41,6 +41,16 @@ def test_both_lanes_agree(tmp_path: Path, text: str) -> None:
     assert read_verilog([tmp_path / "n.v"]) == read_verilog([tmp_path / "n.v"], "grammar")
 
 
+_ROOT = Path(__file__).parents[2]
+_SAMPLES = sorted([*_ROOT.glob("sample_netlists/*.v"), *_ROOT.glob("tests/mapped/*.v")])
+
+
+@pytest.mark.parametrize("path", _SAMPLES, ids=lambda path: path.stem)
+def test_both_lanes_agree_on_every_sample(path: Path) -> None:
+    """Netlists as they come read alike by both lanes."""
+    assert read_verilog([path]) == read_verilog([path], "grammar")
+
+
 def test_headers_and_declarations_of_both_styles(tmp_path: Path) -> None:
     """ANSI and older headers, ranges of any order, and nets beside ports give one kind of module."""
     ansi = _read(tmp_path, "module m(input a, b, output reg [-1:2] q, inout \\z[0] );\nendmodule")
