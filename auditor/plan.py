@@ -23,6 +23,7 @@ class Patterns:
     shift_cycles: int
     capture_cycles: int = 0
     generator_in_capture: str = "holds"  # or "advances"
+    launch: str = "none"  # or "shift": two-cycle tests, launched by the last shift
     twin_window: int = 0  # scan cells of patterns up to so many apart are compared
 
     @property
@@ -61,6 +62,7 @@ class Plan:
     ``chain_file``, ``scan_outputs``  what tells the chains in its place: a file, or the nets they end at
     ``relations``  3 or 4: constant sums of up to so many scan cells are searched; None: of three where that is cheap
     ``seeds``      name → state, bit k for storage element k
+    ``capture``    net or port → 0 or 1 in capture; None: the circuit under test is not asked about
     ``guesses``   a sentence on everything in the plan that was drafted and not stated
     """
 
@@ -85,6 +87,7 @@ class Plan:
     scan_outputs: tuple[str, ...] = ()
     relations: int | None = None
     seeds: Mapping[str, int] = field(default_factory=dict)
+    capture: Mapping[str, int] | None = None
 
     def by_mode(self) -> dict[str, "Plan"]:
         """Return a plan of one mode for each of the modes; the name is empty where the plan names none."""
@@ -112,10 +115,11 @@ class Options:
     chain_file: Path | None = None
     scan_outputs: tuple[str, ...] = ()
     relations: int | None = None
+    capture: Mapping[str, int] | None = None
 
 
 def merge(plan: Plan | None, options: Options) -> Plan:
-    """Return the plan under the options: a given list replaces the plan's, mode, limits, defines do so key by key.
+    """Return the plan under the options: a given list replaces the plan's, mode, capture, limits, defines do so by key.
 
     A net that the options hold is held in every mode of the plan. Chains that the options tell, by whichever of the
     three ways, replace the plan's.
@@ -135,6 +139,7 @@ def merge(plan: Plan | None, options: Options) -> Plan:
         chain_file=chains.chain_file,
         scan_outputs=chains.scan_outputs,
         relations=stated.relations if options.relations is None else options.relations,
+        capture=stated.capture if options.capture is None else {**(stated.capture or {}), **options.capture},
         limits=replace(stated.limits, **options.limits),
         fail_at=options.fail_at or stated.fail_at,
         work_limit=stated.work_limit if options.work_limit is None else options.work_limit,

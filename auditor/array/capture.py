@@ -29,7 +29,7 @@ def circuit_under_test(
     exist, and for scan cells that are no storage of the netlist.
     """
     troubles = TroubleList()
-    constants = resolve_mode(wiring.netlist, capture, troubles)
+    constants = resolve_mode(wiring.netlist, capture, troubles, "capture")
     stored = _find_storage(wiring, [*cells, *generator])
     for name in cells:
         if name not in stored:

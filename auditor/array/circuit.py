@@ -165,7 +165,7 @@ class FrozenNet(NamedTuple):
 class FrozenFacts:
     """``examined`` nets depend on scan cells; ``undecided`` are those among them that the bound leaves open.
 
-    ``patterns``  planned patterns that were simulated, 0 where none are planned or their start is not known
+    ``patterns``  planned patterns that were simulated from each start; 0 where none are planned, or no start is known
     """
 
     examined: int

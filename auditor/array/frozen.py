@@ -12,10 +12,10 @@ import numpy as np
 from auditor.array.circuit import Circuit, FrozenFacts, FrozenNet, Scope
 from auditor.array.equations import Equations, outside_lock_up
 from auditor.array.explain import confirm_examples, with_example
-from auditor.array.loading import Loading, States, sequence
+from auditor.array.loading import Loading, States
 from auditor.array.proofs import NODE_LIMIT, Formulas, Reference
 from auditor.array.simulation import simulation
-from auditor.array.toggling import Planned, simulated, unmoved_by_patterns, unmoved_by_states
+from auditor.array.toggling import Planned, first_load, simulated, unmoved_by_patterns, unmoved_by_states
 from auditor.cells.words import Words
 from auditor.errors import InternalError
 from auditor.gf2 import matrix
@@ -163,9 +163,10 @@ def _confirm(circuit: Circuit, proofs: _Proofs) -> None:
 
 def _first_values(circuit: Circuit, loading: Loading, planned: Planned, nets: Sequence[int]) -> dict[int, int]:
     """Return what nets are in the first planned pattern; no free source decides them."""
-    first = next(sequence(loading, planned.state, planned.shift_cycles - loading.reach, planned.clocks, 1))
     run = simulation(circuit, nets)
-    values = run.run(first.values(loading.rows), np.zeros((len(circuit.free), 1), dtype=np.uint64))
+    values = run.run(
+        first_load(loading, planned).values(loading.rows), np.zeros((len(circuit.free), 1), dtype=np.uint64)
+    )
     found = {net: int(value) & 1 for net, value in zip(run.gates, values[:, 0].tolist(), strict=True)}
     return {net: found[net] for net in nets}
 

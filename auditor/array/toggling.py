@@ -27,9 +27,9 @@ Random = np.random.Generator
 
 
 class Planned(NamedTuple):
-    """The planned test: the generator's state at cycle 0, its clocks a pattern, those of the shift, patterns."""
+    """The planned test: the states it is started from, clocks a pattern, those of the shift, patterns each time."""
 
-    state: Vector
+    starts: tuple[Vector, ...]
     clocks: int
     shift_cycles: int
     patterns: int
@@ -77,22 +77,31 @@ def unmoved_by_patterns(circuit: Circuit, loading: Loading, planned: Planned, ne
     At most ``MOST_BLOCKS`` blocks are simulated for one setting; see ``simulated``.
     """
     watch, random = Watch(circuit, list(nets)), np.random.default_rng(SEED)
-    blocks = -(-simulated(planned) // LANES)
+    patterns = simulated(planned)
+    blocks = -(-patterns // LANES) * len(planned.starts)
+    reference = _in_all_lanes(first_load(loading, planned).values(loading.rows))
     for turn in range(-(-SETTINGS // blocks) if circuit.free else 1):
-        states = sequence(loading, planned.state, planned.shift_cycles - loading.reach, planned.clocks, LANES)
-        reference: Words | None = None
-        for number in range(blocks):
-            loaded = next(states).values(loading.rows)
-            if reference is None:
-                reference = np.where(loaded[:, :1] & np.uint64(1), ALL_ONES, np.uint64(0))
-            free = _setting(circuit, random, all_zero=not turn and not number)
-            watch.show(loaded, reference, free, _first_lanes(simulated(planned) - number * LANES))
+        for start in planned.starts:
+            states = sequence(loading, start, planned.shift_cycles - loading.reach, planned.clocks, LANES)
+            for first in range(0, patterns, LANES):
+                free = _setting(circuit, random, all_zero=not turn and not first)
+                watch.show(next(states).values(loading.rows), reference, free, _first_lanes(patterns - first))
     return watch.waiting
 
 
 def simulated(planned: Planned) -> int:
-    """Return how many of the planned patterns are simulated."""
-    return min(planned.patterns, MOST_BLOCKS * LANES)
+    """Return how many of the planned patterns are simulated from each start."""
+    return min(planned.patterns, MOST_BLOCKS * LANES // len(planned.starts))
+
+
+def first_load(loading: Loading, planned: Planned) -> States:
+    """Return the base state of the first pattern, in one lane."""
+    return next(sequence(loading, planned.starts[0], planned.shift_cycles - loading.reach, planned.clocks, 1))
+
+
+def _in_all_lanes(values: Words) -> Words:
+    """Return the bits of lane 0 in all lanes of one word."""
+    return np.where(values[:, :1] & np.uint64(1), ALL_ONES, np.uint64(0)).astype(np.uint64)
 
 
 def unmoved_by_states(circuit: Circuit, loading: Loading, reference: Vector, nets: Sequence[int]) -> list[int]:
@@ -101,8 +110,7 @@ def unmoved_by_states(circuit: Circuit, loading: Loading, reference: Vector, net
     The reference is a vector over z; see ``loading``.
     """
     watch, random = Watch(circuit, list(nets)), np.random.default_rng(SEED)
-    start = States([reference >> k & 1 for k in range(loading.width)], 1).values(loading.steady)
-    start = np.where(start & np.uint64(1), ALL_ONES, np.uint64(0))
+    start = _in_all_lanes(States([reference >> k & 1 for k in range(loading.width)], 1).values(loading.steady))
     for _ in range(RANDOM_BLOCKS):
         bits = random.integers(0, 2, (loading.width, LANES), dtype=np.uint8)
         columns = [int.from_bytes(np.packbits(row, bitorder="little").tobytes(), "little") for row in bits]

@@ -13,19 +13,24 @@ from auditor.netlist.netlist import CONSTANT_0, CONSTANT_1, Netlist
 TIES = {CONSTANT_0: 0, CONSTANT_1: 1}
 
 
-def resolve_mode(netlist: Netlist, mode: Mapping[str, int], troubles: TroubleList) -> dict[int, int]:
-    """Return net → value for the names of the mode; unknown names and contradictions go to ``troubles``."""
+def resolve_mode(
+    netlist: Netlist, mode: Mapping[str, int], troubles: TroubleList, what: str = "mode"
+) -> dict[int, int]:
+    """Return net → value for the names of the mode; unknown names and contradictions go to ``troubles``.
+
+    ``what`` the constants are of, for the texts.
+    """
     values: dict[int, int] = {}
     said: dict[int, str] = {}
     for name, value in mode.items():
-        net = find_net(netlist, name, "mode pin", troubles)
+        net = find_net(netlist, name, f"{what} pin", troubles)
         if net is None:
             continue
         known = TIES.get(net, values.get(net))
         if known is not None and known != value:
-            other = f"mode gives {said[net]} = {known}" if net in said else f"it is tied to {known}"
+            other = f"{what} gives {said[net]} = {known}" if net in said else f"it is tied to {known}"
             troubles.add(
-                f"contradictory constants: mode gives {name} = {value}, but {other} and both are one net",
+                f"contradictory constants: {what} gives {name} = {value}, but {other} and both are one net",
                 "give each net one value",
                 netlist.net_place(net),
             )

@@ -100,4 +100,4 @@ def test_unknown_names_are_refused_together(tmp_path: Path) -> None:
     told = "\n".join(map(str, caught.value.troubles))
     assert "scan cell g is no storage of t" in told
     assert "scan cell nowhere" in told
-    assert "scan_on does not exist" in told
+    assert "capture pin scan_on does not exist" in told

@@ -105,7 +105,7 @@ def test_nets_that_planned_patterns_miss(tmp_path: Path, seed: int) -> None:
     made = under_test(tmp_path, text, channels, length)
     always = {net.net for net in find_frozen(made.circuit, made.loading, None).frozen}
     count, clocks = 5, length + 1
-    facts = find_frozen(made.circuit, made.loading, Planned(1, clocks, length, count))
+    facts = find_frozen(made.circuit, made.loading, Planned((1,), clocks, length, count))
     assert facts.patterns == count
     truth = Truth(read(text), examined(made.circuit), inputs, size, length, 0)
     at_start, state = [], 1
@@ -198,3 +198,15 @@ def test_a_node_limit_leaves_nets_undecided(tmp_path: Path) -> None:
     assert facts.undecided
     assert {net.net for net in facts.frozen} | set(facts.undecided) >= whole
     assert {net.net for net in facts.frozen} <= whole
+
+
+def test_a_second_start_moves_more_nets(tmp_path: Path) -> None:
+    """Nets that no pattern from any start moves are among those that no pattern from one start moves."""
+    text, _, channels, length, _ = draw(7)
+    made = under_test(tmp_path, text, channels, length)
+    missed = []
+    for starts in ((1,), (5,), (1, 5)):
+        facts = find_frozen(made.circuit, made.loading, Planned(starts, length + 1, length, 4))
+        missed.append({net.net for net in facts.frozen if net.scope == "planned-patterns"})
+    assert missed[2] < missed[0]
+    assert missed[2] <= missed[0] & missed[1]
