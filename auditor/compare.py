@@ -5,13 +5,17 @@ from dataclasses import replace
 
 from auditor.audit import audit_modes
 from auditor.errors import InternalError, fail
+from auditor.notation import Vector
 from auditor.plan import Plan
 from auditor.replay.run import show
 from auditor.report.compared import Compared, Comparisons
 from auditor.report.facts import AuditFacts
 from auditor.revisions.compare import compare_revisions, confirmed
 from auditor.revisions.comparison import Comparison, Witness
-from auditor.revisions.revision import Revision
+from auditor.revisions.revision import Revision, reset_of, storage_names
+
+# Cycles for which the gates are run side by side where the algebra does not decide.
+SIDE_BY_SIDE = 512
 
 
 def compare(old: AuditFacts, new: AuditFacts) -> Comparison:
@@ -20,11 +24,21 @@ def compare(old: AuditFacts, new: AuditFacts) -> Comparison:
     Raises ``InternalError`` where the gates contradict the comparison.
     """
     found = compare_revisions(_revision(old), _revision(new))
+    if found.outcome == "undecided":
+        return _held_side_by_side(old, new, found)
     if found.witness is None:
         return found
-    if not _differ(old, new, found.witness):
+    witness = found.witness
+    before, after = (
+        _shown(facts, state, [channel], witness.cycle + 1)[0][-1]
+        for facts, state, channel in (
+            (old, witness.old_state, witness.old_channel),
+            (new, witness.new_state, witness.new_channel),
+        )
+    )
+    if None in (before, after) or before == after:
         raise InternalError("the gates do not differ where the comparison says that they do")
-    return confirmed(found)
+    return confirmed(found, witness)
 
 
 def compare_plans(old: Plan, new: Plan, progress: Callable[[str], None] | None = None) -> Comparisons:
@@ -59,12 +73,30 @@ def _revision(facts: AuditFacts) -> Revision:
     return Revision(facts.cone, facts.library, facts.extraction, facts.phases, facts.findings)
 
 
-def _differ(old: AuditFacts, new: AuditFacts, witness: Witness) -> bool:
-    """Ask the gates of both netlists what they show from the states of a witness."""
-    sides = ((old, witness.old_state, witness.old_channel), (new, witness.new_state, witness.new_channel))
-    shown = []
-    for facts, state, channel in sides:
-        machine = facts.extraction.machine
-        storage = machine.storage if machine else [element.name for element in facts.cone.elements]
-        shown.append(show(facts.cone, facts.library, storage, state, channel, witness.cycle)[-1])
-    return None not in shown and shown[0] != shown[1]
+def _shown(facts: AuditFacts, state: Vector, channels: Sequence[str], cycles: int) -> list[list[int | None]]:
+    """Return what the gates show on channels from a state of the machine, or of all storage where there is none."""
+    return show(facts.cone, facts.library, storage_names(_revision(facts)), state, channels, cycles)
+
+
+def _held_side_by_side(old: AuditFacts, new: AuditFacts, found: Comparison) -> Comparison:
+    """Run the gates of both from reset where the algebra does not decide: a difference that is seen is proved."""
+    states = [reset_of(_revision(facts)) for facts in (old, new)]
+    names = [channel.name for channel in old.cone.channels]
+    common = [channel.name for channel in new.cone.channels if channel.name in names]
+    if states[0] is None or states[1] is None or not common:
+        return found
+    before = _shown(old, states[0], common, SIDE_BY_SIDE)
+    after = _shown(new, states[1], common, SIDE_BY_SIDE)
+    seen = [
+        (cycle, place)
+        for place, (ours, theirs) in enumerate(zip(before, after, strict=True))
+        for cycle, pair in enumerate(zip(ours, theirs, strict=True))
+        if pair in ((0, 1), (1, 0))
+    ]
+    if not seen:
+        return found
+    cycle, place = min(seen)
+    witness = Witness(states[0], states[1], cycle, common[place], common[place], "both from reset")
+    reset = replace(found.reset, agree=False, because="", shift=None)
+    found = replace(found, outcome="differs", parts=("different",), holds_from=None, state_map=None, reset=reset)
+    return confirmed(found, witness)

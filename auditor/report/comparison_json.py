@@ -135,6 +135,7 @@ def _flip_flop_facts(facts: FlipFlopFacts | None) -> Json | None:
         return None
     return {
         "cell": facts.cell,
+        "reset": facts.reset,
         "direct_fan_out": facts.direct_fan_out,
         "fan_out": facts.fan_out,
         "xor_fan_out": facts.xor_fan_out,

@@ -224,7 +224,15 @@ def _say_flip_flops(page: Page, found: Comparison) -> None:
     changed = [
         change for change in found.flip_flops if change.before and change.after and change.before != change.after
     ]
-    columns = [Column("element"), Column("cell old"), Column("cell new"), Column("fan-out old"), Column("fan-out new")]
+    columns = [
+        Column("element"),
+        Column("cell old"),
+        Column("cell new"),
+        Column("reset old", True),
+        Column("reset new", True),
+        Column("fan-out old"),
+        Column("fan-out new"),
+    ]
     if changed:
         page.say("Fan-out is direct, leaf, XOR.")
         page.table(columns, [_flip_flop_row(change) for change in changed[:MOST_ROWS]])
@@ -237,7 +245,8 @@ def _flip_flop_row(change: FlipFlopChange) -> Row:
         name = f"{change.old} -> {change.new}"
     sides = [facts for facts in (change.before, change.after) if facts]
     loads = [f"{f.direct_fan_out}, {f.fan_out}, {_or_dash(f.xor_fan_out)}" for f in sides]
-    return Row((name, *(facts.cell for facts in sides), *loads))
+    resets = [_or_dash(facts.reset) for facts in sides]
+    return Row((name, *(facts.cell for facts in sides), *resets, *loads))
 
 
 def _say_more(page: Page, total: int, noun: str) -> None:

@@ -3,7 +3,9 @@
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
+from auditor.errors import InternalError
 from auditor.notation import Matrix, Vector
+from auditor.revisions.inversion import find_inversions
 from auditor.revisions.relations import Relations
 from auditor.revisions.steady import Steady
 
@@ -19,9 +21,9 @@ class Alignment:
     inverted: Mapping[int, bool]
 
     @property
-    def plain(self) -> int:
-        """The number of pairs that agree without inversion."""
-        return sum(not inverted for inverted in self.inverted.values())
+    def size(self) -> tuple[int, int]:
+        """The number of pairs that agree, and how many of them without inversion: the more the better."""
+        return len(self.inverted), sum(not inverted for inverted in self.inverted.values())
 
 
 def align(old_step: Matrix, new_step: Matrix, pairs: Sequence[RowPair]) -> Alignment:
@@ -29,13 +31,15 @@ def align(old_step: Matrix, new_step: Matrix, pairs: Sequence[RowPair]) -> Align
 
     Each pair that disagrees with all maps so far is a seed of another one, until more than half of the pairs agree.
     """
+    if whole := complete(old_step, new_step, pairs):
+        return whole
     best = Alignment(Relations(old_step, new_step), {})
     tried: set[int] = set()
     for _ in range(_SEEDS):
         fresh = [place for place, (old, new) in enumerate(pairs) if place not in tried and old > 1 and new > 1]
         order = [*fresh[:1], *(place for place in range(len(pairs)) if place not in fresh[:1])]
         found = _grow(old_step, new_step, pairs, order)
-        if (len(found.inverted), found.plain) > (len(best.inverted), best.plain):
+        if found.size > best.size:
             best = found
         tried |= set(found.inverted) | set(fresh[:1])
         if 2 * len(best.inverted) > len(pairs) or len(fresh) <= 1:
@@ -55,16 +59,18 @@ def _grow(old_step: Matrix, new_step: Matrix, pairs: Sequence[RowPair], order: S
 
 
 def complete(old_step: Matrix, new_step: Matrix, pairs: Sequence[RowPair]) -> Alignment | None:
-    """Return an alignment of all pairs in the order given, None as soon as one does not agree."""
-    relations, inverted = Relations(old_step, new_step), dict[int, bool]()
+    """Return an alignment of all pairs with few of them inverted, None where there is none."""
+    relations = Relations(old_step, new_step)
+    if all(relations.relate(old, new) for old, new in pairs):
+        return Alignment(relations, dict.fromkeys(range(len(pairs)), False))
+    inverted = find_inversions(old_step, new_step, pairs)
+    if inverted is None:
+        return None
+    relations = Relations(old_step, new_step)
     for place, (old, new) in enumerate(pairs):
-        if relations.relate(old, new):
-            inverted[place] = False
-        elif relations.relate(old, new ^ 1):
-            inverted[place] = True
-        else:
-            return None
-    return Alignment(relations, inverted)
+        if not relations.relate(old, new ^ (inverted >> place & 1)):
+            raise InternalError("inversions that were solved for contradict the rows")
+    return Alignment(relations, {place: bool(inverted >> place & 1) for place in range(len(pairs))})
 
 
 def agreeing(relations: Relations, pairs: Sequence[RowPair]) -> Alignment:

@@ -2,7 +2,6 @@
 
 from collections.abc import Mapping, Sequence
 
-from auditor.machine.machine import ObservedRow
 from auditor.notation import Vector
 from auditor.phases.separations import separation
 from auditor.phases.table import Infinite
@@ -48,10 +47,12 @@ def pairs_under(relations: Relations, old: Mapping[int, Vector], new: Mapping[in
     return tuple(sorted(pairs.items()))
 
 
-def channel_facts(revision: Revision, channel: int) -> ChannelFacts:
-    """Return what the audit says of a channel."""
+def channel_facts(revision: Revision, channel: int) -> ChannelFacts | None:
+    """Return what the audit says of a channel, None where the machine was refused."""
+    if revision.machine is None:
+        return None
     row, phase, machine = revision.observed[channel], revision.phase(channel), revision.machine
-    storage = machine.storage if machine else ()
+    storage = machine.storage
     taps = tuple(storage[t.element] + (f"(t-{t.delay})" if t.delay else "") for t in row.taps)
     nearest = phase.nearest if phase else None
     apart = separation(revision.phases, channel, nearest.channel) if revision.phases and nearest else None
@@ -59,14 +60,9 @@ def channel_facts(revision: Revision, channel: int) -> ChannelFacts:
         taps=taps,
         inverted=phase.inverted if phase else None,
         lead=phase.lead if phase else None,
-        nearest=_name(revision, nearest.channel) if nearest else None,
+        nearest=machine.observed[nearest.channel].name if nearest else None,
         separation=None if isinstance(apart, Infinite) else apart,
     )
-
-
-def _name(revision: Revision, channel: int) -> str:
-    rows: Sequence[ObservedRow] = revision.machine.observed if revision.machine else ()
-    return rows[channel].name
 
 
 def changes(
@@ -75,20 +71,20 @@ def changes(
     """Return every channel: those of both revisions in the new order, then those that are gone."""
     by_new = {j: (i, j) for i, j in related}
     listed = []
-    for j, row in enumerate(new.observed):
+    for j, channel in enumerate(new.cone.channels):
         if j not in by_new:
-            listed.append(ChannelChange(None, row.name, None, "added", after=channel_facts(new, j)))
+            listed.append(ChannelChange(None, channel.name, None, "added", after=channel_facts(new, j)))
             continue
         pair, relation = by_new[j], related[by_new[j]]
-        carries = None if relation.carries is None else old.observed[relation.carries].name
+        carries = None if relation.carries is None else old.cone.channels[relation.carries].name
         listed.append(
             ChannelChange(
-                old.observed[pair[0]].name, row.name, matched_by[pair], relation.status, relation.shift,
+                old.cone.channels[pair[0]].name, channel.name, matched_by[pair], relation.status, relation.shift,
                 relation.inverted, carries, channel_facts(old, pair[0]), channel_facts(new, j),
             )
         )  # fmt: skip
     kept = {i for i, _ in related}
-    for i, row in enumerate(old.observed):
+    for i, channel in enumerate(old.cone.channels):
         if i not in kept:
-            listed.append(ChannelChange(row.name, None, None, "removed", before=channel_facts(old, i)))
+            listed.append(ChannelChange(channel.name, None, None, "removed", before=channel_facts(old, i)))
     return tuple(listed)

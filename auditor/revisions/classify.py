@@ -31,13 +31,18 @@ class Relation:
 
 @dataclass(frozen=True, slots=True)
 class Classified:
-    """The class of the pairs. ``relations`` is the state map where there is one; ``by_names``: names speak for it."""
+    """The class of the pairs.
+
+    ``relations``  the state map by which the channels were told, where there is one
+    ``storage``    the map that flip-flops of one name make, where they make one: it is another one where all channels
+                   are shifted
+    """
 
     pairs: tuple[Pair, ...]
     found: tuple[Relation, ...]
     relations: Relations | None
     decimation: Decimation | None = None
-    by_names: bool = False
+    storage: Relations | None = None
 
     @property
     def parts(self) -> tuple[str, ...]:
@@ -94,7 +99,7 @@ def classify(question: Question) -> Classified:
     if named:
         by_names = agreeing(named, rows)
         whole = len(best.inverted) == len(rows)
-        if len(by_names.inverted) >= len(best.inverted) or (whole and _one_shift(question, named)):
+        if by_names.size >= best.size or (whole and _one_shift(question, named)):
             best = by_names
     turn = 0
     if 2 * len(best.inverted) <= len(rows):
@@ -109,7 +114,7 @@ def classify(question: Question) -> Classified:
     found = _relations(question, best)
     if turn:
         found = [replace(r, shift=turn, status="permuted" if r.status == "permuted" else "shifted") for r in found]
-    return Classified(question.pairs, tuple(found), best.relations, by_names=best.relations is named)
+    return Classified(question.pairs, tuple(found), best.relations, storage=named)
 
 
 def _one_shift(question: Question, named: Relations) -> bool:
@@ -165,7 +170,7 @@ def _carried(question: Question, relations: Relations, places: Sequence[int]) ->
     images: dict[Vector, int] = {}
     for place in places:
         image = relations.to_new(question.rows_at(place)[0])
-        if image is not None and image > 1:
+        if image is not None:
             images.setdefault(image, question.pairs[place][0])
     found = {}
     for place in places:

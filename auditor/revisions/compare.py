@@ -59,15 +59,9 @@ def compare_revisions(old: Revision, new: Revision) -> Comparison:
     result = _compare_machines(old, new) if old.machine and new.machine else _refused(old, new)
     matched = _matched(old, new, result.elements)
     names = {old.cone.elements[other].name: new.cone.elements[k].name for k, (other, _, _) in matched.items()}
-    names |= {old.observed[i].name: new.observed[j].name for i, j in result.related}
+    names |= {old.cone.channels[i].name: new.cone.channels[j].name for i, j in result.related}
     outcome = _outcome(result)
-    nets: tuple[ChangedNet, ...] = ()
-    if result.parts[0] not in ALIKE:
-        by_name = pairs_by_name(*([c.name for c in revision.cone.channels] for revision in (old, new)))
-        nets = changed_nets(
-            old.cone, new.cone, {k: (other, inverted) for k, (other, inverted, _) in matched.items()},
-            tuple(result.related) or by_name,
-        )  # fmt: skip
+    nets = _causes(old, new, matched, tuple(result.related)) if outcome != "same" else ()
     decimation = result.classified.decimation if result.classified else None
     return Comparison(
         outcome=outcome,
@@ -89,6 +83,22 @@ def compare_revisions(old: Revision, new: Revision) -> Comparison:
     )
 
 
+def _causes(old: Revision, new: Revision, matched: Matched, pairs: Sequence[Pair]) -> tuple[ChangedNet, ...]:
+    """Return the gates that did it, told by the match of the flip-flops that needs the fewest.
+
+    One inverter in the feedback can turn the whole register over: by behaviour every flip-flop then stores the
+    complement and many channels changed; by name one gate did.
+    """
+    channels = pairs or _named(old, new)
+    by_behaviour = {k: (other, inverted) for k, (other, inverted, _) in matched.items()}
+    numbers = {element.name: k for k, element in enumerate(old.cone.elements)}
+    by_name = {k: (numbers[e.name], False) for k, e in enumerate(new.cone.elements) if e.name in numbers}
+    told = [changed_nets(old.cone, new.cone, match, channels) for match in (by_name, by_behaviour) if match]
+    if by_name == by_behaviour:
+        return told[0] if told else ()
+    return min((nets for nets in told if nets), key=len, default=())
+
+
 def _outcome(result: _Result) -> Outcome:
     if "undecided" in result.parts:
         return "undecided"
@@ -106,7 +116,11 @@ def _refused(old: Revision, new: Revision) -> _Result:
                 f"{name} is no linear machine, so its streams were not compared: {first.what}, {first.because}"
             )
     remarks.append("Findings, structure and single gates are compared, flip-flops and channels by name.")
-    return _Result(("undecided",), {}, {}, {}, FromReset(None, "there is no linear machine"), remarks=tuple(remarks))
+    related = {pair: Relation("refused") for pair in _named(old, new)}
+    by: dict[Pair, MatchedBy] = dict.fromkeys(related, "name")
+    return _Result(
+        ("undecided",), related, by, {}, FromReset(None, "there is no linear machine"), remarks=tuple(remarks)
+    )
 
 
 def _compare_machines(old: Revision, new: Revision) -> _Result:
@@ -117,7 +131,7 @@ def _compare_machines(old: Revision, new: Revision) -> _Result:
         settle(machines[0], start, [i for i, row in enumerate(old.observed) if row.row], streams[0]),
         settle(machines[1], start, [i for i, row in enumerate(new.observed) if row.row], streams[1]),
     )
-    named = pairs_by_name([row.name for row in old.observed], [row.name for row in new.observed])
+    named = _named(old, new)
     by: MatchedBy = "name" if named else "behaviour"
     pairs = tuple(p for p in named if p[0] in steadies[0].rows and p[1] in steadies[1].rows)
     refused = [p for p in named if p not in pairs]
@@ -136,12 +150,18 @@ def _compare_machines(old: Revision, new: Revision) -> _Result:
         _add_by_behaviour(steadies, relations, related, matched_by)
     reset = from_reset(machines, steadies, pairs, relations)
     names = machines[0].storage, machines[1].storage
-    elements = matched_elements(*steadies, relations, names) if relations else {}
+    stored = relations if _agree(classified) else classified.storage or relations
+    elements = matched_elements(*steadies, stored, names) if stored else {}
     result = _Result((), related, matched_by, elements, reset, classified=classified, remarks=remarks)
     _name_class(result, machines, steadies, (old, new), refused)
     if result.parts[0] not in ALIKE or reset.agree is False:
         result.witness = reset_witness(machines, pairs, reset) or followed_witness(machines, streams, pairs, start)
     return result
+
+
+def _named(old: Revision, new: Revision) -> tuple[Pair, ...]:
+    """Return the channels of one name."""
+    return pairs_by_name([c.name for c in old.cone.channels], [c.name for c in new.cone.channels])
 
 
 def _machines(old: Revision, new: Revision) -> tuple[LinearMachine, LinearMachine]:
@@ -177,7 +197,14 @@ def _trusted(classified: Classified) -> Relations | None:
     """Return the state map, None where most channels disagree and nothing else speaks for it."""
     agreeing = sum(relation.status in ("same", "inverted", "permuted") for relation in classified.found)
     shifted = "shifted" in classified.parts
-    return classified.relations if shifted or classified.by_names or 2 * agreeing > len(classified.found) else None
+    by_names = classified.relations is not None and classified.relations is classified.storage
+    trusted = shifted or by_names or 2 * agreeing > len(classified.found)
+    return classified.relations if trusted else None
+
+
+def _agree(classified: Classified) -> bool:
+    """Whether the state map makes all pairs agree, inverted or in another order as may be."""
+    return classified.relations is not None and not {"different", "undecided", "shifted"} & set(classified.parts)
 
 
 def _add_by_behaviour(
@@ -207,7 +234,7 @@ def _name_class(
     if classified is None:
         raise ValueError("no class without an answer")
     parts, relations, start = classified.parts, classified.relations, steadies[0].start
-    if relations is None or {"different", "undecided"} & set(parts) or "shifted" in parts:
+    if relations is None or not _agree(classified):
         result.parts = parts
     else:
         carried = [
@@ -266,7 +293,6 @@ def _matched(old: Revision, new: Revision, elements: Mapping[int, Element]) -> M
     return found
 
 
-def confirmed(comparison: Comparison) -> Comparison:
-    """Return the comparison with its witness marked as confirmed by the gates."""
-    witness = comparison.witness
-    return replace(comparison, witness=witness and replace(witness, confirmed=True))
+def confirmed(comparison: Comparison, witness: Witness) -> Comparison:
+    """Return the comparison with a witness that the gates have confirmed."""
+    return replace(comparison, witness=replace(witness, confirmed=True))

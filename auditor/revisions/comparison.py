@@ -48,9 +48,10 @@ class ChannelChange:
 
 @dataclass(frozen=True, slots=True)
 class FlipFlopFacts:
-    """A storage element in one revision; fan-out over all its outputs."""
+    """A storage element in one revision; ``reset`` is what its asynchronous pins give; fan-out over all its outputs."""
 
     cell: str
+    reset: int | None
     direct_fan_out: int
     fan_out: int
     xor_fan_out: int | None

@@ -15,7 +15,7 @@ from auditor.revisions.comparison import ChangedNet
 
 STATES = 256
 SEED = 0xEC0
-# With fewer nets of one name that kept their function than this share, names of nets are no guide.
+# Names of nets are a guide where at least this share of the nets of one name is driven by instances of one name.
 _TRUST = 0.75
 
 Matched = Mapping[int, tuple[int, bool]]  # new element → old element, and whether it stores the complement
@@ -60,8 +60,8 @@ def changed_nets(old: Cone, new: Cone, matched: Matched, channels: Sequence[tupl
         if _value(sides.old_values, before.wire, before.constant) != _value(
             sides.new_values, after.wire, after.constant
         ):
-            moved = after.constant is None and not sides.kept(after.wire)
-            for cause in _frontier(sides, drivers, [after.wire]) if moved else [("channel", j)]:
+            rewired = after.constant is not None or (sides.same_by_name and sides.kept(after.wire))
+            for cause in [("channel", j)] if rewired else _frontier(sides, drivers, [after.wire]):
                 causes.setdefault(cause, (set(), set()))[0].add(after.name)
     for number, (other, complement) in matched.items():
         element = new.elements[number]
@@ -89,10 +89,15 @@ def _evaluate(old: Cone, new: Cone, matched: Matched) -> _Sides:
             values[gate.output] = gate.function.evaluate([values[wire] for wire in gate.inputs], algebra)
     stored = frozenset(new.elements[number].wire for number in matched)
     sides = _Sides(old, new, stored, start, begin, functions=frozenset(start.values()))
-    nets = [gate.output for gate in new.gates]
-    common = [net for net in nets if old.netlist.net_of_name.get(new.netlist.net_names[net]) in start]
-    sides.same_by_name = sum(map(sides.kept, common)) >= _TRUST * len(common)
+    sides.same_by_name = _names_are_kept(old, new)
     return sides
+
+
+def _names_are_kept(old: Cone, new: Cone) -> bool:
+    drivers = {old.wire_name(gate.output): old.netlist.instance_names[gate.instance] for gate in old.gates}
+    common = [(drivers.get(new.wire_name(gate.output)), gate.instance) for gate in new.gates]
+    same = [driver == new.netlist.instance_names[instance] for driver, instance in common if driver is not None]
+    return bool(same) and sum(same) >= _TRUST * len(same)
 
 
 def _value(values: Mapping[int, int], wire: int, constant: int | None) -> int:
@@ -109,9 +114,9 @@ def _moved(sides: _Sides, old: StorageElement, new: StorageElement, complement: 
 
 
 def _frontier(sides: _Sides, drivers: Mapping[int, int], wires: Sequence[int]) -> list[tuple[str, int]]:
-    """Return the gates behind changed wires that changed although what they read did not."""
+    """Return the gates behind wires that changed which changed although what they read did not."""
     found: list[tuple[str, int]] = []
-    pending = [wire for wire in wires if not sides.kept(wire)]
+    pending = list(wires)
     seen = set(pending)
     for wire in pending:
         if wire not in drivers:

@@ -31,6 +31,13 @@ class Relations:
         """The number of independent relations."""
         return len(self._by_new)
 
+    def copy(self) -> "Relations":
+        """Return relations that can grow on their own."""
+        twin = Relations.__new__(Relations)
+        twin._old, twin._new, twin._step = self._old, self._new, self._step
+        twin._by_new, twin._by_old = self._by_new, self._by_old
+        return twin
+
     def relate(self, old: Vector, new: Vector) -> bool:
         """Take a relation in, old row = new row for ever; refuse it if some state could then not be mapped."""
         pending = [old ^ ((new >> 1) << self._old + 1) ^ new & 1]

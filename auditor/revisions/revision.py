@@ -5,6 +5,7 @@ from dataclasses import dataclass
 from auditor.cells.library import CellLibrary
 from auditor.cone.cone import Cone
 from auditor.machine.machine import Extraction, LinearMachine, ObservedRow
+from auditor.notation import Vector
 from auditor.phases.table import Phase, PhaseTable
 from auditor.risks.finding import Finding
 
@@ -32,3 +33,17 @@ class Revision:
     def phase(self, channel: int) -> Phase | None:
         """Return the phase of a channel."""
         return self.phases.phases[channel] if self.phases else None
+
+
+def storage_names(revision: Revision) -> list[str]:
+    """Return the elements of a state: those of the machine, or all of the cone where there is none."""
+    return list(revision.machine.storage) if revision.machine else [e.name for e in revision.cone.elements]
+
+
+def reset_of(revision: Revision) -> Vector | None:
+    """Return the state after reset, bit k the k-th of ``storage_names``; None where it leaves an element open."""
+    names = set(storage_names(revision))
+    resets = [element.reset for element in revision.cone.elements if element.name in names]
+    if None in resets:
+        return None
+    return sum(1 << k for k, reset in enumerate(resets) if reset)

@@ -55,5 +55,6 @@ def _facts(revision: Revision) -> dict[int, FlipFlopFacts]:
     found = {}
     for load in revision.cone.loads:
         element = revision.cone.elements[load.element]
-        found[load.element] = FlipFlopFacts(element.cell, sum(load.direct), sum(load.leaf), xor.get(element.name))
+        fan_out = sum(load.direct), sum(load.leaf), xor.get(element.name)
+        found[load.element] = FlipFlopFacts(element.cell, element.reset, *fan_out)
     return found
