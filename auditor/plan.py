@@ -23,8 +23,8 @@ class Patterns:
     shift_cycles: int
     capture_cycles: int = 0
     generator_in_capture: str = "holds"  # or "advances"
-    launch: str = "none"  # or "shift": two-cycle tests, launched by the last shift
     twin_window: int = 0  # scan cells of patterns up to so many apart are compared
+    launch: str = "none"  # or "shift": two-cycle tests, launched by the last shift
 
     @property
     def clocks_per_pattern(self) -> int:
