@@ -68,6 +68,15 @@ def audit_parser() -> argparse.ArgumentParser:
     )
     add("--reference", metavar="NAME", help="channel against which leads are counted")
     add("--chain-length", metavar="N", help="scan cells of every chain")
+    add("--chains", metavar="F", help="the chains: a CSV file of channel,length or channel,cell,delay,inverted")
+    add(
+        "--scan-outputs",
+        action="append",
+        default=[],
+        metavar="NAME",
+        help="trace the chains back from these nets; may be repeated",
+    )
+    add("--relations", metavar="3|4", help="search sets of up to so many scan cells whose sum never changes")
     names = ", ".join(LEAST_LIMIT)
     add("--limit", action="append", default=[], metavar="NAME=N", help=f"bound on {names}; may be repeated")
     add("--fail-at", metavar="LEVEL", help="note, warning or error (default error): findings that fail the audit")
@@ -89,6 +98,9 @@ def read_arguments(words: Sequence[str]) -> Request:
     """Return what the words after ``auditor audit`` ask for. Raises ``InputError``."""
     troubles = TroubleList()
     given = _parse(audit_parser(), words, troubles)
+    told = [_option(name) for name in ("chain_length", "chains", "scan_outputs") if getattr(given, name)]
+    if len(told) > 1:
+        troubles.add(f"the chains are told by {' and by '.join(told)}", "keep one of them", COMMAND_LINE)
     if given.fail_at and given.fail_at not in FAIL_AT:
         remedy = near_misses(given.fail_at, FAIL_AT) or "write note, warning or error"
         troubles.add(f"--fail-at {given.fail_at} is no level", remedy, COMMAND_LINE)
@@ -101,6 +113,9 @@ def read_arguments(words: Sequence[str]) -> Request:
             channels=tuple(given.channels),
             reference=given.reference,
             chain_length=_read_number("--chain-length", given.chain_length, 1, troubles, LONGEST_CHAIN),
+            chain_file=Path(given.chains) if given.chains else None,
+            scan_outputs=tuple(given.scan_outputs),
+            relations=_read_number("--relations", given.relations, 3, troubles, 4),
             limits=_read_limits(given.limit, troubles),
             fail_at=given.fail_at,
             work_limit=_read_number("--work-limit", given.work_limit, 1, troubles),

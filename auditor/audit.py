@@ -9,12 +9,15 @@ from importlib.metadata import version
 from pathlib import Path
 from typing import TypeVar
 
+from auditor.array.chains import scan_array
+from auditor.array.find import find_array
+from auditor.array.scan_array import ArrayFacts, ScanArray
 from auditor.cells.library import CellLibrary
 from auditor.cells.read import read_cells
 from auditor.cone.cone import Cone
 from auditor.cone.extract import extract_cone
 from auditor.errors import InputError, Trouble, fail
-from auditor.machine.machine import Extraction
+from auditor.machine.machine import Extraction, LinearMachine
 from auditor.machine.prove import prove_machine
 from auditor.netlist.flatten import flatten
 from auditor.netlist.netlist import Netlist
@@ -113,9 +116,11 @@ def _facts(plan: Plan, library: CellLibrary, cone: Cone, inputs: tuple[InputFile
     """Return all facts of one mode."""
     tell("machine")
     extraction = prove_machine(cone, plan.work_limit)
-    replayed, phases = _solve(plan, library, cone, extraction, tell)
+    scan = _chains(plan, library, cone, tell)
+    replayed, phases = _solve(plan, library, cone, extraction, scan, tell)
+    array = _array(plan, library, cone, extraction, phases, scan, tell)
     tell("risks")
-    evidence = Evidence(plan, cone, extraction, phases)
+    evidence = Evidence(plan, cone, extraction, phases, array)
     findings = find_risks(evidence)
     undecided = open_questions(evidence)
     return AuditFacts(
@@ -132,11 +137,29 @@ def _facts(plan: Plan, library: CellLibrary, cone: Cone, inputs: tuple[InputFile
         undecided=undecided,
         verdict=verdict(findings, undecided, plan.fail_at),
         environment=_environment(),
+        array=array,
     )
 
 
+def _chains(plan: Plan, library: CellLibrary, cone: Cone, tell: Progress) -> ScanArray | None:
+    """Return the scan chains, traced back from the scan outputs where the plan names any."""
+    if not plan.scan_outputs:
+        return scan_array(plan, cone)
+    tell("chains")
+    try:
+        behind = extract_cone(cone.netlist, library, plan.mode, plan.scan_outputs)
+    except InputError as error:
+        raise InputError(replace(t, found=f"behind the scan outputs: {t.found}") for t in error.troubles) from None
+    return scan_array(plan, cone, behind)
+
+
 def _solve(
-    plan: Plan, library: CellLibrary, cone: Cone, extraction: Extraction, tell: Progress
+    plan: Plan,
+    library: CellLibrary,
+    cone: Cone,
+    extraction: Extraction,
+    scan: ScanArray | None,
+    tell: Progress,
 ) -> tuple[ReplayFacts | None, PhaseTable | None]:
     """Replay the gates against the proved machine, then solve it; nothing of both where there is no machine."""
     machine = extraction.machine
@@ -145,8 +168,28 @@ def _solve(
     tell("replay")
     replayed = ReplayFacts(*replay(cone, library, machine), mismatches=0)
     tell("phases")
-    asked = max(plan.chain_length or 0, plan.limits.separation or 0)
+    asked = max(scan.longest if scan else 0, plan.limits.separation or 0)
     return replayed, find_phases(machine, plan.reference, min(max(WINDOW, asked), LARGEST_WINDOW), tell)
+
+
+def _array(
+    plan: Plan,
+    library: CellLibrary,
+    cone: Cone,
+    extraction: Extraction,
+    phases: PhaseTable | None,
+    scan: ScanArray | None,
+    tell: Progress,
+) -> ArrayFacts | None:
+    """Return what the generator does to the scan chains, and its runs from the seeds; nothing without a machine."""
+    if extraction.machine is None or phases is None:
+        return None
+    tell("scan array")
+
+    def solve(machine: LinearMachine, window: int) -> PhaseTable:
+        return find_phases(machine, window=min(window, LARGEST_WINDOW), progress=tell)
+
+    return find_array(plan, cone, library, extraction.machine, phases, scan, solve, tell)
 
 
 def _input_files(plan: Plan, included: Sequence[Path]) -> tuple[InputFile, ...]:
@@ -154,6 +197,8 @@ def _input_files(plan: Plan, included: Sequence[Path]) -> tuple[InputFile, ...]:
     files: list[tuple[Path, str]] = [(plan.file, "plan")] if plan.file else []
     files += [(path, "netlist") for path in plan.netlists] + [(path, "include") for path in included]
     files += [(path, "cells") for path in plan.cells]
+    if plan.chain_file and plan.chain_file.is_file():  # what is wrong with it is told where it is read
+        files.append((plan.chain_file, "chains"))
     return tuple(InputFile(str(path), role, hashlib.sha256(path.read_bytes()).hexdigest()) for path, role in files)
 
 

@@ -208,7 +208,8 @@ def _check(plan: Plan, json: str | None) -> None:
         raise fail("no netlist is given", "name a Verilog file, or give --plan F", COMMAND_LINE)
     check_waivers(plan)
     if json and json != "-":
-        _check_target(Path(json), (*plan.netlists, *plan.cells, *([plan.file] if plan.file else [])))
+        others = [path for path in (plan.file, plan.chain_file) if path]
+        _check_target(Path(json), (*plan.netlists, *plan.cells, *others))
 
 
 def _check_target(target: Path, sources: Sequence[Path]) -> None:

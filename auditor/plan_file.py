@@ -9,21 +9,22 @@ from typing import Any
 
 from auditor.errors import TroubleList, fail, near_misses
 from auditor.notation import SourcePlace
-from auditor.plan import BEYOND, LEAST_LIMIT, LONGEST_CHAIN, MACRO, Limits, Patterns, Plan, Waiver
+from auditor.plan import BEYOND, LEAST_LIMIT, LONGEST_CHAIN, LONGEST_TWIN_WINDOW, MACRO, Limits, Patterns, Plan, Waiver
 
 KEYS: dict[str, tuple[str, ...]] = {
     "netlist": ("files", "top", "cells", "defines"),
     "channels": ("names", "reference"),
-    "chains": ("length",),
-    "patterns": ("count", "shift_cycles", "capture_cycles", "generator_in_capture", "launch"),
+    "chains": ("length", "file", "scan_outputs"),
+    "patterns": ("count", "shift_cycles", "capture_cycles", "generator_in_capture", "launch", "twin_window"),
+    "array": ("relations",),
     "limits": tuple(LEAST_LIMIT),
 }
-SECTIONS = ("netlist", "mode", "channels", "chains", "patterns", "limits", "waivers")
+SECTIONS = ("netlist", "mode", "channels", "chains", "patterns", "array", "limits", "seeds", "waivers")
 WAIVER_KEYS = ("slug", "where", "reason")
-LATER_SECTIONS = ("capture", "claims", "seeds")
-LATER_KEYS = {"chains": ("file", "scan_outputs")}
+LATER_SECTIONS = ("capture", "claims")
 
 _HEADER = re.compile(r"""\s*\[{1,2}\s*([\w."'-]+)\s*\]{1,2}\s*(?:\#.*)?$""")
+_HEXADECIMAL = re.compile(r"[0-9A-Fa-f]{1,100000}")
 _MODE_NAME = re.compile(r"[A-Za-z0-9_-]+")
 _TOML_PLACE = re.compile(r"\s*\(at (?:line (\d+), column \d+|end of document)\)$")
 
@@ -45,6 +46,10 @@ def read_plan(path: Path) -> Plan:
         channels=reader.texts("channels", "names"),
         reference=reader.text("channels", "reference"),
         chain_length=reader.number("chains", "length", 1, LONGEST_CHAIN),
+        chain_file=reader.chain_file(),
+        scan_outputs=reader.texts("chains", "scan_outputs"),
+        relations=reader.number("array", "relations", 3, 4),
+        seeds=reader.seeds(),
         patterns=reader.patterns(),
         limits=Limits(**limits),
         waivers=reader.waivers(),
@@ -133,10 +138,7 @@ class _Reader:
             elif section != "waivers" and not isinstance(content, dict):
                 self.troubles.add(f"{section} must be a section", f"write [{section}]", self.place("", section))
             for key in self._table(section) if section in KEYS else ():
-                if key in LATER_KEYS.get(section, ()):
-                    remedy = "remove it or state [chains] length" if section == "chains" else "remove it"
-                    self._later(f"{key} in [{section}]", remedy, self.place(section, key))
-                elif key not in KEYS[section]:
+                if key not in KEYS[section]:
                     self._unknown(key, f"[{section}]", KEYS[section], self.place(section, key))
 
     def _later(self, what: str, remedy: str, place: SourcePlace) -> None:
@@ -199,6 +201,25 @@ class _Reader:
         self.wrong(section, key, words, f"write {key} = {words}")
         return known[0]
 
+    def chain_file(self) -> Path | None:
+        """Return the file of the chains; the chains are told in one way only, and what tells them twice is noted."""
+        told = [key for key in KEYS["chains"] if key in self._table("chains")]
+        if len(told) > 1:
+            place = self.place("chains", told[1])
+            self.troubles.add(f"[chains] tells the chains by {' and by '.join(told)}", "keep one of them", place)
+        name = self.text("chains", "file")
+        return None if name is None else self.folder / name
+
+    def seeds(self) -> dict[str, int]:
+        """Return [seeds]: name → state, given in hexadecimal digits."""
+        seeds = {}
+        for name, value in self._table("seeds").items():
+            if isinstance(value, str) and _HEXADECIMAL.fullmatch(value):
+                seeds[name] = int(value, 16)
+            else:
+                self.wrong("seeds", name, "a state in hexadecimal digits", f'write {name} = "1f"')
+        return seeds
+
     def modes(self) -> tuple[dict[str, int], dict[str, dict[str, int]]]:
         """Return the constants of [mode], or those of every [mode.NAME] by its name; a plan has either."""
         table = self._table("mode")
@@ -244,7 +265,8 @@ class _Reader:
         count, shift = self.number("patterns", "count", 1), self.number("patterns", "shift_cycles", 1)
         capture = self.number("patterns", "capture_cycles", 0) or 0
         generator = self.choice("patterns", "generator_in_capture", ("holds", "advances"))
-        return Patterns(count, shift, capture, generator) if count and shift else None
+        window = self.number("patterns", "twin_window", 0, LONGEST_TWIN_WINDOW) or 0
+        return Patterns(count, shift, capture, generator, window) if count and shift else None
 
     def waivers(self) -> tuple[Waiver, ...]:
         """Return [[waivers]]; each needs a slug, objects and a reason."""

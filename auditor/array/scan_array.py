@@ -36,6 +36,11 @@ class Chain:
         return [cell.delay for cell in self.cells] if self.cells else range(1, self.length + 1)
 
     @property
+    def is_plain(self) -> bool:
+        """Whether the scan cells have the delays 1, 2, ... in order."""
+        return not self.cells or all(cell.delay == place for place, cell in enumerate(self.cells, 1))
+
+    @property
     def greatest_delay(self) -> int:
         """The delay of the scan cell that is filled first."""
         return max((cell.delay for cell in self.cells), default=self.length)
@@ -99,6 +104,7 @@ class Twins:
     ``repeats``, ``repeating``   inside one chain in one pattern, and the chains in which there are any
     ``across``, ``across_chains``  between two patterns at most ``window`` apart, and the pairs of chains concerned
     ``nearest``     the least distance between two chains, None: none within the chains
+    ``twinned``     chains with twins in another chain, in one pattern
     ``examples``    of each kind the chains with the most pairs
     """
 
@@ -110,7 +116,23 @@ class Twins:
     across: int
     across_chains: int
     nearest: int | None
+    twinned: tuple[int, ...]
     examples: tuple[TwinChains, ...]
+
+    @property
+    def between(self) -> TwinChains | None:
+        """The two chains with the most twins in one pattern."""
+        return next((one for one in self.examples if not one.later and one.chains[0] != one.chains[1]), None)
+
+    @property
+    def inside(self) -> TwinChains | None:
+        """The chain that repeats itself most."""
+        return next((one for one in self.examples if not one.later and one.chains[0] == one.chains[1]), None)
+
+    @property
+    def later(self) -> TwinChains | None:
+        """The two chains with the most twins across patterns."""
+        return next((one for one in self.examples if one.later), None)
 
 
 @dataclass(frozen=True, slots=True)

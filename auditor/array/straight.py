@@ -62,7 +62,7 @@ def _gates_behind(cone: Cone, wires: Iterable[int], looping: set[int]) -> set[in
 
 
 def _area(cone: Cone, library: CellLibrary, instances: set[int]) -> float | None:
-    areas = []
+    areas = [0.0]
     for instance in sorted(instances):
         cell = find_cell(library, *cone.netlist.cell_of(instance))
         if cell is None or cell.area is None:

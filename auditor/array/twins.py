@@ -47,6 +47,7 @@ def find_twins(rows: ChainRows, window: int = 0, clocks: int = 0) -> Twins | Non
         across=sum(part.total for part in others),
         across_chains=len(set().union(*(part.chain_pairs for part in others))),
         nearest=int(near.min()) if len(near) else None,
+        twinned=twins.chains,
         examples=(*twins.examples(), *repeats.examples(), *_most([e for part in others for e in part.examples()])),
     )
 
@@ -121,6 +122,8 @@ class _Part:
         first, second = counted.meetings.first[places], counted.meetings.second[places]
         numbers = np.minimum(first, second) * len(counted.rows.chains) + np.maximum(first, second)
         self.chain_pairs = set(np.unique(numbers).tolist())
+        concerned = np.unique(np.concatenate([first, second])).tolist()
+        self.chains = tuple(counted.rows.numbers[chain] for chain in concerned)
 
     def examples(self) -> list[TwinChains]:
         """Return those with the most pairs of scan cells; of equals the nearest, then the first chains."""

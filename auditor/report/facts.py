@@ -4,6 +4,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Literal, NamedTuple, TypeAlias
 
+from auditor.array.scan_array import ArrayFacts
 from auditor.cells.library import CellLibrary
 from auditor.cone.cone import Cone
 from auditor.machine.machine import Extraction
@@ -32,7 +33,7 @@ class ReplayFacts(NamedTuple):
 
 @dataclass(frozen=True, slots=True)
 class AuditFacts:
-    """One audit. ``phases`` and ``replay`` are None where the machine was refused."""
+    """One audit. ``phases``, ``replay`` and ``array`` are None where the machine was refused."""
 
     plan: Plan
     inputs: tuple[InputFile, ...]
@@ -47,6 +48,7 @@ class AuditFacts:
     undecided: tuple[str, ...]
     verdict: Verdict
     environment: Mapping[str, str]
+    array: ArrayFacts | None = None
 
 
 # The audits of one plan by the name of their mode, in the plan's order; a plan that names none has one, under "".

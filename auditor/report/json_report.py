@@ -14,6 +14,7 @@ from auditor.machine.machine import LinearMachine
 from auditor.notation import Polynomial, Vector, state_hex
 from auditor.phases.table import PhaseClass, RegisterFacts, ResetFacts
 from auditor.plan import Plan
+from auditor.report.array_json import array_part
 from auditor.report.digest import ChannelView, channel_views, cut_views, heaviest_output
 from auditor.report.facts import AuditFacts, Audits, worst
 from auditor.report.wording import CAUTIONS, decimal, exponents
@@ -70,7 +71,9 @@ def _asked(plan: Plan) -> Json:
             "shift_cycles": decimal(patterns.shift_cycles),
             "capture_cycles": decimal(patterns.capture_cycles),
             "generator_in_capture": patterns.generator_in_capture,
+            "twin_window": patterns.twin_window,
         },
+        "relations": plan.relations,
         "fail_at": plan.fail_at,
     }
 
@@ -88,6 +91,7 @@ def _found(facts: AuditFacts) -> Json:
         "channels": [_channel(view, facts) for view in channel_views(facts)],
         "cut_nets": [{**_channel(view, facts), "channel": view.row.cut_from} for view in cut_views(facts) if view.row],
         "flip_flops": [_flip_flop(load, facts) for load in facts.cone.loads],
+        **array_part(facts.array, facts.extraction.machine.size if facts.extraction.machine else 0),
         "findings": [finding_json(finding) for finding in facts.findings],
         "assumed": list(facts.assumed),
         "undecided": list(facts.undecided),

@@ -5,7 +5,6 @@ from collections.abc import Sequence
 from auditor.cone.cone import Load
 from auditor.machine.machine import AffineRow, LinearMachine, ObservedRow
 from auditor.phases.table import Phase, PhaseTable
-from auditor.plan import Plan
 from auditor.report.digest import ChannelView, Pair, channel_views, closest_pairs, cut_views, heaviest_output
 from auditor.report.facts import AuditFacts
 from auditor.report.page import EMPTY, Column, Page, Row
@@ -34,15 +33,18 @@ def say_separations(page: Page, facts: AuditFacts) -> None:
     if not pairs:
         page.say("No two channels are known to carry the same stream.")
     else:
-        _pair_table(page, facts.plan, machine, pairs)
+        _pair_table(page, facts, machine, pairs)
     if table.certified_at_least is not None:
         page.say(f"Proved for every pair of one class: at least {decimal(table.certified_at_least)}.")
-    if facts.plan.chain_length is None:
+    if facts.plan.chain_length is None and not (facts.array and facts.array.scan):
         page.say("No chain length is stated, so whether chains repeat each other was not asked.")
 
 
-def _pair_table(page: Page, plan: Plan, machine: LinearMachine, pairs: Sequence[Pair]) -> None:
-    bounds = [("chain length", plan.chain_length), ("limit", plan.limits.separation)]
+def _pair_table(page: Page, facts: AuditFacts, machine: LinearMachine, pairs: Sequence[Pair]) -> None:
+    chains = ("chain length", facts.plan.chain_length)
+    if facts.array and facts.array.scan and chains[1] is None:
+        chains = ("longest chain", facts.array.scan.longest)
+    bounds = [chains, ("limit", facts.plan.limits.separation)]
     stated = [(name, bound) for name, bound in bounds if bound is not None]
     missed = [(name, bound) for name, bound in stated if pairs[0].cycles < bound]
     columns = [Column("channel"), Column("channel"), Column("separation", True)]

@@ -1,6 +1,6 @@
 """Rules on the distances between channels: streams in lockstep, and chains that hold the same bits."""
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Mapping
 from dataclasses import replace
 from typing import NamedTuple
 
@@ -54,7 +54,10 @@ def windows_overlap(evidence: Evidence) -> Iterator[Finding]:
         return
     counted: list[_Pair] = []
     waived: list[_Pair] = []
+    windows, plain = evidence.windows(), evidence.plain_chains()
     for pair in _pairs(evidence, bound):
+        if not _meets(evidence, pair, windows):
+            continue
         reason = waiver_reason("windows-overlap", _names(evidence, pair), evidence.plan.waivers)
         (counted if reason is None else waived).append(pair)
     if len(counted) > MOST_PAIRS:
@@ -62,7 +65,18 @@ def windows_overlap(evidence: Evidence) -> Iterator[Finding]:
     if len(waived) > MOST_PAIRS:
         yield replace(_count(bound, waived), waived="every pair of this list is waived by the plan")
     for pair in counted[:MOST_PAIRS] + waived[:MOST_PAIRS]:
-        yield _overlap(evidence, pair)
+        yield _overlap(evidence, pair, windows if plain.issuperset(_names(evidence, pair)) else {})
+
+
+def _meets(evidence: Evidence, pair: _Pair, windows: Mapping[str, int]) -> bool:
+    """Whether two chains share bits, or their channels are closer than the limit; chains may differ in length."""
+    if pair.cycles < (evidence.plan.limits.separation or 0):
+        return True
+    lengths = [windows.get(name, 0) for name in _names(evidence, pair)]
+    if lengths[0] == lengths[1]:
+        return pair.cycles < lengths[0]
+    shared = overlap(evidence.phases, pair.i, pair.j, *lengths) if evidence.phases and all(lengths) else None
+    return shared is not None and shared.pairs > 0
 
 
 def _pairs(evidence: Evidence, bound: int) -> list[_Pair]:
@@ -83,17 +97,18 @@ def _relation(pair: _Pair) -> str:
     return "complementary" if pair.complement else "equal"
 
 
-def _overlap(evidence: Evidence, pair: _Pair) -> Finding:
-    """Return the finding on one pair; with a chain length it counts the scan cells that share a bit."""
-    names, length, limit = _names(evidence, pair), evidence.plan.chain_length, evidence.plan.limits.separation
+def _overlap(evidence: Evidence, pair: _Pair, windows: Mapping[str, int]) -> Finding:
+    """Return the finding on one pair; where ``windows`` has its chains' lengths it counts cells that share a bit."""
+    names, limit = _names(evidence, pair), evidence.plan.limits.separation
+    lengths = [windows[name] for name in names if name in windows]
     figures: dict[str, int | float | str | None] = {"separation": decimal(pair.cycles), "streams": _relation(pair)}
     if limit is not None:
         figures["limit"] = decimal(limit)
     distance = f"{decimal(pair.cycles)} cycle{'s' * (pair.cycles != 1)} apart"
     says = f"{names[0]} and {names[1]} carry {_relation(pair)} streams {distance}"
-    shared = overlap(evidence.phases, pair.i, pair.j, length, length) if length and evidence.phases else None
-    if length:
-        figures["chain_length"] = decimal(length)
+    shared = overlap(evidence.phases, pair.i, pair.j, *lengths) if len(lengths) == 2 and evidence.phases else None
+    if lengths:
+        figures["chain_length"] = ", ".join(map(decimal, dict.fromkeys(lengths)))
     if shared and shared.example:
         figures["identical_pairs"] = decimal(shared.pairs)
         figures["example"] = "chain {} cell {} = {}chain {} cell {}".format(

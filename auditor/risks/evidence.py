@@ -3,6 +3,7 @@
 from collections.abc import Iterator
 from dataclasses import dataclass
 
+from auditor.array.scan_array import ArrayFacts, ScanArray
 from auditor.cone.cone import Cone
 from auditor.gf2.matrix import ones
 from auditor.machine.machine import Extraction, LinearMachine, ObservedRow
@@ -13,12 +14,13 @@ from auditor.plan import Plan
 
 @dataclass(frozen=True, slots=True)
 class Evidence:
-    """All facts of one audit; ``phases`` is None where the machine was refused."""
+    """All facts of one audit; ``phases`` and ``array`` are None where the machine was refused."""
 
     plan: Plan
     cone: Cone
     extraction: Extraction
     phases: PhaseTable | None
+    array: ArrayFacts | None = None
 
     @property
     def machine(self) -> LinearMachine | None:
@@ -31,9 +33,34 @@ class Evidence:
         return self.phases.registers if self.phases else ()
 
     @property
+    def scan(self) -> ScanArray | None:
+        """The scan chains, or None where they are not known."""
+        return self.array.scan if self.array else None
+
+    @property
+    def longest_chain(self) -> int | None:
+        """Scan cells of the longest chain, or None where no chain is known."""
+        return self.scan.longest if self.scan else self.plan.chain_length
+
+    def windows(self) -> dict[str, int]:
+        """Return the greatest delay in the chains of each channel: the bits of its stream that they hold together."""
+        if self.scan is None:
+            length = self.plan.chain_length
+            return {} if length is None else {row.name: length for _, row in self.channels()}
+        lengths: dict[str, int] = {}
+        for chain in self.scan.chains:
+            lengths[chain.channel] = max(chain.greatest_delay, lengths.get(chain.channel, 0))
+        return lengths
+
+    def plain_chains(self) -> set[str]:
+        """Return the channels whose chains have one scan cell for each bit of the window."""
+        fed = set(self.windows())
+        return fed - {chain.channel for chain in (self.scan.chains if self.scan else ()) if not chain.is_plain}
+
+    @property
     def bound(self) -> int | None:
         """The separation that is asked for: the chain length or the limit, whichever is more; None: not asked."""
-        return max((n for n in (self.plan.chain_length, self.plan.limits.separation) if n is not None), default=None)
+        return max((n for n in (self.longest_chain, self.plan.limits.separation) if n is not None), default=None)
 
     @property
     def test_clocks(self) -> int | None:

@@ -29,6 +29,11 @@ KINDS: dict[str, Kind] = {
     "fan-out-over-limit": Kind("warning", "a flip-flop drives more pins, or more capacitance, than is allowed"),
     "taps-over-limit": Kind("warning", "a channel has more taps than is allowed"),
     "depth-over-limit": Kind("warning", "a channel passes more XOR nodes in a row than is allowed"),
+    "scan-cells-twinned": Kind("error", "two scan cells hold the same bit, or opposite ones, whatever the state"),
+    "scan-cell-relation": Kind("warning", "three or four scan cells whose sum is the same whatever the state"),
+    "patterns-repeat": Kind("error", "the planned patterns are not all different"),
+    "seeds-overlap": Kind("error", "the tests from two seeds run through the same states"),
+    "seed-in-lock-up": Kind("error", "a seed is a state that a register never leaves"),
     "forced-net": Kind("note", "the mode forces an internal net whose driver could take the other value"),
 }
 

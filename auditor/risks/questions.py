@@ -7,7 +7,7 @@ from auditor.risks.evidence import Evidence, decimal, register_name
 
 def open_questions(evidence: Evidence) -> tuple[str, ...]:
     """Return a sentence for every question of this audit that stays open."""
-    parts = (_guesses, _proofs, _orders, _separations, _test_length)
+    parts = (_guesses, _proofs, _orders, _separations, _test_length, _array)
     return tuple(sentence for part in parts for sentence in part(evidence))
 
 
@@ -58,3 +58,16 @@ def _test_length(evidence: Evidence) -> Iterator[str]:
                 f"Whether the stream of {name} repeats within the {decimal(clocks)} cycles of the planned test is not "
                 "decided: its period is not known."
             )
+
+
+def _array(evidence: Evidence) -> Iterator[str]:
+    array, patterns = evidence.array, evidence.plan.patterns
+    if array is None:
+        return
+    yield from array.open
+    loads = array.loads
+    if patterns and loads and not loads.exact and loads.distinct is not None and loads.distinct >= patterns.count:
+        yield (
+            f"Whether all {decimal(patterns.count)} planned patterns differ is not decided: the scan cells do not tell "
+            "all states of the generator apart."
+        )

@@ -152,7 +152,7 @@ def _meeting(evidence: Evidence, shared: InStep) -> tuple[Level, str]:
     """Return the level and a clause on how near the channels of the registers come to each other from reset."""
     near, clocks, plan = shared.closest, evidence.test_clocks, evidence.plan
     asked = [
-        (plan.chain_length, "so scan cells of their chains share a bit in every pattern"),
+        (evidence.longest_chain, "so scan cells of their chains share a bit in every pattern"),
         (plan.limits.separation, "less than the separation asked for"),
         (clocks, "so within the planned test one chain receives bits that the other had before"),
     ]
