@@ -8,6 +8,7 @@ waits in its draft for the grammar lane.
 import re
 from bisect import bisect_right
 from collections.abc import Callable
+from itertools import repeat
 from typing import NamedTuple
 
 from auditor.errors import TroubleList
@@ -26,7 +27,7 @@ from auditor.verilog.plain import (
     PlainValues,
     plain_name,
 )
-from auditor.verilog.statements import Range, Reading
+from auditor.verilog.statements import Connection, Range, Reading
 from auditor.verilog.text import SourceText
 
 S = SPACE
@@ -114,6 +115,7 @@ class _Scanner:
         pin, value = self.pins.__getitem__, self.values.__getitem__
         position, counted, line = self.position, self.counted, self.line
         match_instance, count, append = _COMMON.match, text.count, draft.instances.append
+        new, kinds = tuple.__new__, repeat(Connection)  # faster than a call for each connection
         while match := match_instance(text, position):
             cell, name, body = match.groups()
             if name in RESERVED:
@@ -121,7 +123,8 @@ class _Scanner:
             # No bracket stands in a pin or a value: between them stand in turn what names a pin and a value.
             parts = body.replace(")", "(").split("(")
             try:
-                connections = tuple(map(connect, zip(map(pin, parts[:-1:2]), map(value, parts[1::2]), strict=True)))
+                pairs = zip(map(pin, parts[:-1:2]), map(value, parts[1::2]), strict=False)
+                connections = tuple(map(new, kinds, pairs))
                 cell = names[cell]
             except NotPlainError:
                 break
