@@ -6,15 +6,16 @@ calculus (``calculus``) gives the logarithm modulo all of the larger ones at onc
 for want of work allowed, and then the logarithm is known modulo the rest.
 """
 
-from collections.abc import Callable, Sequence
+from collections.abc import Sequence
 from dataclasses import dataclass
 from math import gcd, prod
 
 from auditor.errors import InternalError
 from auditor.gf2.batch import Elements, Ring
 from auditor.gf2.calculus.field import field_logarithms
-from auditor.gf2.calculus.table import LARGEST_DEGREE, TableSource, make_factor_base
+from auditor.gf2.calculus.table import TableSource
 from auditor.gf2.calculus.work import OutOfWork, Work
+from auditor.gf2.effort import Effort
 from auditor.gf2.factorisation import is_irreducible
 from auditor.gf2.order import factors_of_mersenne, order_of_x
 from auditor.gf2.polynomial import degree, power_modulo, remainder
@@ -26,6 +27,7 @@ _X = 0b10
 _GROUP_BITS = 26
 # The largest group that is searched: with 1,000 values it takes about as long as an index calculus of degree 128.
 _SEARCHED_BITS = 38
+_WITHOUT_BOUNDS = Effort()
 
 
 @dataclass(frozen=True, slots=True)
@@ -35,11 +37,13 @@ class Logarithms:
     ``values``   one for each value asked: s with 0 <= s < modulus, or None where the value is no power of x
     ``modulus``  the logarithms are known modulo this divisor of the order
     ``order``    the order of x modulo f
+    ``because``  why it is not all of the order, in words; empty where it is, or where the caller left primes out
     """
 
     values: tuple[int | None, ...]
     modulus: int
     order: int
+    because: str = ""
 
     @property
     def complete(self) -> bool:
@@ -48,20 +52,13 @@ class Logarithms:
 
 
 def logarithms(
-    values: Sequence[Polynomial],
-    f: Polynomial,
-    max_prime_bits: int | None = None,
-    *,
-    progress: Callable[[str], None] | None = None,
-    work_limit: int | None = None,
-    tables: TableSource = make_factor_base,
+    values: Sequence[Polynomial], f: Polynomial, max_prime_bits: int | None = None, effort: Effort = _WITHOUT_BOUNDS
 ) -> Logarithms:
     """Return the logarithms to base x of the values modulo the irreducible f.
 
-    Up to degree ``LARGEST_DEGREE`` all of them are complete unless ``max_prime_bits`` leaves out the prime powers of
-    the order with more bits, or the index calculus would take more than ``work_limit`` pair tests. Beyond that degree
-    only prime powers that can be searched are in the modulus. ``progress`` is told in short phrases what is being
-    done; ``tables`` makes or finds the factor base. Every logarithm is verified by exponentiation.
+    All of them are complete up to degree ``calculus.table.LARGEST_DEGREE``, unless ``max_prime_bits`` leaves out the
+    prime powers of the order with more bits or a bound of the effort is reached. Beyond that degree only prime powers
+    that can be searched are in the modulus. Every logarithm is verified by exponentiation.
 
     ``ValueError`` if f is x, is reducible or has a degree for which the order of x is unknown.
     """
@@ -78,14 +75,33 @@ def logarithms(
     parts = _prime_powers(order, ring.degree)
     if max_prime_bits is not None:
         parts = [part for part in parts if part.bit_length() <= max_prime_bits]
-    known = _large_part(ring, members, parts, Work(work_limit, progress), tables)
-    searched = _SEARCHED_BITS if max_prime_bits is None else max_prime_bits
-    for group in _groups([part for part in parts if known[1] % part and part.bit_length() <= searched]):
-        known = _combined(known, _searched(ring, members, order, group), group)
-    found, modulus = known
+    found, modulus, because = _solve(ring, members, order, parts, effort)
     _verify(ring, members, found, order // modulus)
     remaining = iter(found)
-    return Logarithms(tuple(next(remaining) if ok else None for ok in is_power.tolist()), modulus, order)
+    return Logarithms(tuple(next(remaining) if ok else None for ok in is_power.tolist()), modulus, order, because)
+
+
+def _solve(
+    ring: Ring, members: Elements, order: int, parts: Sequence[int], effort: Effort
+) -> tuple[list[int], int, str]:
+    """Return logarithms modulo as much of the product of the parts as can be had, that modulus, and why not all."""
+    if not len(members):
+        return [], prod(parts), ""
+    work, because = effort.work(), ""
+    known = [0] * len(members), 1
+    if max(parts, default=1).bit_length() > _SEARCHED_BITS:
+        try:
+            known = _large_part(ring, members, parts, work, effort.tables)
+        except OutOfWork as reached:
+            because = str(reached)
+    for group in _groups([part for part in parts if known[1] % part and part.bit_length() <= _SEARCHED_BITS]):
+        # Small groups cost less than it takes to count them.
+        allowed = work if group.bit_length() > _GROUP_BITS else Work()
+        try:
+            known = _combined(known, _searched(ring, members, order, group, allowed), group)
+        except OutOfWork as reached:
+            because = str(reached)
+    return *known, because
 
 
 def _prime_powers(order: int, n: int) -> list[int]:
@@ -114,26 +130,18 @@ def _groups(parts: Sequence[int]) -> list[int]:
 def _large_part(
     ring: Ring, members: Elements, parts: Sequence[int], work: Work, tables: TableSource
 ) -> tuple[list[int], int]:
-    """Return logarithms by index calculus and their modulus: 1 if it is not needed, not possible or not allowed."""
-    nothing = [0] * len(members), 1
-    if ring.degree > LARGEST_DEGREE or max(parts, default=1).bit_length() <= _SEARCHED_BITS:
-        return nothing
+    """Return logarithms by index calculus and their modulus, the product of the larger parts."""
     # The table holds for all polynomials of the degree, so it is made modulo all large primes, whatever this order.
     whole = prod(part for part in _prime_powers((1 << ring.degree) - 1, ring.degree) if part.bit_length() > _GROUP_BITS)
     modulus = gcd(whole, prod(parts))
-    if not len(members):
-        return [], modulus
-    try:
-        base = tables(ring.degree, whole, work)
-        return field_logarithms(ring.unpack(members), ring.f, base, modulus, work), modulus
-    except OutOfWork:
-        return nothing
+    base = tables(ring.degree, whole, work)
+    return field_logarithms(ring.unpack(members), ring.f, base, modulus, work), modulus
 
 
-def _searched(ring: Ring, members: Elements, order: int, group: int) -> list[int]:
+def _searched(ring: Ring, members: Elements, order: int, group: int, work: Work) -> list[int]:
     """Return logarithms modulo one divisor of the order by a search of the group of that order."""
     generator = power_modulo(_X, order // group, ring.f)
-    return shared_logarithms(ring, ring.power(members, order // group), generator, group)
+    return shared_logarithms(ring, ring.power(members, order // group), generator, group, work)
 
 
 def _combined(known: tuple[list[int], int], residues: Sequence[int], group: int) -> tuple[list[int], int]:

@@ -10,18 +10,24 @@ import numpy as np
 
 from auditor.errors import InternalError
 from auditor.gf2.batch import BLOCK, Elements, Ring, geometric_block, progression
+from auditor.gf2.calculus.work import Work
 from auditor.gf2.keys import KeyTable, hash_keys
 from auditor.gf2.polynomial import inverse, power_modulo
 from auditor.notation import Polynomial
 
 
-def shared_logarithms(ring: Ring, elements: Elements, generator: Polynomial, order: int) -> list[int]:
+def shared_logarithms(
+    ring: Ring, elements: Elements, generator: Polynomial, order: int, work: Work | None = None
+) -> list[int]:
     """Return for each row the s, 0 <= s < order, with generator^s = row, in the group of that order.
 
-    ``InternalError`` if a row is not in the group: the caller has tested that it is.
+    ``InternalError`` if a row is not in the group: the caller has tested that it is. ``OutOfWork`` where a limit is
+    reached.
     """
     values = len(elements)
     size = max(1, min(KeyTable.LARGEST, order, isqrt(order * values) // 2))
+    work = work or Work()
+    work.spend(size)
     babies = progression(ring, ring.pack([1]), generator, size)
     table = KeyTable(np.concatenate([hash_keys(block) for block in babies]))
     giants = -(-order // size)
@@ -32,6 +38,7 @@ def shared_logarithms(ring: Ring, elements: Elements, generator: Polynomial, ord
     found: dict[int, int] = {}
     open_rows = np.arange(values)
     for first in range(0, giants, together):
+        work.spend(len(block))
         hits = {}
         for row, exponent in table.candidates(hash_keys(block)):
             step, position = divmod(row, len(open_rows))

@@ -24,6 +24,7 @@ from dataclasses import dataclass
 from statistics import median
 
 from auditor.gf2.calculus.table import make_factor_base
+from auditor.gf2.effort import Effort
 from auditor.gf2.logarithm import logarithms
 from auditor.gf2.order import is_primitive
 
@@ -66,7 +67,7 @@ def measure(n: int, count: int) -> Run:
         return base
 
     start = time.process_time()
-    found = logarithms(values, f, tables=timed_table)
+    found = logarithms(values, f, effort=Effort(tables=timed_table))
     seconds = time.process_time() - start
     megabytes = resource.getrusage(resource.RUSAGE_SELF).ru_maxrss / 1024
     return Run(found.values, found.complete, seconds, table, megabytes)

@@ -11,6 +11,7 @@ from auditor.errors import InternalError
 from auditor.gf2 import logarithm
 from auditor.gf2.calculus import field
 from auditor.gf2.calculus.table import make_factor_base
+from auditor.gf2.effort import Effort
 from auditor.gf2.factorisation import is_irreducible
 from auditor.gf2.logarithm import logarithms
 from auditor.gf2.order import factors_of_mersenne, is_primitive
@@ -143,8 +144,8 @@ def test_a_wrong_logarithm_is_never_returned(monkeypatch):
     """One of 20 logarithms in one small group is spoilt: the check by exponentiation stops it."""
     right = logarithm.shared_logarithms
 
-    def spoilt(ring, elements, generator, order):
-        results = right(ring, elements, generator, order)
+    def spoilt(ring, elements, generator, order, work):
+        results = right(ring, elements, generator, order, work)
         return [*results[:-1], (results[-1] + 1) % order]
 
     monkeypatch.setattr(logarithm, "shared_logarithms", spoilt)
@@ -173,6 +174,15 @@ def test_a_register_of_127_stages():
     assert [power_modulo(2, found, f) for found in result.values[len(exponents) :]] == short
 
 
+def test_a_degree_that_is_seldom_asked_for():
+    """Modulo a dense polynomial of degree 131, whose 2^n - 1 has a prime of 123 bits, exponents come back."""
+    f = _primitive(131)
+    exponents = [0, 1, 130, *(pow(3, 500 + k, 2**131 - 1) for k in range(5))]
+    result = logarithms([power_modulo(2, s, f) for s in exponents], f)
+    assert result.complete
+    assert result.values == tuple(exponents)
+
+
 def test_index_calculus_where_x_is_no_generator():
     """Modulo irreducible polynomials of degree 49 with x of lower order, with and without the large prime."""
     large = 4432676798593  # 2^49 - 1 = 127 x 4432676798593
@@ -192,11 +202,11 @@ def test_no_table_is_made_where_none_is_needed():
         made.append(n)
         return make_factor_base(n, modulus, work)
 
-    assert logarithms(_values(62, 3), _primitive(62), tables=table).complete
-    nothing = logarithms([0], _primitive(49), tables=table)
+    assert logarithms(_values(62, 3), _primitive(62), effort=Effort(tables=table)).complete
+    nothing = logarithms([0], _primitive(49), effort=Effort(tables=table))
     assert (nothing.values, nothing.complete) == ((None,), True)
     assert not made
-    assert logarithms([3], _primitive(49), tables=table).complete
+    assert logarithms([3], _primitive(49), effort=Effort(tables=table)).complete
     assert made == [49]
 
 
@@ -206,16 +216,40 @@ def test_a_limit_on_work_leaves_out_the_large_primes():
     whole = logarithms(values, f)
     small = 179951  # 2^59 - 1 = 179951 x 3203431780337
     for limit in (0, 1_000, 34_000):
-        part = logarithms(values, f, work_limit=limit)
+        part = logarithms(values, f, effort=Effort(work_limit=limit))
         assert (part.modulus, part.complete) == (small, False)
+        assert part.because == "the limit on work is reached"
         assert part.values == tuple(found % small for found in whole.values)
-    assert logarithms(values, f, work_limit=10**9) == whole
+    assert logarithms(values, f, effort=Effort(work_limit=10**9)) == whole
+
+
+def test_a_limit_on_work_ends_a_search():
+    """Of 2^37 - 1 = 223 x 616318177 a small limit leaves only the small prime; a large one changes nothing."""
+    f, values = _primitive(37), _values(37, 4)
+    whole, part = logarithms(values, f), logarithms(values, f, effort=Effort(work_limit=1000))
+    assert (whole.because, part.because) == ("", "the limit on work is reached")
+    assert part.modulus == 223
+    assert part.values == tuple(found % 223 for found in whole.values)
+    assert logarithms(values, f, effort=Effort(work_limit=10**6)) == whole
+
+
+def test_a_deadline_that_is_over_leaves_out_what_takes_long():
+    """No work begins after it; what costs next to nothing is known all the same."""
+    result = logarithms([3, 5], _primitive(59), effort=Effort(deadline=0.0))
+    assert (result.modulus, result.because) == (179951, "the limit on time is reached")
+
+
+def test_beyond_the_index_calculus_the_reason_is_told():
+    """2^169 - 1 has a prime of 102 bits, and 169 is beyond the largest degree."""
+    result = logarithms([3], _primitive(169))
+    assert not result.complete
+    assert result.because == "a field of degree 169 is out of reach of the index calculus"
 
 
 def test_progress_is_told():
     """The stages of the index calculus come in order."""
     phrases = []
-    logarithms([3, 5], _primitive(49), progress=phrases.append)
+    logarithms([3, 5], _primitive(49), effort=Effort(progress=phrases.append))
     stages = [phrase.split()[0] for phrase in phrases]
     assert list(dict.fromkeys(stages))[:4] == ["relations", "linear", "a", "elements"]
 
@@ -232,7 +266,7 @@ def test_a_wrong_table_is_never_believed(place):
         return replace(base, logs=tuple(logs))
 
     with pytest.raises(InternalError, match=r"failed its check|contradicts its order"):
-        logarithms(values, f, tables=spoilt)
+        logarithms(values, f, effort=Effort(tables=spoilt))
 
 
 def test_a_wrong_root_is_never_believed(monkeypatch):

@@ -15,7 +15,8 @@ from auditor.gf2.factorisation import factor
 from auditor.gf2.polynomial import degree, divide, multiply_modulo
 from auditor.notation import Polynomial
 
-_BEYOND = 7  # an element is split into factors of the base degree and this much more
+# An element is split into factors of the base degree and so much more, in large fields one more.
+_BEYOND, _LARGE_FIELD = 7, 149
 _ATTEMPTS = 40  # multiples of an element that are split before the search is given up
 _SPLIT_SIZES = (4, 6)  # coefficients of the multipliers of fractions
 _RELATION_SIZES = (5, 6)  # and of those of relations
@@ -29,6 +30,7 @@ class Descent:
 
     def __init__(self, base: FactorBase, work: Work) -> None:
         self._base, self._work = base, work
+        self._split_degree = base.degree + _BEYOND + (degree(base.field) >= _LARGE_FIELD)
         self._primes = irreducibles(base.degree).tolist()
         # A fraction of a short element may have a part as long as a multiple of the field polynomial.
         self._divisors = Divisors(base.degree, degree(base.field) + _MARGIN)
@@ -53,7 +55,7 @@ class Descent:
                     found[numbers[k]] = (log - self._known.get(prime, 0)) % self._base.modulus
             if len(found) == len(elements):
                 return [found[number] for number in range(len(elements))]
-        raise OutOfWork
+        raise OutOfWork("an element could not be split into small factors")
 
     def _log(self, product: Product) -> int | None:
         if not all(p in self._known for p in product):
@@ -85,7 +87,7 @@ class Descent:
         for size in _SPLIT_SIZES:
             self._work.report(f"elements split {len(products)}/{len(elements)}")
             numbers = [k for k in numbers if k not in products]
-            find_smooth([searches[k] for k in numbers], 1, size, self._base.degree + _BEYOND, accept, self._work)
+            find_smooth([searches[k] for k in numbers], 1, size, self._split_degree, accept, self._work)
         return products
 
     def _solve_beyond(self, primes: set[Polynomial]) -> None:

@@ -13,14 +13,17 @@ from auditor.gf2.calculus.work import OutOfWork, Work
 from auditor.gf2.polynomial import degree
 from auditor.notation import Polynomial
 
-LARGEST_DEGREE = 128
+LARGEST_DEGREE = 168
 
 Relation: TypeAlias = dict[int, int]
 TableSource: TypeAlias = Callable[[int, int, Work], FactorBase]
 
 # (largest n, degree of the base, width of the sieve)
-_PARAMETERS = ((56, 11, 9), (70, 12, 9), (82, 13, 10), (94, 14, 10), (106, 15, 11), (LARGEST_DEGREE, 16, 11))
-_BLOCKS = 64  # of the sieve, before the search is given up
+_PARAMETERS = (
+    *((56, 11, 9), (70, 12, 9), (82, 13, 10), (94, 14, 10), (106, 15, 11), (128, 16, 11)),
+    *((138, 17, 11), (152, 18, 12), (LARGEST_DEGREE, 19, 13)),
+)
+_BLOCKS = 512  # of the sieve, before the search is given up
 _X_INDEX = 0  # x is the first of the irreducible polynomials
 _PLENTY = 1.5  # relations for each unknown
 _CORE_SURPLUS = 1.2  # relations for each unknown of the core
@@ -32,27 +35,37 @@ def make_factor_base(n: int, modulus: int, work: Work) -> FactorBase:
     Each prime of the modulus must be above any exponent in a relation. ``OutOfWork`` where the limit is reached
     or n is beyond ``LARGEST_DEGREE``.
     """
-    if n > LARGEST_DEGREE:
-        raise OutOfWork
-    base_degree, width = next(rest for largest, *rest in _PARAMETERS if n <= largest)
+    bound, width = _parameters(n)
     field = canonical_polynomial(n, modulus)
-    primes = irreducibles(base_degree)
+    primes = irreducibles(bound)
     sizes = [degree(p) for p in primes.tolist()]
-    relations, core = _relations(field, base_degree, width, sizes, work)
+    relations, core = _relations(field, bound, width, sizes, work)
     work.report(f"linear algebra, {core} unknowns")
     found = SparseSystem([relation for relation in relations if max(relation) < core], _X_INDEX, modulus).solution()
     _solve_one_by_one(relations, found, modulus)
     _check(relations, found, modulus)
-    return FactorBase(field, base_degree, modulus, tuple(map(found.get, range(len(primes)))))
+    return FactorBase(field, bound, modulus, tuple(map(found.get, range(len(primes)))))
+
+
+def base_degree(n: int) -> int:
+    """Return the degree of the factor base for fields of degree n; ``OutOfWork`` beyond ``LARGEST_DEGREE``."""
+    return _parameters(n)[0]
+
+
+def _parameters(n: int) -> tuple[int, int]:
+    for largest, size, width in _PARAMETERS:
+        if n <= largest:
+            return size, width
+    raise OutOfWork(f"a field of degree {n} is out of reach of the index calculus")
 
 
 def _relations(
-    field: Polynomial, base_degree: int, width: int, sizes: Sequence[int], work: Work
+    field: Polynomial, bound: int, width: int, sizes: Sequence[int], work: Work
 ) -> tuple[list[Relation], int]:
     """Return enough relations Σ exponent log = 0, by index, and how many of the smallest primes they surely solve."""
     shape = Shape(field)
-    sieve = Sieve(shape, base_degree, width, 1 << width - 3)
-    divisors = Divisors(base_degree, 128)
+    sieve = Sieve(shape, bound, width, 1 << width - 3)
+    divisors = Divisors(bound, 128)
     relations: list[Relation] = []
     for block in range(_BLOCKS):
         work.report(f"relations {len(relations)}/{int(_PLENTY * len(sizes))}")
@@ -66,7 +79,7 @@ def _relations(
         core = _core(relations, sizes)
         if core and len(relations) > _PLENTY * len(sizes):
             return relations, core
-    raise OutOfWork
+    raise OutOfWork("too few relations were found")
 
 
 def _core(relations: Sequence[Relation], sizes: Sequence[int]) -> int:

@@ -1,5 +1,7 @@
 """The count of work and its limit."""
 
+from time import monotonic
+
 import pytest
 
 from auditor.gf2.calculus.work import OutOfWork, Work
@@ -21,6 +23,13 @@ def test_without_a_limit_work_is_counted():
     work.spend(10**12)
     work.spend(1)
     assert work.done == 10**12 + 1
+
+
+def test_after_the_deadline_no_work_begins():
+    """A time that is over ends all work, one far ahead none."""
+    with pytest.raises(OutOfWork, match="time"):
+        Work(deadline=monotonic() - 1).spend(1)
+    Work(deadline=monotonic() + 1000).spend(1)
 
 
 def test_phrases_are_passed_on():
