@@ -76,6 +76,13 @@ def audit_parser() -> argparse.ArgumentParser:
         metavar="NAME",
         help="trace the chains back from these nets; may be repeated",
     )
+    add(
+        "--capture",
+        action="append",
+        default=[],
+        metavar="NET=0|1",
+        help="hold a port or net in capture, and look at the circuit under test; may be repeated",
+    )
     add("--relations", metavar="3|4", help="search sets of up to so many scan cells whose sum never changes")
     names = ", ".join(LEAST_LIMIT)
     add("--limit", action="append", default=[], metavar="NAME=N", help=f"bound on {names}; may be repeated")
@@ -109,7 +116,8 @@ def read_arguments(words: Sequence[str]) -> Request:
             netlists=tuple(map(Path, given.netlists)),
             cells=tuple(map(Path, given.cells)),
             top=given.top,
-            mode=_read_mode(given.mode, troubles),
+            mode=_read_mode("--mode", given.mode, troubles),
+            capture=_read_mode("--capture", given.capture, troubles) if given.capture else None,
             channels=tuple(given.channels),
             reference=given.reference,
             chain_length=_read_number("--chain-length", given.chain_length, 1, troubles, LONGEST_CHAIN),
@@ -157,7 +165,7 @@ def read_draft_arguments(words: Sequence[str]) -> Options:
         netlists=tuple(map(Path, given.netlists)),
         cells=tuple(map(Path, given.cells)),
         top=given.top,
-        mode=_read_mode(given.mode, troubles),
+        mode=_read_mode("--mode", given.mode, troubles),
         work_limit=_read_number("--work-limit", given.work_limit, 1, troubles),
         defines=_read_defines(given.define, troubles),
         include=tuple(map(Path, given.include)),
@@ -192,16 +200,16 @@ def _refuse_empty(given: dict[str, object], troubles: TroubleList) -> None:
             troubles.add(f"{what} is empty", "give it a value, or leave it out", COMMAND_LINE)
 
 
-def _read_mode(entries: list[str], troubles: TroubleList) -> dict[str, int]:
+def _read_mode(option: str, entries: list[str], troubles: TroubleList) -> dict[str, int]:
     """Return NET=0|1 entries as a mapping; a net with both values is a contradiction."""
     mode: dict[str, int] = {}
     for entry in filter(None, entries):
         net, equals, value = entry.rpartition("=")
         if not equals or not net or value not in ("0", "1"):
-            remedy = "write --mode NET=0 or --mode NET=1"
-            troubles.add(f"--mode {entry} does not hold a net at 0 or 1", remedy, COMMAND_LINE)
+            remedy = f"write {option} NET=0 or {option} NET=1"
+            troubles.add(f"{option} {entry} does not hold a net at 0 or 1", remedy, COMMAND_LINE)
         elif mode.setdefault(net, int(value)) != int(value):
-            troubles.add(f"--mode holds {net} at 0 and at 1", "keep one of the two", COMMAND_LINE)
+            troubles.add(f"{option} holds {net} at 0 and at 1", "keep one of the two", COMMAND_LINE)
     return mode
 
 

@@ -10,6 +10,7 @@ from pathlib import Path
 from typing import TypeVar
 
 from auditor.array.chains import scan_array
+from auditor.array.examine import examine_capture
 from auditor.array.find import find_array
 from auditor.array.scan_array import ArrayFacts, ScanArray
 from auditor.cells.library import CellLibrary
@@ -119,8 +120,10 @@ def _facts(plan: Plan, library: CellLibrary, cone: Cone, inputs: tuple[InputFile
     scan = _chains(plan, library, cone, tell)
     replayed, phases = _solve(plan, library, cone, extraction, scan, tell)
     array = _array(plan, library, cone, extraction, phases, scan, tell)
+    machine = extraction.machine
+    capture = examine_capture(plan, cone.netlist, library, machine, scan, tell) if machine else None
     tell("risks")
-    evidence = Evidence(plan, cone, extraction, phases, array)
+    evidence = Evidence(plan, cone, extraction, phases, array, capture)
     findings = find_risks(evidence)
     undecided = open_questions(evidence)
     return AuditFacts(
@@ -138,6 +141,7 @@ def _facts(plan: Plan, library: CellLibrary, cone: Cone, inputs: tuple[InputFile
         verdict=verdict(findings, undecided, plan.fail_at),
         environment=_environment(),
         array=array,
+        capture=capture,
     )
 
 

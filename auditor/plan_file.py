@@ -19,9 +19,9 @@ KEYS: dict[str, tuple[str, ...]] = {
     "array": ("relations",),
     "limits": tuple(LEAST_LIMIT),
 }
-SECTIONS = ("netlist", "mode", "channels", "chains", "patterns", "array", "limits", "seeds", "waivers")
+SECTIONS = ("netlist", "mode", "capture", "channels", "chains", "patterns", "array", "limits", "seeds", "waivers")
 WAIVER_KEYS = ("slug", "where", "reason")
-LATER_SECTIONS = ("capture", "claims")
+LATER_SECTIONS = ("claims",)
 
 _HEADER = re.compile(r"""\s*\[{1,2}\s*([\w."'-]+)\s*\]{1,2}\s*(?:\#.*)?$""")
 _HEXADECIMAL = re.compile(r"[0-9A-Fa-f]{1,100000}")
@@ -43,6 +43,7 @@ def read_plan(path: Path) -> Plan:
         defines=reader.defines(),
         mode=mode,
         modes=modes,
+        capture=reader.capture(),
         channels=reader.texts("channels", "names"),
         reference=reader.text("channels", "reference"),
         chain_length=reader.number("chains", "length", 1, LONGEST_CHAIN),
@@ -240,8 +241,12 @@ class _Reader:
         modes = {name: self._constants(f"mode.{name}", content) for name, content in named.items()}
         return self._constants("mode", plain), modes
 
+    def capture(self) -> dict[str, int] | None:
+        """Return the constants of [capture], None where the section is absent."""
+        return self._constants("capture", self._table("capture")) if "capture" in self.document else None
+
     def _constants(self, section: str, table: dict[str, Any]) -> dict[str, int]:
-        """Return the nets of a mode with their values, 0 or 1."""
+        """Return the nets of a mode, or of capture, with their values, 0 or 1."""
         for net, value in table.items():
             if isinstance(value, dict):
                 remedy = f'quote a net whose name has dots, as in "{net}.enable" = 0'
@@ -256,9 +261,6 @@ class _Reader:
         if not table:
             return None
         launch = self.choice("patterns", "launch", ("none", "shift"))
-        if launch == "shift":
-            remedy = 'remove it or write launch = "none"'
-            self._later('launch = "shift" in [patterns]', remedy, self.place("patterns", "launch"))
         for key in ("count", "shift_cycles"):
             if key not in table:
                 self.troubles.add(f"[patterns] has no {key}", f"state {key} = N", self.place("patterns"))
@@ -266,7 +268,7 @@ class _Reader:
         capture = self.number("patterns", "capture_cycles", 0) or 0
         generator = self.choice("patterns", "generator_in_capture", ("holds", "advances"))
         window = self.number("patterns", "twin_window", 0, LONGEST_TWIN_WINDOW) or 0
-        return Patterns(count, shift, capture, generator, window) if count and shift else None
+        return Patterns(count, shift, capture, generator, window, launch) if count and shift else None
 
     def waivers(self) -> tuple[Waiver, ...]:
         """Return [[waivers]]; each needs a slug, objects and a reason."""

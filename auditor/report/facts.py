@@ -4,6 +4,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Literal, NamedTuple, TypeAlias
 
+from auditor.array.circuit import CaptureFacts
 from auditor.array.scan_array import ArrayFacts
 from auditor.cells.library import CellLibrary
 from auditor.cone.cone import Cone
@@ -33,7 +34,10 @@ class ReplayFacts(NamedTuple):
 
 @dataclass(frozen=True, slots=True)
 class AuditFacts:
-    """One audit. ``phases``, ``replay`` and ``array`` are None where the machine was refused."""
+    """One audit. ``phases``, ``replay`` and ``array`` are None where the machine was refused.
+
+    ``capture`` is None where nobody asked about the circuit under test as well.
+    """
 
     plan: Plan
     inputs: tuple[InputFile, ...]
@@ -49,6 +53,7 @@ class AuditFacts:
     verdict: Verdict
     environment: Mapping[str, str]
     array: ArrayFacts | None = None
+    capture: CaptureFacts | None = None
 
 
 # The audits of one plan by the name of their mode, in the plan's order; a plan that names none has one, under "".

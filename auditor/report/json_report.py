@@ -15,6 +15,7 @@ from auditor.notation import Polynomial, Vector, state_hex
 from auditor.phases.table import PhaseClass, RegisterFacts, ResetFacts
 from auditor.plan import Plan
 from auditor.report.array_json import array_part
+from auditor.report.capture_json import capture_part
 from auditor.report.digest import ChannelView, channel_views, cut_views, heaviest_output
 from auditor.report.facts import AuditFacts, Audits, worst
 from auditor.report.wording import CAUTIONS, decimal, exponents
@@ -72,7 +73,9 @@ def _asked(plan: Plan) -> Json:
             "capture_cycles": decimal(patterns.capture_cycles),
             "generator_in_capture": patterns.generator_in_capture,
             "twin_window": patterns.twin_window,
+            "launch": patterns.launch,
         },
+        "scan_outputs": list(plan.scan_outputs),
         "relations": plan.relations,
         "fail_at": plan.fail_at,
     }
@@ -91,6 +94,7 @@ def _found(facts: AuditFacts) -> Json:
         "channels": [_channel(view, facts) for view in channel_views(facts)],
         "cut_nets": [{**_channel(view, facts), "channel": view.row.cut_from} for view in cut_views(facts) if view.row],
         "flip_flops": [_flip_flop(load, facts) for load in facts.cone.loads],
+        **capture_part(facts.capture, facts.plan),
         **array_part(facts.array, facts.extraction.machine.size if facts.extraction.machine else 0),
         "findings": [finding_json(finding) for finding in facts.findings],
         "assumed": list(facts.assumed),

@@ -3,6 +3,7 @@
 from collections.abc import Iterator
 from dataclasses import dataclass
 
+from auditor.array.circuit import CaptureFacts
 from auditor.array.scan_array import ArrayFacts, ScanArray
 from auditor.cone.cone import Cone
 from auditor.gf2.matrix import ones
@@ -14,13 +15,14 @@ from auditor.plan import Plan
 
 @dataclass(frozen=True, slots=True)
 class Evidence:
-    """All facts of one audit; ``phases`` and ``array`` are None where the machine was refused."""
+    """All facts of one audit; ``phases``, ``array`` and ``capture`` are None where the machine was refused."""
 
     plan: Plan
     cone: Cone
     extraction: Extraction
     phases: PhaseTable | None
     array: ArrayFacts | None = None
+    capture: CaptureFacts | None = None
 
     @property
     def machine(self) -> LinearMachine | None:

@@ -3,7 +3,7 @@
 from collections.abc import Callable, Iterator
 from typing import TypeAlias
 
-from auditor.risks import array_rules, distance_rules, load_rules, register_rules, stream_rules
+from auditor.risks import array_rules, capture_rules, distance_rules, load_rules, register_rules, stream_rules
 from auditor.risks.evidence import Evidence
 from auditor.risks.finding import LEVELS, Finding
 from auditor.risks.waivers import waived
@@ -24,6 +24,8 @@ RULES: tuple[Rule, ...] = (
     register_rules.no_reset_and_no_load,
     array_rules.scan_cells_twinned,
     array_rules.scan_cell_relation,
+    capture_rules.net_frozen,
+    capture_rules.cone_short_of_rank,
     array_rules.patterns_repeat,
     array_rules.seed_in_lock_up,
     array_rules.seeds_overlap,

@@ -7,7 +7,7 @@ from auditor.risks.evidence import Evidence, decimal, register_name
 
 def open_questions(evidence: Evidence) -> tuple[str, ...]:
     """Return a sentence for every question of this audit that stays open."""
-    parts = (_guesses, _proofs, _orders, _separations, _test_length, _array)
+    parts = (_guesses, _proofs, _orders, _separations, _test_length, _array, _capture)
     return tuple(sentence for part in parts for sentence in part(evidence))
 
 
@@ -70,4 +70,21 @@ def _array(evidence: Evidence) -> Iterator[str]:
         yield (
             f"Whether all {decimal(patterns.count)} planned patterns differ is not decided: the scan cells do not tell "
             "all states of the generator apart."
+        )
+
+
+def _capture(evidence: Evidence) -> Iterator[str]:
+    capture, patterns = evidence.capture, evidence.plan.patterns
+    if capture is None:
+        return
+    nets = capture.nets
+    if nets.undecided:
+        yield (
+            f"Whether {len(nets.undecided)} of {nets.examined} nets behind scan cells toggle is not decided, such as "
+            f"{capture.circuit.wire_name(nets.undecided[0])}."
+        )
+    if patterns and not nets.patterns:
+        yield (
+            "Which nets the planned patterns leave frozen is not decided: neither a seed nor reset gives a state from "
+            "which the generator runs."
         )
