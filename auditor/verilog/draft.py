@@ -60,7 +60,8 @@ class Draft:
     The module begins on line ``start`` of the whole text, whose lines ``spans`` places; its own lines are less by
     ``shift``, so that they are those of the file in which it begins. ``plain`` turns False with the first parameter:
     any name may then be a number.
-    ``given`` are values for its parameters; ``every_port`` says whether an instance connects `.*`.
+    ``given`` are values for its parameters; ``every_port`` says whether an instance connects `.*`,
+    ``described`` whether it is a cell that a library describes, so that only its ports matter.
     """
 
     name: str
@@ -73,6 +74,7 @@ class Draft:
     implicit_nets: bool = True
     last_line: int = 0
     every_port: bool = False
+    described: bool = False
     given: dict[str, Constant] = field(default_factory=dict)
     signed: set[str] = field(default_factory=set)
     ports: list[HeaderPort] = field(default_factory=list)

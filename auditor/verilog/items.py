@@ -167,6 +167,8 @@ class Items:
             self._assign_item(draft, Item(f"assign {item.text}", item.line))
 
     def _assign_item(self, draft: Draft, item: Item) -> None:
+        if draft.described:
+            return
         left, _, right = item.text.removeprefix("assign ").partition("=")
         if draft.plain:
             try:

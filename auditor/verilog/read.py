@@ -1,7 +1,7 @@
 """Files → modules: the main verb of this room."""
 
 import gc
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Container, Iterator, Mapping, Sequence
 from contextlib import contextmanager
 from pathlib import Path
 from types import MappingProxyType
@@ -22,14 +22,16 @@ def read_verilog(
     defines: Mapping[str, str] = MappingProxyType({}),
     include: Sequence[Path] = (),
     reading: Reading | None = None,
+    cells: Container[str] = (),
 ) -> dict[str, Module]:
     """Return the modules of all files by name, in the order of the text; files and modules may come in any order.
 
     ``defines`` are macros that are defined from the start, ``include`` the folders in which an included file is looked
     for behind that of the including one; a macro of one file is known to those that follow. Plain statements take the
     fast lane, others the grammar lane; with ``lane`` "grammar" every statement takes the latter, which is slow and
-    gives the same modules. Included files and notes are entered into ``reading``. Raises InputError with the troubles
-    of all files.
+    gives the same modules. Of a module that is one of ``cells``, which a library describes, only the ports are read:
+    it may be a model that is not structural. Included files and notes are entered into ``reading``. Raises InputError
+    with the troubles of all files.
     """
     troubles, told = TroubleList(), reading or Reading()
     preprocessor = Preprocessor(defines, include, troubles, told)
@@ -43,7 +45,7 @@ def read_verilog(
             if blanked is None:
                 continue
             del text, source
-            scanned = scan(blanked, troubles, told, lane == "both")
+            scanned = scan(blanked, troubles, told, lane == "both", cells)
             primitives += scanned.primitives
             for draft in scanned.drafts:
                 before = drafts.setdefault(draft.name, draft)

@@ -7,7 +7,7 @@ waits in its draft for the grammar lane.
 
 import re
 from bisect import bisect_right
-from collections.abc import Callable
+from collections.abc import Callable, Container
 from itertools import repeat
 from typing import NamedTuple
 
@@ -60,9 +60,14 @@ class Scanned(NamedTuple):
     primitives: list[str]
 
 
-def scan(source: SourceText, troubles: TroubleList, reading: Reading, plain: bool = True) -> Scanned:
-    """Return what a blanked text holds; with ``plain`` False all waits for the grammar lane."""
-    return _Scanner(source, troubles, reading, plain).run()
+def scan(
+    source: SourceText, troubles: TroubleList, reading: Reading, plain: bool = True, cells: Container[str] = ()
+) -> Scanned:
+    """Return what a blanked text holds; with ``plain`` False all waits for the grammar lane.
+
+    Of a module that is one of ``cells`` only the ports are read.
+    """
+    return _Scanner(source, troubles, reading, plain, cells).run()
 
 
 class _Scanner:
@@ -71,10 +76,13 @@ class _Scanner:
     Within a module ``line`` counts as the module does: less by the ``shift`` of its draft.
     """
 
-    def __init__(self, source: SourceText, troubles: TroubleList, reading: Reading, plain: bool) -> None:
+    def __init__(
+        self, source: SourceText, troubles: TroubleList, reading: Reading, plain: bool, cells: Container[str]
+    ) -> None:
         self.source, self.text, self.troubles, self.reading, self.plain = source, source.text, troubles, reading, plain
         self.position, self.counted, self.line = 0, 0, 1
         self.primitives: list[str] = []
+        self.cells, self.timed = cells, set[str]()
         self.names, self.values = PlainNames(), PlainValues()
         self.pins = PlainPins(self.names)
         self.items = Items(self.names, self.values)
@@ -84,7 +92,7 @@ class _Scanner:
     def run(self) -> Scanned:
         """Read the whole text."""
         while True:
-            if self.draft and self.draft.plain:
+            if self.draft and self.draft.plain and not self.draft.described:
                 self._plain_instances(self.draft)
             match = _WORD.match(self.text, self.position)
             if not match:
@@ -181,15 +189,21 @@ class _Scanner:
             if word in _DECLARING and self.draft.plain and self._name_list(self.draft):
                 return
             statement = self._take_statement(line)
-            if statement is not None:
+            if statement is not None and not (self.draft.described and word not in _SAYING_PORTS):
                 _HANDLERS.get(word, Items.instances)(self.items, self.draft, statement, line)
         else:
             self._refused(self.draft, word, line)
 
     def _refused(self, draft: Draft, word: str, line: int) -> None:
-        """Pass over what is not structural: timing in silence, all else with a trouble."""
+        """Pass over what is not structural: timing with a note in each file, all else with a trouble."""
         if word == "specify":
+            place = draft.place_of(line)
+            if place.file not in self.timed:
+                self.timed.add(place.file)
+                draft.note("specify blocks from here on are passed over: timing has no part in the audit", line)
             self._skip_past(_SPECIFY_END)
+        elif draft.described:
+            self._skip_to("endmodule")
         elif word == "trireg":
             self._trouble("trireg nets store charge", "store the bit in a cell", line)
             self._take_statement(line)
@@ -222,10 +236,20 @@ class _Scanner:
         place = self.source.spans.place(line)
         kinds = self.source.net_types
         ruling = bisect_right(kinds, line, key=lambda entry: entry[0])
+        name = plain_name(head[1])
+        described = name in self.cells
         self.draft = Draft(
-            plain_name(head[1]), place, line, self.source.spans, self.troubles, self.reading, self.plain,
+            name,
+            place,
+            line,
+            self.source.spans,
+            # Whatever else such a module holds may be no netlist.
+            TroubleList() if described else self.troubles,
+            self.reading,
+            self.plain,
+            described=described,
             implicit_nets=not ruling or kinds[ruling - 1][1] != "none",
-        )  # fmt: skip
+        )
         self.drafts.append(self.draft)
         self.line -= self.draft.shift
         self.items.header(self.draft, statement, head.end(), place.line)
@@ -315,6 +339,7 @@ def _find(pattern: re.Pattern[str], text: str, start: int) -> re.Match[str] | No
 
 _Handler = Callable[[Items, Draft, str, int], None]
 _DECLARING = dict.fromkeys(("input", "output", "inout", *NET_KINDS), Items.declaration)
+_SAYING_PORTS = frozenset({*_DECLARING, "parameter", "localparam"})
 _HANDLERS: dict[str, _Handler] = {
     **_DECLARING,
     **dict.fromkeys(GATES, Items.instances),

@@ -3,6 +3,7 @@
 import subprocess
 import sys
 from pathlib import Path
+from typing import Literal
 
 import pytest
 from hypothesis import HealthCheck, given, settings
@@ -10,7 +11,7 @@ from hypothesis import HealthCheck, given, settings
 from auditor.errors import InputError
 from auditor.notation import SourcePlace
 from auditor.verilog.read import read_verilog
-from auditor.verilog.statements import Assign, Connection, Declaration, HeaderPort, Module, Range, Select
+from auditor.verilog.statements import Assign, Connection, Declaration, HeaderPort, Module, Range, Reading, Select
 from tests.support.structural_texts import structural_texts
 
 _HEAD = "module m(input a, input [3:0] v, output y);\n"
@@ -217,3 +218,26 @@ def test_the_grammar_lane_leaves_no_files_and_no_noise(tmp_path: Path) -> None:
     kept = [path.name for path in (tmp_path / "cache").rglob("*") if path.is_file()]
     assert kept == ["parsetab.py"]
     assert sorted(path.name for path in tmp_path.iterdir()) == ["cache", "n.v"]
+
+
+@pytest.mark.parametrize("lane", ["both", "grammar"])
+def test_of_a_described_cell_only_the_ports_are_read(tmp_path: Path, lane: Literal["both", "grammar"]) -> None:
+    """A model beside the netlist may hold what is no netlist, if a library says what the cell does."""
+    model = (
+        "module DFF(D, CK, Q);\ninput D, CK; output [1:0] Q; reg [1:0] Q;\nparameter T = 1.5;\nwire n = D + CK;\n"
+        "INV u(.A(D));\nspecify (CK => Q) = 1; endspecify\nalways @(posedge CK) Q <= {2{D}};\nendmodule\n"
+    )
+    (tmp_path / "n.v").write_text(model + _HEAD + "DFF u(a, v[0], {y, w});\nendmodule")
+    reading = Reading()
+    modules = read_verilog([tmp_path / "n.v"], lane, cells={"DFF"}, reading=reading)
+    cell = modules["DFF"]
+    assert [port.name for port in cell.ports] == ["D", "CK", "Q"]
+    assert cell.directions == {"D": "input", "CK": "input", "Q": "output"}
+    assert cell.nets["Q"].range == Range(1, 0)
+    assert not cell.instances
+    assert not cell.assigns
+    assert reading.notes == [
+        f"{tmp_path}/n.v:6: specify blocks from here on are passed over: timing has no part in the audit"
+    ]
+    with pytest.raises(InputError, match="module DFF is not structural: found always"):
+        read_verilog([tmp_path / "n.v"], lane)
