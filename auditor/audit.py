@@ -81,7 +81,8 @@ def read_netlist(plan: Plan, library: CellLibrary, reading: Reading | None = Non
     was_enabled = gc.isenabled()
     gc.disable()
     try:
-        modules = read_verilog(plan.netlists, "both", plan.defines, plan.include, reading)
+        cells = library.cells.keys() - {plan.top}
+        modules = read_verilog(plan.netlists, "both", plan.defines, plan.include, reading, cells)
         return flatten(modules, plan.top, library.cells)
     finally:
         if was_enabled:
