@@ -9,11 +9,10 @@ from auditor.cells.read import read_cells
 from auditor.cone.constants import resolve_mode
 from auditor.cone.extract import extract_cone
 from auditor.cone.wiring import connect
-from auditor.drafting.candidate import Attempt, Prove
+from auditor.drafting.candidate import Attempt, Ground, Prove
 from auditor.drafting.part import input_ports
 from auditor.drafting.proposal import Draft
 from auditor.drafting.propose import propose
-from auditor.drafting.settle import Ground
 from auditor.drafting.text import guesses
 from auditor.errors import InputError, TroubleList, fail
 from auditor.machine.machine import LinearMachine

@@ -4,7 +4,9 @@ from collections.abc import Callable, Mapping, Sequence
 from dataclasses import dataclass
 from typing import TypeAlias
 
+from auditor.cells.library import CellLibrary
 from auditor.cone.cone import Cone
+from auditor.cone.wiring import Wiring
 from auditor.errors import Trouble
 from auditor.machine.machine import Extraction, LinearMachine
 from auditor.netlist.netlist import Netlist
@@ -47,6 +49,22 @@ class Constant:
     value: int
     is_port: bool
     reason: str
+
+
+@dataclass(frozen=True, slots=True)
+class Ground:
+    """The whole netlist, its input ports (net → name), and the verbs that drafting may use."""
+
+    wiring: Wiring
+    library: CellLibrary
+    ports: Mapping[int, str]
+    prove: Prove
+    describe: Describe
+
+    def constant(self, net: int, bit: int, reason: str) -> Constant:
+        """Return a constant of a net of the whole, by the name of its port where it has one."""
+        name = self.ports.get(net) or self.wiring.netlist.net_names[net]
+        return Constant(net, name, bit, net in self.ports, reason)
 
 
 @dataclass(frozen=True, slots=True)

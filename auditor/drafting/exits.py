@@ -51,6 +51,7 @@ class _Way:
     reached: dict[int, int] = field(default_factory=dict)
     mixed: set[int] = field(default_factory=set)
     chains: dict[int, int] = field(default_factory=dict)
+    passed: dict[int, None] = field(default_factory=dict)  # storage between the registers and what they decide
     steps: int = 0
     selects: dict[int, tuple[int, bool]] = field(default_factory=dict)
 
@@ -81,6 +82,7 @@ class _Way:
             data = fold(storage.data, wire_of, self.known)
             if pin in storage.data.inputs and self._is_decided(data):
                 stages[storage.variable] = 1 + self._stage(data)
+                self.passed[instance] = None
         fresh = []
         for output in cell.pins.values():
             out = nets.get(output.name)
@@ -172,8 +174,10 @@ class _Way:
 
 def find_exits(
     wiring: Wiring, ports: Container[int], known: Mapping[int, int], inside: Iterable[int], starts: Iterable[int]
-) -> list[Exit]:
+) -> tuple[list[Exit], list[int]]:
     """Return the exits of the registers whose instances are ``inside`` and whose outputs are ``starts``.
+
+    Beside them stand the storage instances of the pipelines in between.
 
     Output ports come in the order of the top, then shift registers by net.
     """
@@ -187,7 +191,8 @@ def find_exits(
                 shown.setdefault(net, bit)
     bits = [(net, bit) for port in outputs for net, bit in zip(port.nets, port.bits, strict=True)]
     rest = sorted(net for net in way.chains if net not in shown)
-    return [
+    exits = [
         *(Exit(net, bit, way.chains.get(net, 0), net in way.mixed) for net, bit in bits if shown.get(net) == bit),
         *(Exit(net, "", way.chains[net], net in way.mixed) for net in rest),
     ]
+    return exits, sorted(way.passed)

@@ -7,11 +7,12 @@ from itertools import islice
 
 from auditor.cone.constants import TIES, spread
 from auditor.drafting.arcs import find_arcs
-from auditor.drafting.candidate import Attempt, Candidate, Constant
+from auditor.drafting.candidate import Attempt, Candidate, Constant, Ground
+from auditor.drafting.cure import LEAST_ELEMENTS, cured
 from auditor.drafting.exits import Exit, find_exits
 from auditor.drafting.loops import Loop, find_loops
 from auditor.drafting.proposal import ChannelGuess, Draft, Proposal
-from auditor.drafting.settle import LEAST_ELEMENTS, STATED, TANGLED, Ground, cured, settle
+from auditor.drafting.settle import STATED, TANGLED, complete, settle
 from auditor.drafting.tangle import fallen_loops
 from auditor.machine.machine import ObservedRow
 
@@ -29,7 +30,7 @@ def propose(ground: Ground, stated: Mapping[int, int]) -> Draft:
     spread(ground.wiring, known, list(known))
     loops = find_loops(find_arcs(ground.wiring, known), len(netlist.net_names), LEAST_ELEMENTS)
     candidates = _settle_all(ground, loops, [ground.constant(net, bit, STATED) for net, bit in stated.items()])
-    exits = [_exits(ground, [c]) if c.facts and not c.compacts else [] for c in candidates]
+    exits = [_exits(ground, [c])[0] if c.facts and not c.compacts else [] for c in candidates]
     proposal, because = _choose(ground, candidates, exits)
     passed_over = max(0, len(loops) - MOST_CANDIDATES)
     return Draft(netlist.top, tuple(candidates), tuple(map(tuple, exits)), passed_over, proposal, because)
@@ -56,13 +57,14 @@ def _settle_all(ground: Ground, loops: Sequence[Loop], start: Sequence[Constant]
     return sorted(candidates, key=lambda c: (c.facts is None, c.compacts, -c.size, c.elements))
 
 
-def _exits(ground: Ground, registers: Sequence[Candidate]) -> list[Exit]:
+def _exits(ground: Ground, registers: Sequence[Candidate]) -> tuple[list[Exit], list[int]]:
+    """Return the nets that can be channels of some registers, and the storage of the pipelines in between."""
     known = {**TIES, **{c.net: c.value for register in registers for c in register.constants}}
     spread(ground.wiring, known, list(known))
     inside = [k for register in registers for k in register.elements]
     starts = [net for register in registers for net in register.outputs]
-    found = find_exits(ground.wiring, ground.ports, known, inside, starts)
-    return _fit(found)
+    found, pipelines = find_exits(ground.wiring, ground.ports, known, inside, starts)
+    return _fit(found), pipelines
 
 
 def _fit(exits: list[Exit]) -> list[Exit]:
@@ -90,10 +92,10 @@ def _choose(
         if 2 * len(exits[k]) > len(exits[best]):
             return None, f"registers {best + 1} and {k + 1} need different modes or clocks, and each has channels"
     if len(together) > 1:
-        proposal, _ = _prove(ground, candidates, together, _exits(ground, [candidates[k] for k in together]))
+        proposal, _ = _prove(ground, candidates, together)
         if proposal:
             return proposal, ""
-    return _prove(ground, candidates, [best], exits[best])
+    return _prove(ground, candidates, [best])
 
 
 def _is_wider(candidates: Sequence[Candidate], k: int) -> bool:
@@ -108,18 +110,19 @@ def _forced(candidate: Candidate) -> int:
 
 
 def _agree(chosen: Sequence[Candidate], other: Candidate) -> bool:
-    """Tell whether a register runs under the mode and the clock of the others."""
+    """Tell whether a register runs under the mode and the clock of the others, but for constants of ports."""
     given = {c.net: c.value for candidate in chosen for c in candidate.constants}
-    return other.clock == chosen[0].clock and all(given.get(c.net, c.value) == c.value for c in other.constants)
+    agree = all(given[c.net] == c.value if c.net in given else c.is_port for c in other.constants)
+    return agree and other.clock == chosen[0].clock
 
 
-def _prove(
-    ground: Ground, candidates: Sequence[Candidate], chosen: Sequence[int], exits: Sequence[Exit]
-) -> tuple[Proposal | None, str]:
+def _prove(ground: Ground, candidates: Sequence[Candidate], chosen: Sequence[int]) -> tuple[Proposal | None, str]:
     """Audit the chosen registers in the whole netlist and keep the channels that come out linear."""
     netlist = ground.wiring.netlist
     registers = [candidates[k] for k in chosen]
+    exits, pipelines = _exits(ground, registers)
     constants = list({c.net: c for register in registers for c in register.constants}.values())
+    constants = complete(ground, registers, pipelines, constants)
     names = [e.port or netlist.net_names[e.net] for e in exits]
     if not names:
         return None, "nothing leaves the registers"
@@ -165,7 +168,7 @@ def _channel_cure(
 
 def _linear(attempt: Attempt) -> int:
     """Return how many rows are linear and read a register."""
-    return sum(bool(row.taps) for row in attempt.machine.observed) if attempt.machine else -1
+    return sum(bool(row.taps) and not row.cut_from for row in attempt.machine.observed) if attempt.machine else -1
 
 
 def _lone(exits: Sequence[Exit], names: Sequence[str], rows: Mapping[str, ObservedRow]) -> set[str]:
