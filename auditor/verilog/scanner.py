@@ -1,19 +1,18 @@
 """The fast lane: regular expressions over statements, which read all that is plain and leave the rest waiting.
 
-Gate-level text is almost all plain instances, so one compiled pattern reads a whole instance and the loop over
-them does nothing else. Every other statement is cut into items, each tried as plain once more; what is not plain
-waits in its draft for the grammar lane.
+Plain instances are read one behind the other (``instances``). Every other statement is cut into items, each tried as
+plain once more; what is not plain waits in its draft for the grammar lane.
 """
 
 import re
 from bisect import bisect_right
 from collections.abc import Callable, Container
-from itertools import repeat
 from typing import NamedTuple
 
 from auditor.errors import TroubleList
 from auditor.verilog.draft import Draft
-from auditor.verilog.items import BOUNDS, NAMED_BODY, NET_KINDS, PINS, Items, connect, direction_and_kind, instantiate
+from auditor.verilog.instances import PlainInstances
+from auditor.verilog.items import BOUNDS, NET_KINDS, Items, direction_and_kind
 from auditor.verilog.plain import (
     GATES,
     MAX_DEPTH,
@@ -21,23 +20,12 @@ from auditor.verilog.plain import (
     RESERVED,
     SPACE,
     DepthError,
-    NotPlainError,
-    PlainNames,
-    PlainPins,
-    PlainValues,
     plain_name,
 )
-from auditor.verilog.statements import Connection, Range, Reading
+from auditor.verilog.statements import Range, Reading
 from auditor.verilog.text import SourceText
 
 S = SPACE
-_POSITION = r"(?>[^(),{}\\;.]++|\\\S++\s)++"
-_POSITIONS = re.compile(_POSITION)
-_INSTANCE = re.compile(rf"{S}({NAME}){S}({NAME}|){S}\((?:({NAMED_BODY})|({_POSITION}(?:,{_POSITION})*+))\){S};")
-# Without brackets in names, so that a connection can be cut at its own.
-_BARE = r"[A-Za-z_][\w$]*+"
-_TIE = rf"\.{_BARE}{S}\([^()\\;]*+(?:\\[^\s();]++\s[^()\\;]*+)*+\)"
-_COMMON = re.compile(rf"{S}({_BARE})\s++({_BARE}|\\\S++\s){S}\(({S}{_TIE}(?:{S},{S}{_TIE})*+){S}\){S};")
 _WORD = re.compile(rf"{S}(?:([A-Za-z_][\w$]*+)|(\\\S++\s)|(.))")
 _STATEMENT = re.compile(r'(?>[^;\\"]++|\\\S++\s|"(?:[^"\\\n]|\\.)*+")*+;')
 _MODULE_WORD = re.compile(r"\\\S++|\b(endmodule|module|macromodule)\b")
@@ -50,7 +38,7 @@ _NAME_LIST = re.compile(
     rf"{S}(?:(input|output|inout)\b{S}(?:(wire|tri|logic)\b{S})?|(wire|tri|logic|supply0|supply1)\b{S})(?:{BOUNDS}{S})?"
     rf"({NAME}{S}(?:,{S}{NAME}{S})*+);"
 )
-_BARE_NAME = re.compile(rf"{_BARE}|\\\S++")
+_BARE_NAME = re.compile(r"[A-Za-z_][\w$]*+|\\\S++")
 
 
 class Scanned(NamedTuple):
@@ -70,8 +58,8 @@ def scan(
     return _Scanner(source, troubles, reading, plain, cells).run()
 
 
-class _Scanner:
-    """Where the scan stands in one text; ``counted`` is the position up to which lines are counted.
+class _Scanner(PlainInstances):
+    """Where the scan stands in one text.
 
     Within a module ``line`` counts as the module does: less by the ``shift`` of its draft.
     """
@@ -79,12 +67,10 @@ class _Scanner:
     def __init__(
         self, source: SourceText, troubles: TroubleList, reading: Reading, plain: bool, cells: Container[str]
     ) -> None:
-        self.source, self.text, self.troubles, self.reading, self.plain = source, source.text, troubles, reading, plain
-        self.position, self.counted, self.line = 0, 0, 1
+        super().__init__(source.text)
+        self.source, self.troubles, self.reading, self.plain = source, troubles, reading, plain
         self.primitives: list[str] = []
         self.cells, self.timed = cells, set[str]()
-        self.names, self.values = PlainNames(), PlainValues()
-        self.pins = PlainPins(self.names)
         self.items = Items(self.names, self.values)
         self.drafts: list[Draft] = []
         self.draft: Draft | None = None
@@ -93,11 +79,11 @@ class _Scanner:
         """Read the whole text."""
         while True:
             if self.draft and self.draft.plain and not self.draft.described:
-                self._plain_instances(self.draft)
+                self.plain_instances(self.draft)
             match = _WORD.match(self.text, self.position)
             if not match:
                 break
-            line = self._line_at(match.start(match.lastindex or 0))
+            line = self.line_at(match.start(match.lastindex or 0))
             try:
                 self._statement(match, line)
             except DepthError as error:
@@ -109,63 +95,6 @@ class _Scanner:
             )
             self._close()
         return Scanned(self.drafts, self.primitives)
-
-    def _plain_instances(self, draft: Draft) -> None:
-        """Read plain instances as long as they follow each other."""
-        while True:
-            self._common_instances(draft)
-            if not self._plain_instance(draft):
-                return
-
-    def _common_instances(self, draft: Draft) -> None:
-        """Read instances of the most common form: the loop that a large netlist spends its time in."""
-        text, names = self.text, self.names
-        pin, value = self.pins.__getitem__, self.values.__getitem__
-        position, counted, line = self.position, self.counted, self.line
-        match_instance, count, append = _COMMON.match, text.count, draft.instances.append
-        new, kinds = tuple.__new__, repeat(Connection)  # faster than a call for each connection
-        while match := match_instance(text, position):
-            cell, name, body = match.groups()
-            if name in RESERVED:
-                break
-            # No bracket stands in a pin or a value: between them stand in turn what names a pin and a value.
-            parts = body.replace(")", "(").split("(")
-            try:
-                pairs = zip(map(pin, parts[:-1:2]), map(value, parts[1::2]), strict=False)
-                connections = tuple(map(new, kinds, pairs))
-                cell = names[cell]
-            except NotPlainError:
-                break
-            start = match.start(1)
-            line += count("\n", counted, start)
-            counted = start
-            own = plain_name(name) if name[0] == "\\" else name
-            append(instantiate((cell, own, connections, line, False, None)))
-            position = match.end()
-        self.position, self.counted, self.line = position, counted, line
-
-    def _plain_instance(self, draft: Draft) -> bool:
-        """Read one plain instance of any form, if one is here."""
-        match = _INSTANCE.match(self.text, self.position)
-        if not match:
-            return False
-        cell, name, named, by_position = match.groups()
-        primitive = cell in GATES
-        if (cell in RESERVED and not (primitive and by_position)) or name in RESERVED:
-            return False
-        names, values = self.names, self.values
-        try:
-            if named:
-                connections = tuple([connect((names[pin], values[value])) for pin, value in PINS.findall(named)])
-            else:
-                connections = tuple([connect((None, values[value])) for value in _POSITIONS.findall(by_position)])
-        except NotPlainError:
-            return False
-        line = self._line_at(match.start(1))
-        cell = cell if primitive else names[cell]
-        draft.instances.append(instantiate((cell, plain_name(name), connections, line, primitive, None)))
-        self.position = match.end()
-        return True
 
     def _statement(self, match: re.Match[str], line: int) -> None:
         """Read the statement whose first word was matched."""
@@ -278,7 +207,7 @@ class _Scanner:
         word, port_kind, kind, left, right, names = match.groups()
         direction, kind = direction_and_kind(word or kind, port_kind)
         bounds = Range(int(left), int(right)) if left else None
-        line = self._line_at(match.start(6))
+        line = self.line_at(match.start(6))
         for number, chunk in enumerate(names.split("\n"), line):
             written = _BARE_NAME.findall(chunk)
             if not RESERVED.isdisjoint(written):
@@ -320,12 +249,6 @@ class _Scanner:
     def _skip_past(self, pattern: re.Pattern[str]) -> None:
         match = _find(pattern, self.text, self.position)
         self.position = match.end() if match else len(self.text)
-
-    def _line_at(self, position: int) -> int:
-        """Return the line of a position not before the last one asked for."""
-        self.line += self.text.count("\n", self.counted, position)
-        self.counted = position
-        return self.line
 
     def _trouble(self, found: str, remedy: str, line: int) -> None:
         place = self.draft.place_of(line) if self.draft else self.source.spans.place(line)
