@@ -7,6 +7,7 @@ from typing import NamedTuple
 from auditor.array.capture import circuit_under_test
 from auditor.array.circuit import Circuit, LoadedCell
 from auditor.array.loading import Loading, find_loading
+from auditor.cone.cone import Cone
 from auditor.cone.extract import extract_cone
 from auditor.cone.wiring import connect
 from auditor.machine.machine import LinearMachine
@@ -18,6 +19,7 @@ from tests.support.cones import library
 
 
 class UnderTest(NamedTuple):
+    cone: Cone
     machine: LinearMachine
     cells: list[LoadedCell]
     circuit: Circuit
@@ -43,4 +45,4 @@ def under_test(
     constants = {"scan_en": 0} if capture is None else capture
     generator = {name: k for k, name in enumerate(machine.storage)}
     circuit = circuit_under_test(connect(netlist, library()), constants, [cell.name for cell in cells], generator)
-    return UnderTest(machine, cells, circuit, find_loading(machine, cells, list(circuit.generator.values())))
+    return UnderTest(cone, machine, cells, circuit, find_loading(machine, cells, list(circuit.generator.values())))
