@@ -237,12 +237,14 @@ NO_OPTION = "is no option of auditor audit"
         (["a.v"], "a.v is no command of auditor", "write auditor audit NETLIST..., or see --help"),
         (["audit"], "no netlist is given", "name a Verilog file, or give --plan F"),
         (["audit", "a.v", "--chanels", "x"], f"--chanels {NO_OPTION}",
-         "did you mean --channels or --cells or --chain-length?"),
+         "did you mean --channels or --chains or --cells?"),
         (["audit", "a.v", "--html=x"], f"--html=x {NO_OPTION}", "see auditor audit --help"),
         (["audit", "a.v", "--top"], "--top has no value", "give it one, or leave it out"),
         (["audit", "a.v", "--top", ""], "--top is empty", "give it a value, or leave it out"),
         (["audit", ""], "the name of a netlist is empty", "give it a value, or leave it out"),
         (["audit", "a.v", "--mode", "x=2"], "--mode x=2 does not hold a net at 0 or 1", ONE_OR_THE_OTHER),
+        (["audit", "a.v", "--capture", "x"], "--capture x does not hold a net at 0 or 1",
+         "write --capture NET=0 or --capture NET=1"),
         (["audit", "a.v", "--mode", "x=0", "--mode", "x=1"], "--mode holds x at 0 and at 1", "keep one of the two"),
         (["audit", "a.v", "--limit", "fanout=2"], "--limit fanout=2 names no limit", "did you mean fan_out?"),
         (["audit", "a.v", "--limit", "q"], "--limit q names no limit",
@@ -326,9 +328,9 @@ def test_help_and_version(capsys: pytest.CaptureFixture[str]) -> None:
     assert cli.run(["audit", "--help"]) == 0
     out = capsys.readouterr().out
     for option in ("--plan", "--cells", "--top", "--mode", "--channels", "--reference", "--chain-length", "--limit",
-                   "--fail-at", "--work-limit", "--json", "--quiet"):  # fmt: skip
+                   "--fail-at", "--work-limit", "--json", "--quiet", "--capture"):  # fmt: skip
         assert option in out
-    for later in ("--html", "--sarif", "--chains", "--capture", "--old"):
+    for later in ("--html", "--sarif", "--old"):
         assert later not in out
 
 

@@ -113,8 +113,8 @@ def test_unknown_names_suggest_known_ones(tmp_path: Path) -> None:
     )
     text += 'reason = "c"\nuntil = 1\n'
     assert troubles(tmp_path, "size = 1\n" + text) == [
-        "plan.toml:1: unknown key size in the plan; use one of netlist, mode, channels, chains, patterns, limits, "
-        "waivers, capture, claims, seeds, or remove it",
+        "plan.toml:1: unknown key size in the plan; use one of netlist, mode, capture, channels, chains, patterns, "
+        "array, limits, seeds, waivers, claims, or remove it",
         "plan.toml:2: unknown key netlst in the plan; did you mean netlist?",
         "plan.toml:5: unknown key lenght in [chains]; did you mean length?",
         "plan.toml:7: unknown key zzz in [limits]; use one of separation, fan_out, taps, depth, or remove it",
@@ -124,19 +124,50 @@ def test_unknown_names_suggest_known_ones(tmp_path: Path) -> None:
 
 def test_parts_that_come_later_are_refused(tmp_path: Path) -> None:
     """What the plan may hold one day is never ignored in silence."""
-    text = "[mode]\nscan_en = 0\n[capture]\na = 1\n[claims]\n[seeds]\n"
-    text += (
-        '[netlist]\n\n[chains]\nfile = "c.csv"\nscan_outputs = ["x"]\n'
-        '[patterns]\ncount = 1\nshift_cycles = 1\nlaunch = "shift"\n'
+    text = "[mode]\nscan_en = 0\n[claims]\n"
+    assert troubles(tmp_path, text) == ["plan.toml:3: [claims] comes with a later version of auditor; remove it"]
+
+
+def test_capture_and_launch_are_read(tmp_path: Path) -> None:
+    """A section [capture], empty or not, asks about the circuit under test; a launch by shift makes tests two-cycle."""
+    plan = tmp_path / "plan.toml"
+    plan.write_text("[mode]\nscan_en = 1\n")
+    assert read_plan(plan).capture is None
+    plan.write_text("[capture]\n")
+    assert read_plan(plan).capture == {}
+    plan.write_text('[capture]\nscan_en = 0\n"u.t" = 1\n[patterns]\ncount = 5\nshift_cycles = 3\nlaunch = "shift"\n')
+    assert read_plan(plan).capture == {"scan_en": 0, "u.t": 1}
+    assert read_plan(plan).patterns == Patterns(5, 3, launch="shift")
+    assert troubles(tmp_path, '[capture]\nscan_en = "0"\n[patterns]\ncount = 1\nshift_cycles = 1\nlaunch = "x"\n') == [
+        "plan.toml:2: scan_en in [capture] must be 0 or 1; write the constant as 0 or 1, without quotes",
+        'plan.toml:6: launch in [patterns] must be "none" or "shift"; write launch = "none" or "shift"',
+    ]
+
+
+def test_chains_and_seeds_are_read(tmp_path: Path) -> None:
+    """Chains come from a length, a file or scan outputs; seeds are hexadecimal states; relations 3 or 4."""
+    (tmp_path / "plan.toml").write_text(
+        '[chains]\nfile = "chains.csv"\n[array]\nrelations = 4\n[seeds]\nfirst = "1F"\nsecond = "000a"\n'
+        "[patterns]\ncount = 5\nshift_cycles = 3\ntwin_window = 2\n"
     )
-    later = "comes with a later version of auditor"
+    plan = read_plan(tmp_path / "plan.toml")
+    assert (plan.chain_file, plan.chain_length, plan.scan_outputs) == (tmp_path / "chains.csv", None, ())
+    assert (plan.relations, plan.seeds) == (4, {"first": 0x1F, "second": 10})
+    assert plan.patterns == Patterns(5, 3, twin_window=2)
+    (tmp_path / "plan.toml").write_text('[chains]\nscan_outputs = ["so", "misr_in"]\n')
+    assert read_plan(tmp_path / "plan.toml").scan_outputs == ("so", "misr_in")
+
+
+def test_wrong_chains_and_seeds_are_told(tmp_path: Path) -> None:
+    """Chains told twice, a number of cells that is neither three nor four, a state that is no hexadecimal text."""
+    text = '[chains]\nlength = 5\nfile = "c.csv"\n[array]\nrelations = 5\n[seeds]\na = 31\nb = "0x1f"\nc = ""\n'
+    state = "must be a state in hexadecimal digits; write"
     assert troubles(tmp_path, text) == [
-        f"plan.toml:3: [capture] {later}; remove it",
-        f"plan.toml:5: [claims] {later}; remove it",
-        f"plan.toml:6: [seeds] {later}; remove it",
-        f"plan.toml:10: file in [chains] {later}; remove it or state [chains] length",
-        f"plan.toml:11: scan_outputs in [chains] {later}; remove it or state [chains] length",
-        f'plan.toml:15: launch = "shift" in [patterns] {later}; remove it or write launch = "none"',
+        "plan.toml:3: [chains] tells the chains by length and by file; keep one of them",
+        "plan.toml:5: relations in [array] must be a whole number from 3 to 4; write relations = N",
+        f'plan.toml:7: a in [seeds] {state} a = "1f"',
+        f'plan.toml:8: b in [seeds] {state} b = "1f"',
+        f'plan.toml:9: c in [seeds] {state} c = "1f"',
     ]
 
 

@@ -34,7 +34,8 @@ def trace_chains(outputs: Cone, cone: Cone) -> ScanArray:
 
     ``cone`` is that of the channels, over the same netlist. Raises ``InputError`` with everything that is no chain.
     """
-    tracer = _Tracer(outputs, {channel.wire: channel.name for channel in cone.channels if channel.constant is None})
+    channels = {channel.wire: channel.name for channel in cone.channels if channel.constant is None}
+    tracer = _Tracer(outputs, channels, 0 if outputs.clock_edge == cone.clock_edge else 2)
     chains = [chain for end in tracer.ends() if (chain := tracer.chain(end))]
     tracer.troubles.raise_any()
     if not chains:
@@ -45,10 +46,11 @@ def trace_chains(outputs: Cone, cone: Cone) -> ScanArray:
 
 @dataclass(slots=True)
 class _Tracer:
-    """``channels``: the wire of each channel → its name."""
+    """``channels``: the wire of each channel → its name; ``turned``: steps from the outputs' count to the channels'."""
 
     outputs: Cone
     channels: Mapping[int, str]
+    turned: int
     gates: dict[int, Gate] = field(init=False)
     elements: dict[int, StorageElement] = field(init=False)
     troubles: TroubleList = field(default_factory=TroubleList)
@@ -105,7 +107,7 @@ class _Tracer:
         before: StorageElement | None = None
         for link in reversed(links):
             element = link.element
-            same_cycle = {_in_the_same_cycle(one, element) for one in ([before] if before else sources)}
+            same_cycle = {self._in_the_same_cycle(one, element) for one in ([before] if before else sources)}
             if len(same_cycle) > 1:
                 place = self.outputs.netlist.instance_place(element.instance)
                 self.troubles.add(
@@ -124,6 +126,11 @@ class _Tracer:
             return Chain(channel, len(cells), tuple(cells))
         self.troubles.add(f"the chain behind channel {channel} holds latches alone", "name the chain's scan cells")
         return None
+
+    def _in_the_same_cycle(self, source: StorageElement, taker: StorageElement) -> bool:
+        """Whether the taker gets what its source took in the same cycle."""
+        given, taken = ((element.step + self.turned) % 4 for element in (source, taker))
+        return given < taken or (given == taken and given % 2 == 1)
 
     def _stored_behind(self, wire: int) -> list[StorageElement]:
         """Return the elements that a channel reads."""
@@ -167,8 +174,3 @@ class _Tracer:
 def _inverts(function: Function) -> bool:
     """Whether a function of one wire is its complement."""
     return truth_table(function) == _INVERTER
-
-
-def _in_the_same_cycle(source: StorageElement, taker: StorageElement) -> bool:
-    """Whether the taker gets what its source took in the same cycle."""
-    return source.step < taker.step or (source.step == taker.step and source.step % 2 == 1)

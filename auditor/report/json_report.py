@@ -78,6 +78,8 @@ def _asked(plan: Plan) -> Json:
         "scan_outputs": list(plan.scan_outputs),
         "relations": plan.relations,
         "fail_at": plan.fail_at,
+        "work_limit": _decimal(plan.work_limit),
+        "time_limit": plan.time_limit,
     }
 
 

@@ -34,7 +34,9 @@ def test_the_top_level_names_stand_in_the_agreed_order():
               "channels", "flip_flops", "findings", "assumed", "undecided"]  # fmt: skip
     report = report_of(small_facts())
     assert [key for key in report if key in agreed] == agreed
-    assert set(report) - set(agreed) == {"top", "asked", "clock", "cut_nets", "cautions"}
+    assert set(report) - set(agreed) == {
+        "top", "asked", "clock", "cut_nets", "cautions", "array", "without_shifter", "seeds"
+    }  # fmt: skip
     assert report["cautions"] == list(CAUTIONS)
 
 
@@ -233,11 +235,16 @@ def test_what_was_asked_stands_beside_the_answers():
             "shift_cycles": "200",
             "capture_cycles": "1",
             "generator_in_capture": "advances",
+            "twin_window": 0,
         },
+        "scan_outputs": [],
+        "relations": None,
         "fail_at": "warning",
     }
     nothing = {"chain_length": None, "limits": dict.fromkeys(("separation", "fan_out", "taps", "depth"))}
-    assert report_of(replace(facts, plan=Plan(())))["asked"] == {**nothing, "patterns": None, "fail_at": "error"}
+    assert report_of(replace(facts, plan=Plan(())))["asked"] == {
+        **nothing, "patterns": None, "scan_outputs": [], "relations": None, "fail_at": "error"
+    }  # fmt: skip
 
 
 def test_named_modes_stand_in_a_list_under_the_worst_verdict():

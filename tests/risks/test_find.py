@@ -25,7 +25,8 @@ CONTRACT = {
     "constant-channel": "error", "not-affine": "error", "free-input": "note", "period-short-of-maximum": "warning",
     "period-short-of-test": "error", "resets-into-lock-up": "error", "no-reset-and-no-load": "warning",
     "registers-in-step": "error", "fan-out-over-limit": "warning", "taps-over-limit": "warning",
-    "depth-over-limit": "warning", "forced-net": "note",
+    "depth-over-limit": "warning", "forced-net": "note", "scan-cells-twinned": "error", "scan-cell-relation": "note",
+    "patterns-repeat": "error", "seeds-overlap": "error", "seed-in-lock-up": "error",
 }  # fmt: skip
 
 
