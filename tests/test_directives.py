@@ -87,3 +87,15 @@ def test_a_pulled_net_that_nothing_drives_is_refused(tmp_path: Path) -> None:
     (tmp_path / "n.v").write_text(text)
     with pytest.raises(InputError, match="net p inside the cone has no driver"):
         audit(Plan(netlists=(tmp_path / "n.v",), cells=CELLS, channels=("so[0]",)))
+
+
+def test_models_beside_a_netlist_may_be_behavioural(tmp_path: Path) -> None:
+    """A flip-flop that the library describes may have a model in the netlist's own text: only its ports count there."""
+    model = (
+        "module km_dffs(CK, SN, D, Q);\ninput CK, SN, D; output Q; reg Q;\n"
+        "always @(posedge CK or negedge SN) if (!SN) Q <= 1; else Q <= D;\nendmodule\n"
+    )
+    (tmp_path / "stage.vh").write_text(model + _MACRO)
+    machine = _facts_of(tmp_path, "wire n;\n").extraction.machine
+    assert machine is not None
+    assert len(machine.storage) == 4
