@@ -1,5 +1,6 @@
 """Where the streams of a register leave it: output ports and shift registers that XORs and pipelines of it feed."""
 
+from collections import deque
 from collections.abc import Container, Iterable, Mapping
 from dataclasses import dataclass, field
 from typing import NamedTuple
@@ -58,9 +59,9 @@ class _Way:
     def follow(self, starts: Iterable[int]) -> None:
         """Walk on from the registers' outputs."""
         self.reached = dict.fromkeys((net for net in starts if net not in self.known), 0)
-        waiting = list(self.reached)
+        waiting = deque(self.reached)
         while waiting and len(self.reached) < MOST_NETS:
-            net = waiting.pop(0)
+            net = waiting.popleft()
             for instance, pin in loads(self.wiring, net):
                 cell = self.wiring.cell(instance)
                 if cell is None or cell.not_understood or instance in self.inside:
