@@ -32,8 +32,8 @@ def _between(evidence: Evidence, scan: ScanArray, twins: Twins, most: TwinChains
     return finding(
         "scan-cells-twinned",
         names,
-        f"In every pattern {_pairs(twins.pairs)} of scan cells in {decimal(twins.chain_pairs)} pairs of chains hold "
-        "the same bit or opposite ones, so a fault that needs another combination in one of these pairs is never "
+        f"In every pattern {_pairs(twins.pairs)} of scan cells in {_pairs(twins.chain_pairs)} of chains hold the same "
+        "bit or opposite ones, so a fault that needs another combination in one of these pairs is never "
         "detected.",
         {
             "pairs": decimal(twins.pairs),

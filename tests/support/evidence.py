@@ -6,12 +6,15 @@ from typing import Any
 import networkx as nx
 import numpy as np
 
-from auditor.cells.library import Function
+from auditor.array.find import find_array
+from auditor.array.scan_array import ScanArray
+from auditor.cells.library import CellLibrary, Function
 from auditor.cone.cone import Channel, Cone, Load, StorageElement
 from auditor.gf2.matrix import ones
 from auditor.machine.machine import Extraction, LinearMachine, ObservedRow, Refusal, Tap
 from auditor.netlist.netlist import Netlist
 from auditor.phases.find import find_phases
+from auditor.phases.table import PhaseTable
 from auditor.plan import Plan
 from auditor.risks.evidence import Evidence
 
@@ -24,19 +27,33 @@ def evidence(
     refusals: tuple[Refusal, ...] = (),
     loads: tuple[Load, ...] = (),
     proved: bool = True,
+    scan: ScanArray | None = None,
     **stated: Any,
 ) -> Evidence:
     """Return the evidence of an audit of this machine; ``stated`` are fields of the plan.
 
-    A channel's taps are the elements that its row reads. With ``proved`` False the machine is refused.
+    A channel's taps are the elements that its row reads. With ``proved`` False the machine is refused. The scan array
+    is looked at where ``scan`` gives its chains or the plan has seeds.
     """
     machine = replace(machine, observed=tuple(map(_tapped, machine.observed)))
+    plan, cone = Plan(netlists=(), **stated), _cone(machine, loads)
+    phases, array = find_phases(machine) if proved else None, None
+    if phases and (scan or plan.seeds):
+        without_gates = replace(cone, feedback=())
+        array = find_array(
+            plan, without_gates, CellLibrary({}), machine, phases, scan, _solved, lambda _: None
+        )  # fmt: skip
     return Evidence(
-        plan=Plan(netlists=(), **stated),
-        cone=_cone(machine, loads),
+        plan=plan,
+        cone=cone,
         extraction=Extraction(machine if proved else None, refusals),
-        phases=find_phases(machine) if proved else None,
+        phases=phases,
+        array=array,
     )
+
+
+def _solved(machine: LinearMachine, window: int) -> PhaseTable:
+    return find_phases(machine, window=window)
 
 
 def _tapped(observed: ObservedRow) -> ObservedRow:
