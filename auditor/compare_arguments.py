@@ -38,9 +38,9 @@ def read_compare_arguments(words: Sequence[str]) -> CompareRequest:
     troubles = TroubleList()
     named, by_side = _sorted_words(words, troubles)
     if len(named) != len(SIDES):
-        found = f"{len(named)} revisions are named" if named else "no revision is named"
+        count = {0: "no revision is", 1: "one revision is"}.get(len(named), f"{len(named)} revisions are")
         remedy = "write auditor compare OLD NEW; further netlists go to --old-netlist or --new-netlist"
-        troubles.add(found, remedy, COMMAND_LINE)
+        troubles.add(f"{count} named", remedy, COMMAND_LINE)
     requests = []
     for side, name in zip(SIDES, (*named, "", "")[: len(SIDES)], strict=True):
         subject = [f"--plan={name}"] if name.endswith(".toml") else [name] if name else []
@@ -76,7 +76,7 @@ def _sorted_words(words: Sequence[str], troubles: TroubleList) -> tuple[list[str
         elif side and plain == "--netlist":
             by_side[side].append(value)
         else:
-            by_side[side].append(f"{plain}{equals}{value}")
+            by_side[side] += [plain, value] if equals and not value.startswith("-") else [f"{plain}{equals}{value}"]
     return named, by_side
 
 

@@ -9,7 +9,10 @@ from rich.console import Console
 
 from auditor.audit import audit_modes
 from auditor.cells.read import read_cells
+from auditor.compare import compare_plans
+from auditor.plan import Plan
 from auditor.plan_file import read_plan
+from auditor.report.comparison_terminal import print_comparisons
 from auditor.report.terminal import print_audits
 
 ROOT = Path(__file__).parents[1]
@@ -33,6 +36,21 @@ def test_the_screen_is_a_real_one() -> None:
     shown = next(block for block in blocks("text") if block.startswith("Verdict"))
     for line in shown.splitlines():
         assert line == "  …" or line in real, f"not in the report, or not in this order: {line}"
+
+
+def test_the_comparison_is_a_real_one() -> None:
+    """The comparison in README is, line by line, the one that the tool prints on those two samples."""
+    screen = io.StringIO()
+    with chdir(ROOT):
+        plans = [
+            Plan(netlists=(Path(f"sample_netlists/{name}.v"),), cells=(Path("sample_netlists/kelp90.lib"),))
+            for name in ("phase_shifter", "revisions/moved_tap")
+        ]
+        found = compare_plans(*plans)
+    console = Console(file=screen, width=118, force_terminal=True, color_system=None, highlight=False)
+    print_comparisons(found, console)
+    shown = next(block for block in blocks("text") if block.startswith("Outcome"))
+    assert [line.rstrip() for line in screen.getvalue().splitlines()] == shown.splitlines()
 
 
 def test_the_plan_is_read(tmp_path: Path) -> None:

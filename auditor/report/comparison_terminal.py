@@ -1,6 +1,7 @@
 """A comparison on the terminal: what is the same is counted, what changed is listed."""
 
 from collections import Counter
+from collections.abc import Sequence
 
 from rich.console import Console
 
@@ -23,7 +24,7 @@ _MEANING = {
     "inverted": "some channels carry the complement of what they did",
     "reversed": "the channels carry the old streams backwards",
     "decimated": "the channels carry every d-th bit of the old streams",
-    "different": "no map of the states makes all streams agree",
+    "different": "the machines do not do the same under any one change that has a name",
     "undecided": "whether the streams agree is not decided",
 }
 _MOST_NAMES = 8
@@ -68,7 +69,7 @@ def _say_class(page: Page, compared: Compared) -> None:
     found = compared.comparison
     for side, facts in (("old", compared.old), ("new", compared.new)):
         page.entry(side, f"{facts.cone.netlist.top}, {_sources(facts)}; audit: {facts.verdict}")
-    page.entry("class", f"{found.name}: {'; '.join(_MEANING[part] for part in found.parts)}")
+    page.entry("class", f"{found.name}: {'; '.join(_MEANING[part] for part in found.parts)}{_share(found)}")
     if found.holds_from is not None:
         whole = "from cycle 0, for every state" if not found.holds_from else f"from cycle {found.holds_from} on"
         page.entry("holds", whole)
@@ -84,6 +85,16 @@ def _say_class(page: Page, compared: Compared) -> None:
         channel = witness.new_channel if witness.old_channel == witness.new_channel else names
         text = f"from OLD {states[0]} and NEW {states[1]} ({witness.start}) {channel} differs in cycle {witness.cycle}"
         page.entry("witness", f"{text}; confirmed on the gates of both")
+
+
+def _share(found: Comparison) -> str:
+    """Return how many channels still agree where not all do."""
+    same = sum(change.status == "same" for change in found.channels)
+    return (
+        f"; {same} of {plural(len(found.channels), 'channel')} carry the same stream"
+        if "different" in found.parts
+        else ""
+    )
 
 
 def _sources(facts: AuditFacts) -> str:
@@ -119,12 +130,12 @@ def _say_causes(page: Page, found: Comparison) -> None:
     if not found.changed_nets:
         return
     page.heading("Where the change stands: drivers that changed while all they read kept its function")
-    columns = [Column("net"), Column("instance"), Column("cell"), Column("place"), Column("moves")]
+    columns = [Column("net"), Column("instance"), Column("cell"), Column("moves"), Column("place")]
     rows = []
     for net in found.changed_nets[:MOST_ROWS]:
         moves = [f"channel {bounded(net.feeds, _MOST_NAMES)}"] if net.feeds else []
         moves += [f"row of A of {bounded(net.rows, _MOST_NAMES)}"] if net.rows else []
-        cells = (net.net, net.instance or "(the connection)", net.cell or EMPTY, str(net.place), "; ".join(moves))
+        cells = (net.net, net.instance or "(the connection)", net.cell or EMPTY, "; ".join(moves), str(net.place))
         rows.append(Row(cells))
     page.table(columns, rows)
     _say_more(page, len(found.changed_nets), "driver")
@@ -144,7 +155,7 @@ def _say_channels(page: Page, found: Comparison) -> None:
     if not changed:
         return
     columns = [Column("channel"), Column("status"), Column("shift", True), Column("separation old", True),
-               Column("separation new", True), Column("taps old"), Column("taps new")]  # fmt: skip
+               Column("separation new", True), Column("taps lost"), Column("taps gained")]  # fmt: skip
     page.table(columns, [_channel_row(change) for change in changed[:MOST_ROWS]])
     _say_more(page, len(changed), "changed channel")
 
@@ -159,9 +170,15 @@ def _channel_row(change: ChannelChange) -> Row:
     if change.carries:
         status += f": carries old {change.carries}"
     apart = [decimal(f.separation) if f and f.separation is not None else EMPTY for f in (change.before, change.after)]
-    taps = ["  ".join(facts.taps) or EMPTY if facts else EMPTY for facts in (change.before, change.after)]
+    before, after = (facts.taps if facts else () for facts in (change.before, change.after))
+    taps = (_taps([tap for tap in before if tap not in after]), _taps([tap for tap in after if tap not in before]))
     shift = _shift(change.shift) if change.shift else EMPTY
     return Row((name, status, shift, *apart, *taps))
+
+
+def _taps(taps: Sequence[str]) -> str:
+    more = f" and {len(taps) - _MOST_NAMES} more" if len(taps) > _MOST_NAMES else ""
+    return "  ".join(taps[:_MOST_NAMES]) + more or EMPTY
 
 
 def _say_findings(page: Page, found: Comparison) -> None:

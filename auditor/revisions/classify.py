@@ -7,6 +7,7 @@ the flip-flops of both registers have the same names and these make a map of the
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field, replace
 
+from auditor.gf2.effort import Effort
 from auditor.notation import Vector
 from auditor.revisions.align import Alignment, RowPair, agreeing, align, align_registers
 from auditor.revisions.comparison import ChannelStatus
@@ -80,6 +81,7 @@ class Question:
     names: Sequence[Pair]
     least: int
     leads: tuple[Mapping[int, tuple[int, int]], Mapping[int, tuple[int, int]]] = field(default=({}, {}))
+    effort: Effort = field(default_factory=Effort)
 
     def rows(self) -> list[RowPair]:
         """Return the rows of the pairs."""
@@ -107,7 +109,7 @@ def classify(question: Question) -> Classified:
             turn = _turn(question, named, permuted)
             best = agreeing(permuted, rows)
         elif not (named and best.inverted) and (
-            decimation := find_decimation(question.old.step, question.new.step, rows)
+            decimation := find_decimation(question.old.step, question.new.step, rows, question.effort)
         ):
             found = [Relation("different", None, decimation.inverted.get(place)) for place in range(len(rows))]
             return Classified(question.pairs, tuple(found), None, decimation)
@@ -121,7 +123,7 @@ def _one_shift(question: Question, named: Relations) -> bool:
     """Whether the first channel is a shift of its old self under the map of the names."""
     old, new = question.rows()[0]
     base = named.to_new(old)
-    found = shifts(question.new.step, [(base, new)])[0] if base is not None else None
+    found = shifts(question.new.step, [(base, new)], (), question.effort)[0] if base is not None else None
     return bool(found and found.cycles)
 
 
@@ -130,7 +132,7 @@ def _turn(question: Question, named: Relations | None, permuted: Relations) -> i
     row = next(old for old, _ in question.rows() if old > 1)
     if named is None or (base := named.to_new(row)) is None or (image := permuted.to_new(row)) is None:
         return 0
-    found = shifts(question.new.step, [(base, image)])[0]
+    found = shifts(question.new.step, [(base, image)], (), question.effort)[0]
     return found.cycles or 0 if found else 0
 
 
@@ -154,7 +156,7 @@ def _relations(question: Question, best: Alignment) -> list[Relation]:
             open_places.append(place)
             pairs.append((base, new))
             hints.append(_hint(question, best, place))
-    for place, shift in zip(open_places, shifts(question.new.step, pairs, hints), strict=True):
+    for place, shift in zip(open_places, shifts(question.new.step, pairs, hints, question.effort), strict=True):
         found[place] = _shifted(shift)
     return [found[place] for place in range(len(rows))]
 

@@ -3,6 +3,7 @@
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 
+from auditor.gf2.effort import Effort
 from auditor.machine.machine import LinearMachine
 from auditor.phases.streams import read_streams
 from auditor.revisions.channels import changes, pairs_by_behaviour, pairs_by_name, pairs_under
@@ -36,6 +37,7 @@ from auditor.revisions.witness import followed_witness, reset_witness
 
 # Names of storage speak for a map of the states where so many of the registers' elements kept theirs.
 _NAMED_SHARE = 2
+_WITHOUT_BOUNDS = Effort()
 
 
 @dataclass(slots=True)
@@ -54,9 +56,12 @@ class _Result:
     remarks: tuple[str, ...] = ()
 
 
-def compare_revisions(old: Revision, new: Revision) -> Comparison:
-    """Compare two revisions under one mode; raises ``InternalError`` where a claim fails its proof."""
-    result = _compare_machines(old, new) if old.machine and new.machine else _refused(old, new)
+def compare_revisions(old: Revision, new: Revision, effort: Effort = _WITHOUT_BOUNDS) -> Comparison:
+    """Compare two revisions under one mode; raises ``InternalError`` where a claim fails its proof.
+
+    ``effort`` bounds the logarithms by which shifts are found.
+    """
+    result = _compare_machines(old, new, effort) if old.machine and new.machine else _refused(old, new)
     matched = _matched(old, new, result.elements)
     names = {old.cone.elements[other].name: new.cone.elements[k].name for k, (other, _, _) in matched.items()}
     names |= {old.cone.channels[i].name: new.cone.channels[j].name for i, j in result.related}
@@ -123,7 +128,7 @@ def _refused(old: Revision, new: Revision) -> _Result:
     )
 
 
-def _compare_machines(old: Revision, new: Revision) -> _Result:
+def _compare_machines(old: Revision, new: Revision, effort: Effort) -> _Result:
     machines = _machines(old, new)
     streams = read_streams(machines[0]), read_streams(machines[1])
     start = max(machine.transient for machine in machines)
@@ -142,13 +147,13 @@ def _compare_machines(old: Revision, new: Revision) -> _Result:
         lost = {p: Relation("refused") for p in refused}
         return _Result(parts, lost, dict.fromkeys(lost, "name"), {}, FromReset(None, "no channel in common"),
                        remarks=remarks)  # fmt: skip
-    classified = classify(_question(old, new, steadies, pairs))
+    classified = classify(_question(old, new, steadies, pairs, effort))
     related = dict(zip(classified.pairs, classified.found, strict=True)) | {p: Relation("refused") for p in refused}
     matched_by: dict[Pair, MatchedBy] = dict.fromkeys(related, by)
     relations = _trusted(classified)
     if relations:
         _add_by_behaviour(steadies, relations, related, matched_by)
-    reset = from_reset(machines, steadies, pairs, relations)
+    reset = from_reset(machines, steadies, pairs, relations, effort)
     names = machines[0].storage, machines[1].storage
     stored = relations if _agree(classified) else classified.storage or relations
     elements = matched_elements(*steadies, stored, names) if stored else {}
@@ -170,13 +175,15 @@ def _machines(old: Revision, new: Revision) -> tuple[LinearMachine, LinearMachin
     return old.machine, new.machine
 
 
-def _question(old: Revision, new: Revision, steadies: tuple[Steady, Steady], pairs: tuple[Pair, ...]) -> Question:
+def _question(
+    old: Revision, new: Revision, steadies: tuple[Steady, Steady], pairs: tuple[Pair, ...], effort: Effort
+) -> Question:
     registers = [
         {machine.storage[k]: k for register in machine.registers for k in register} for machine in _machines(old, new)
     ]
     names = [(k, registers[1][name]) for name, k in registers[0].items() if name in registers[1]]
     least = max(2, -(-max(map(len, registers)) // _NAMED_SHARE))
-    return Question(*steadies, pairs, names, least, (_leads(old), _leads(new)))
+    return Question(*steadies, pairs, names, least, (_leads(old), _leads(new)), effort)
 
 
 def _leads(revision: Revision) -> dict[int, tuple[int, int]]:

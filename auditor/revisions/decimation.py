@@ -8,6 +8,7 @@ from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
 from auditor.gf2 import matrix
+from auditor.gf2.effort import Effort
 from auditor.gf2.factorisation import is_irreducible
 from auditor.gf2.order import order_of_x
 from auditor.gf2.polynomial import degree
@@ -18,6 +19,7 @@ from auditor.revisions.shifts import shifts
 from auditor.revisions.steady import inverse
 
 LARGEST_FACTOR = 64
+_WITHOUT_BOUNDS = Effort()
 
 
 @dataclass(frozen=True, slots=True)
@@ -29,7 +31,9 @@ class Decimation:
     inverted: Mapping[int, bool]
 
 
-def find_decimation(old_step: Matrix, new_step: Matrix, pairs: Sequence[RowPair]) -> Decimation | None:
+def find_decimation(
+    old_step: Matrix, new_step: Matrix, pairs: Sequence[RowPair], effort: Effort = _WITHOUT_BOUNDS
+) -> Decimation | None:
     """Return the factor that maps all streams, the one of least size; None where there is none up to the bound."""
     first = next(((old, new) for old, new in pairs if old > 1 and new > 1), None)
     if first is None:
@@ -41,7 +45,7 @@ def find_decimation(old_step: Matrix, new_step: Matrix, pairs: Sequence[RowPair]
             continue
         if found := _one_map(factor, step, new_step, pairs):
             return found
-        if loose is None and factor != 1 and _up_to_shifts(step, new_step, pairs, target):
+        if loose is None and factor != 1 and _up_to_shifts(step, new_step, pairs, target, effort):
             loose = Decimation(factor, False, {})
     return loose
 
@@ -71,7 +75,9 @@ def _one_map(factor: int, step: Matrix, new_step: Matrix, pairs: Sequence[RowPai
     return None
 
 
-def _up_to_shifts(step: Matrix, new_step: Matrix, pairs: Sequence[RowPair], polynomial: Polynomial) -> bool:
+def _up_to_shifts(
+    step: Matrix, new_step: Matrix, pairs: Sequence[RowPair], polynomial: Polynomial, effort: Effort
+) -> bool:
     """Whether every channel is a shift of its decimated old self."""
     seed = next((old, new) for old, new in pairs if old > 1 and new > 1)
     relations = Relations(step, new_step)
@@ -84,4 +90,4 @@ def _up_to_shifts(step: Matrix, new_step: Matrix, pairs: Sequence[RowPair], poly
     if is_irreducible(polynomial) and order_of_x(polynomial) == (1 << degree(polynomial)) - 1:
         # All states but one lie on one cycle, so any two streams are shifts of each other.
         return all(relations.dimension == len(new_step) - 1 for _ in known)
-    return all(shift is not None and shift.cycles is not None for shift in shifts(new_step, known))
+    return all(shift is not None and shift.cycles is not None for shift in shifts(new_step, known, (), effort))

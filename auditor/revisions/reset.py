@@ -3,6 +3,7 @@
 from collections.abc import Sequence
 
 from auditor.gf2 import matrix
+from auditor.gf2.effort import Effort
 from auditor.gf2.factorisation import factor
 from auditor.gf2.polynomial import remainder
 from auditor.machine.machine import LinearMachine
@@ -11,7 +12,10 @@ from auditor.phases.leads import coordinates
 from auditor.phases.streams import Streams
 from auditor.revisions.comparison import FromReset
 from auditor.revisions.relations import Relations
+from auditor.revisions.shifts import NEAR
 from auditor.revisions.steady import Steady
+
+_WITHOUT_BOUNDS = Effort()
 
 
 class _Run:
@@ -51,6 +55,7 @@ def from_reset(
     steadies: tuple[Steady, Steady],
     pairs: Sequence[tuple[int, int]],
     relations: Relations | None,
+    effort: Effort = _WITHOUT_BOUNDS,
 ) -> FromReset:
     """Compare the streams of the pairs from reset; ``relations`` is the state map for the shift between them."""
     old, new = (
@@ -68,7 +73,7 @@ def from_reset(
         return FromReset(True, known_from=known, agree_from=known, shift=0)
     if settled:
         return FromReset(False, known_from=known, agree_from=last + 1, shift=0, first=first)
-    shift = _shift(machines, steadies, relations) if relations else None
+    shift = _shift(machines, steadies, relations, effort) if relations else None
     return FromReset(False, known_from=known, shift=shift, first=first)
 
 
@@ -93,7 +98,10 @@ def _differences(old: _Run, new: _Run, known: int, start: int) -> tuple[tuple[in
 
 
 def _shift(
-    machines: tuple[LinearMachine, LinearMachine], steadies: tuple[Steady, Steady], relations: Relations
+    machines: tuple[LinearMachine, LinearMachine],
+    steadies: tuple[Steady, Steady],
+    relations: Relations,
+    effort: Effort,
 ) -> int | None:
     """Return s with y_new(t) = y_old(t + s) in the long run, by a logarithm of one state against the other."""
     new = steadies[1]
@@ -105,7 +113,7 @@ def _shift(
     there = 1 | matrix.apply([row or 0 for row in rows], reset) << 1
     # A state is a column, so the powers of the step act on it from the other side.
     columns = matrix.transpose(new.step, new.width + 1)
-    return _steps(there, here, columns)
+    return _steps(there, here, columns, effort)
 
 
 def _coordinates(machine: LinearMachine, steady: Steady) -> Vector:
@@ -116,8 +124,15 @@ def _coordinates(machine: LinearMachine, steady: Steady) -> Vector:
     return matrix.apply(steady.basis, state)
 
 
-def _steps(start: Vector, target: Vector, step: Matrix) -> int | None:
+def _steps(start: Vector, target: Vector, step: Matrix, effort: Effort) -> int | None:
     """Return the least s in size with start step^s = target, None where there is none or it is undecided."""
+    ahead, behind = start, target
+    for steps in range(NEAR):
+        if ahead == target:
+            return steps
+        if behind == start:
+            return -steps
+        ahead, behind = matrix.row_times(ahead, step), matrix.row_times(behind, step)
     span, row = matrix.Span(), start
     while not (annihilator := span.add(row)):
         row = matrix.row_times(row, step)
@@ -125,7 +140,7 @@ def _steps(start: Vector, target: Vector, step: Matrix) -> int | None:
     factors = factor(annihilator)
     if rest or not all(remainder(unit, g) for g, _ in factors):
         return None
-    found = coordinates([1, unit], factors)
+    found = coordinates([1, unit], factors, effort)
     if not found.decided or found.signature(0) != found.signature(1) or found.known_period != found.period:
         return None
     steps = found.difference(1, 0)

@@ -5,6 +5,7 @@ from dataclasses import dataclass
 
 from auditor.errors import InternalError
 from auditor.gf2 import matrix
+from auditor.gf2.effort import Effort
 from auditor.gf2.factorisation import factor
 from auditor.gf2.order import order_of_x
 from auditor.gf2.polynomial import inverse, multiply, multiply_modulo, power_modulo, remainder
@@ -12,7 +13,9 @@ from auditor.notation import Matrix, Polynomial, Vector
 from auditor.phases.leads import coordinates
 
 _X = 0b10
-_NEAR = 64
+_WITHOUT_BOUNDS = Effort()
+# Shifts of so many cycles, either way, are found by stepping.
+NEAR = 64
 
 
 @dataclass(frozen=True, slots=True)
@@ -48,7 +51,10 @@ class _Module:
 
 
 def shifts(
-    step: Matrix, pairs: Sequence[tuple[Vector, Vector]], hints: Sequence[int | None] = ()
+    step: Matrix,
+    pairs: Sequence[tuple[Vector, Vector]],
+    hints: Sequence[int | None] = (),
+    effort: Effort = _WITHOUT_BOUNDS,
 ) -> list[Shift | None]:
     """Return for each (base, row) by how many cycles the row leads the base, None where it is no shift of it.
 
@@ -65,14 +71,14 @@ def shifts(
         elif near := _near(base, row, step):
             found[place] = near
     while pending := [place for place in range(len(pairs)) if place not in found]:
-        found |= _solve(modules, pairs, pending)
+        found |= _solve(modules, pairs, pending, effort)
     return [found[place] for place in range(len(pairs))]
 
 
 def _near(base: Vector, row: Vector, step: Matrix) -> Shift | None:
     """Return the shift if it is a short one, either way."""
     ahead, behind = base, row
-    for cycles in range(_NEAR):
+    for cycles in range(NEAR):
         if ahead ^ row <= 1:
             return Shift(cycles, ahead != row)
         if behind ^ base <= 1:
@@ -82,7 +88,7 @@ def _near(base: Vector, row: Vector, step: Matrix) -> Shift | None:
 
 
 def _solve(
-    modules: dict[Vector, _Module], pairs: Sequence[tuple[Vector, Vector]], pending: Sequence[int]
+    modules: dict[Vector, _Module], pairs: Sequence[tuple[Vector, Vector]], pending: Sequence[int], effort: Effort
 ) -> dict[int, Shift | None]:
     """Solve all pairs inside the module of the first pending base; the first itself is always among them."""
     module = modules[pairs[pending[0]][0]]
@@ -100,7 +106,7 @@ def _solve(
             quotients[place] = multiply_modulo(above, inverse(below, f), f)
     if not quotients:
         return found
-    known = coordinates([1, *quotients.values()], factors)
+    known = coordinates([1, *quotients.values()], factors, effort)
     period = order_of_x(f)
     for number, place in enumerate(quotients, start=1):
         base, row = pairs[place]
