@@ -21,7 +21,7 @@ class Spoiler(NamedTuple):
     cures: tuple[tuple[int, int], ...]
 
 
-def find_spoiler(prover: Prover, sink: int, own_state: int = -1) -> Spoiler:
+def find_spoiler(prover: Prover, sink: int, own_state: int | None = None) -> Spoiler:
     """Return the earliest wire that alone spoils the row of ``sink``; the sink itself where no single wire does.
 
     ``own_state`` is the wire of the stored bit that the row feeds: a constant that only makes it hold is no cure.
@@ -64,9 +64,10 @@ def _affine_without(prover: Prover, region: list[int], sink: int, cut: int) -> b
     return chain is not None and bool(chain[0] & algebra.support(fresh))
 
 
-def _input_cures(prover: Prover, sink: int, spoiler: int, own_state: int) -> list[tuple[int, int]]:
+def _input_cures(prover: Prover, sink: int, spoiler: int, own_state: int | None) -> list[tuple[int, int]]:
     """Return constants of single free inputs under the spoiler that make the sink affine, the most telling first."""
     algebra, diagram = prover.algebra, prover.diagrams[sink]
+    holding = [] if own_state is None else [prover.rows[own_state]]
     good = []
     for number in sorted(algebra.support(prover.diagrams[spoiler]) & algebra.support(diagram)):
         form = algebra.forms[number]
@@ -74,7 +75,7 @@ def _input_cures(prover: Prover, sink: int, spoiler: int, own_state: int) -> lis
             continue
         for bit in (1, 0):
             chain = algebra.affine(algebra.freed(algebra.with_constant(diagram, number, bit)))
-            if chain and chain[0] and [algebra.forms[n] for n in chain[0]] != [prover.rows.get(own_state)]:
+            if chain and chain[0] and [algebra.forms[n] for n in chain[0]] != holding:
                 good.append((-len(chain[0]), prover.inputs[form], bit))
     return [(wire, bit) for _, wire, bit in sorted(good, key=lambda cure: cure[0])]
 
@@ -90,7 +91,7 @@ def _net_cures(prover: Prover, spoiler: int, sink: int) -> list[tuple[int, int]]
 
 
 def refuse(
-    cone: Cone, prover: Prover, what: str, sink: int, instance: int, own_state: int = -1
+    cone: Cone, prover: Prover, what: str, sink: int, instance: int, own_state: int | None = None
 ) -> tuple[Refusal, Spoiler | None]:
     """Return the refusal of a row, and what spoils it unless the question is undecided.
 

@@ -113,6 +113,16 @@ def test_a_gated_channel_is_refused_alone_and_cut_at_its_gate(tmp_path: Path) ->
     assert cut.row.state == 0b101
 
 
+def test_a_gated_channel_has_its_cure_whatever_it_carries(tmp_path: Path) -> None:
+    """A gate on the net that the first flip-flop takes is cured like any other."""
+    body = """
+  km_xor2 g (.A(c), .B(b), .Y(f));
+  km_nand2 gate (.A(f), .B(open), .Y(y));"""
+    machine = machine_of(tmp_path, RING + body, ports="input clk, input open, output y")
+    assert machine.observed[0].refusal is not None
+    assert machine.observed[0].refusal.cure == "--mode open=1"
+
+
 def test_a_spoiled_pipeline_stage_refuses_only_what_it_feeds(tmp_path: Path) -> None:
     """A flip-flop behind an AND feeds no register: the machine goes without it, its channel is refused."""
     body = """
