@@ -19,13 +19,17 @@ _NO_VALUE = re.compile(r"argument (--[\w-]+): expected one argument")
 
 @dataclass(frozen=True, slots=True)
 class Request:
-    """One call of ``auditor audit``: what to audit and where the text goes; ``json`` may be ``-``."""
+    """One call of ``auditor audit``: what to audit and where the text goes; ``json`` may be ``-``.
+
+    ``cache``  whether tables may be kept in the user's cache directory
+    """
 
     options: Options
     plan: Path | None
     json: str | None
     quiet: bool
     use_draft: bool
+    cache: bool
 
 
 class _Parser(argparse.ArgumentParser):
@@ -87,7 +91,10 @@ def audit_parser() -> argparse.ArgumentParser:
     names = ", ".join(LEAST_LIMIT)
     add("--limit", action="append", default=[], metavar="NAME=N", help=f"bound on {names}; may be repeated")
     add("--fail-at", metavar="LEVEL", help="note, warning or error (default error): findings that fail the audit")
-    add("--work-limit", metavar="N", help="bound on the nodes of one proof, beyond which it is undecided")
+    work = "bound on the nodes of one proof, and on the tests for the leads of one field; what takes more is undecided"
+    add("--work-limit", metavar="N", help=work)
+    add("--time-limit", metavar="S", help="leads not begun after so many seconds are undecided (default: no limit)")
+    add("--no-cache", action="store_true", help="neither read nor keep tables in the user's cache directory")
     add("--json", metavar="F", help="write the report as JSON; - is standard output, the screen then goes to stderr")
     add("--use-draft", action="store_true", help="guess the mode and channels left open; the verdict is then undecided")
     add("--quiet", action="store_true", help="show neither the report nor progress on the screen")
@@ -127,6 +134,7 @@ def read_arguments(words: Sequence[str]) -> Request:
             limits=_read_limits(given.limit, troubles),
             fail_at=given.fail_at,
             work_limit=_read_number("--work-limit", given.work_limit, 1, troubles),
+            time_limit=_read_number("--time-limit", given.time_limit, 1, troubles),
             defines=_read_defines(given.define, troubles),
             include=tuple(map(Path, given.include)),
         ),
@@ -134,6 +142,7 @@ def read_arguments(words: Sequence[str]) -> Request:
         json=given.json,
         quiet=given.quiet,
         use_draft=given.use_draft,
+        cache=not given.no_cache,
     )
     troubles.raise_any()
     return request

@@ -7,17 +7,21 @@ from collections.abc import Callable, Mapping, Sequence
 from dataclasses import replace
 from importlib.metadata import version
 from pathlib import Path
+from time import monotonic
 from typing import TypeVar
 
 from auditor.array.chains import scan_array
 from auditor.array.examine import examine_capture
 from auditor.array.find import find_array
 from auditor.array.scan_array import ArrayFacts, ScanArray
+from auditor.cache import kept_tables
 from auditor.cells.library import CellLibrary
 from auditor.cells.read import read_cells
 from auditor.cone.cone import Cone
 from auditor.cone.extract import extract_cone
 from auditor.errors import InputError, Trouble, fail
+from auditor.gf2.calculus.table import TableSource
+from auditor.gf2.effort import Effort
 from auditor.machine.machine import Extraction, LinearMachine
 from auditor.machine.prove import prove_machine
 from auditor.netlist.flatten import flatten
@@ -54,9 +58,16 @@ def audit(plan: Plan, progress: Progress | None = None) -> AuditFacts:
     return audit_modes(plan, progress)[""]
 
 
-def audit_modes(plan: Plan, progress: Progress | None = None) -> dict[str, AuditFacts]:
-    """Audit a plan under each of its modes; cells and netlist are read once, troubles of all modes told together."""
+def audit_modes(
+    plan: Plan, progress: Progress | None = None, tables: TableSource | None = None
+) -> dict[str, AuditFacts]:
+    """Audit a plan under each of its modes; cells and netlist are read once, troubles of all modes told together.
+
+    ``tables`` is where leads of large degrees get their tables from (default: each is made once).
+    """
     tell = progress or _silent
+    deadline = None if plan.time_limit is None else monotonic() + plan.time_limit
+    bounds = Effort(plan.work_limit, deadline, tables=tables or kept_tables(None))
     tell("cells")
     library = read_cells(plan.cells, plan.defines, plan.include)
     tell("netlist")
@@ -69,7 +80,10 @@ def audit_modes(plan: Plan, progress: Progress | None = None) -> dict[str, Audit
         return (lambda stage: tell(f"mode {name}: {stage}")) if name else tell
 
     cones = _in_every_mode(plans, lambda name: _cone(plans[name], library, netlist, in_mode(name)))
-    return _in_every_mode(plans, lambda name: _facts(plans[name], library, cones[name], inputs, in_mode(name)))
+    return _in_every_mode(
+        plans,
+        lambda name: _facts(plans[name], library, cones[name], inputs, replace(bounds, progress=in_mode(name))),
+    )
 
 
 def read_netlist(plan: Plan, library: CellLibrary, reading: Reading | None = None) -> Netlist:
@@ -114,13 +128,14 @@ def _cone(plan: Plan, library: CellLibrary, netlist: Netlist, tell: Progress) ->
     return extract_cone(netlist, library, plan.mode, plan.channels)
 
 
-def _facts(plan: Plan, library: CellLibrary, cone: Cone, inputs: tuple[InputFile, ...], tell: Progress) -> AuditFacts:
+def _facts(plan: Plan, library: CellLibrary, cone: Cone, inputs: tuple[InputFile, ...], effort: Effort) -> AuditFacts:
     """Return all facts of one mode."""
+    tell = effort.report
     tell("machine")
     extraction = prove_machine(cone, plan.work_limit)
     scan = _chains(plan, library, cone, tell)
-    replayed, phases = _solve(plan, library, cone, extraction, scan, tell)
-    array = _array(plan, library, cone, extraction, phases, scan, tell)
+    replayed, phases = _solve(plan, library, cone, extraction, scan, effort)
+    array = _array(plan, library, cone, extraction, phases, scan, effort)
     machine = extraction.machine
     capture = examine_capture(plan, cone.netlist, library, machine, scan, tell) if machine else None
     tell("risks")
@@ -164,17 +179,17 @@ def _solve(
     cone: Cone,
     extraction: Extraction,
     scan: ScanArray | None,
-    tell: Progress,
+    effort: Effort,
 ) -> tuple[ReplayFacts | None, PhaseTable | None]:
     """Replay the gates against the proved machine, then solve it; nothing of both where there is no machine."""
     machine = extraction.machine
     if machine is None:
         return None, None
-    tell("replay")
+    effort.report("replay")
     replayed = ReplayFacts(*replay(cone, library, machine), mismatches=0)
-    tell("phases")
+    effort.report("phases")
     asked = max(scan.longest if scan else 0, plan.limits.separation or 0)
-    return replayed, find_phases(machine, plan.reference, min(max(WINDOW, asked), LARGEST_WINDOW), tell)
+    return replayed, find_phases(machine, plan.reference, min(max(WINDOW, asked), LARGEST_WINDOW), effort)
 
 
 def _array(
@@ -184,17 +199,17 @@ def _array(
     extraction: Extraction,
     phases: PhaseTable | None,
     scan: ScanArray | None,
-    tell: Progress,
+    effort: Effort,
 ) -> ArrayFacts | None:
     """Return what the generator does to the scan chains, and its runs from the seeds; nothing without a machine."""
     if extraction.machine is None or phases is None:
         return None
-    tell("scan array")
+    effort.report("scan array")
 
     def solve(machine: LinearMachine, window: int) -> PhaseTable:
-        return find_phases(machine, window=min(window, LARGEST_WINDOW), progress=tell)
+        return find_phases(machine, window=min(window, LARGEST_WINDOW), effort=effort)
 
-    return find_array(plan, cone, library, extraction.machine, phases, scan, solve, tell)
+    return find_array(plan, cone, library, extraction.machine, phases, scan, solve, effort.report)
 
 
 def _input_files(plan: Plan, included: Sequence[Path]) -> tuple[InputFile, ...]:

@@ -104,13 +104,15 @@ def _audit(request: Request) -> int:
     from rich.console import Console  # noqa: PLC0415 - an error above is told without loading it
 
     from auditor.audit import audit_modes  # noqa: PLC0415
+    from auditor.cache import cache_folder, kept_tables  # noqa: PLC0415
     from auditor.report.facts import worst  # noqa: PLC0415
     from auditor.report.json_report import json_text  # noqa: PLC0415
     from auditor.report.progress import stages  # noqa: PLC0415
     from auditor.report.terminal import print_audits  # noqa: PLC0415
 
     with stages(Console(stderr=True), not request.quiet and sys.stderr.isatty()) as progress:
-        audits = _or_draft(plan, lambda: audit_modes(plan, progress=progress))
+        tables = kept_tables(cache_folder() if request.cache else None)
+        audits = _or_draft(plan, lambda: audit_modes(plan, progress, tables))
         text = json_text(audits) if request.json else ""
     _put(request.json, text, request.quiet, lambda console: print_audits(audits, console))
     if not request.quiet and any(_left_open(facts) for facts in audits.values()):
@@ -132,13 +134,15 @@ def _compare(words: Sequence[str]) -> int:
         _check(plan, request.json)
     from rich.console import Console  # noqa: PLC0415 - an error above is told without loading it
 
+    from auditor.cache import cache_folder, kept_tables  # noqa: PLC0415
     from auditor.compare import compare_plans  # noqa: PLC0415
     from auditor.report.comparison_json import comparison_text  # noqa: PLC0415
     from auditor.report.comparison_terminal import print_comparisons  # noqa: PLC0415
     from auditor.report.progress import stages  # noqa: PLC0415
 
     with stages(Console(stderr=True), not request.quiet and sys.stderr.isatty()) as progress:
-        found = compare_plans(plans[0], plans[1], progress)
+        tables = kept_tables(cache_folder() if request.old.cache and request.new.cache else None)
+        found = compare_plans(plans[0], plans[1], progress, tables)
         text = comparison_text(found) if request.json else ""
     _put(request.json, text, request.quiet, lambda console: print_comparisons(found, console))
     return {"same": 0, "differs": 1, "undecided": 3}[found.outcome]

@@ -2,9 +2,13 @@
 
 from collections.abc import Callable, Sequence
 from dataclasses import replace
+from time import monotonic
 
 from auditor.audit import audit_modes
+from auditor.cache import kept_tables
 from auditor.errors import InternalError, fail
+from auditor.gf2.calculus.table import TableSource
+from auditor.gf2.effort import Effort
 from auditor.notation import Vector
 from auditor.plan import Plan
 from auditor.replay.run import show
@@ -18,12 +22,14 @@ from auditor.revisions.revision import Revision, reset_of, storage_names
 SIDE_BY_SIDE = 512
 
 
-def compare(old: AuditFacts, new: AuditFacts) -> Comparison:
+def compare(old: AuditFacts, new: AuditFacts, effort: Effort | None = None) -> Comparison:
     """Compare two audits of one mode each. A witness in it has been confirmed on the gates.
+
+    ``effort`` bounds the logarithms by which shifts are found (default: the work limit of the new plan).
 
     Raises ``InternalError`` where the gates contradict the comparison.
     """
-    found = compare_revisions(_revision(old), _revision(new))
+    found = compare_revisions(_revision(old), _revision(new), effort or Effort(new.plan.work_limit))
     if found.outcome == "undecided":
         return _held_side_by_side(old, new, found)
     if found.witness is None:
@@ -41,9 +47,12 @@ def compare(old: AuditFacts, new: AuditFacts) -> Comparison:
     return confirmed(found, witness)
 
 
-def compare_plans(old: Plan, new: Plan, progress: Callable[[str], None] | None = None) -> Comparisons:
+def compare_plans(
+    old: Plan, new: Plan, progress: Callable[[str], None] | None = None, tables: TableSource | None = None
+) -> Comparisons:
     """Audit two plans and compare them under each mode that both name; the name is empty where they name none.
 
+    ``tables`` as in ``audit_modes``.
     Raises ``InputError`` where no machine can be formed of one of them, or where no mode is in both.
     """
     names = [list(plan.by_mode()) for plan in (old, new)]
@@ -53,10 +62,13 @@ def compare_plans(old: Plan, new: Plan, progress: Callable[[str], None] | None =
             f"no mode is in both: OLD has {_listed(names[0])}, NEW has {_listed(names[1])}",
             "give both plans modes of the same names, or leave [mode.NAME] out of both and state one mode",
         )
-    before, after = (audit_modes(_only(plan, common), progress) for plan in (old, new))
+    tables = tables or kept_tables(None)
+    before, after = (audit_modes(_only(plan, common), progress, tables) for plan in (old, new))
     if progress:
         progress("comparison")
-    by_mode = {name: Compared(before[name], after[name], compare(before[name], after[name])) for name in common}
+    deadline = None if new.time_limit is None else monotonic() + new.time_limit
+    effort = Effort(new.work_limit, deadline, progress, tables)
+    by_mode = {name: Compared(before[name], after[name], compare(before[name], after[name], effort)) for name in common}
     return Comparisons(by_mode, tuple(name for name in dict.fromkeys(names[0] + names[1]) if name not in common))
 
 

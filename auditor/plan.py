@@ -63,6 +63,7 @@ class Plan:
     ``relations``  3 or 4: constant sums of up to so many scan cells are searched; None: of three where that is cheap
     ``seeds``      name → state, bit k for storage element k
     ``capture``    net or port → 0 or 1 in capture; None: the circuit under test is not asked about
+    ``time_limit``  seconds from the start of the audit after which no lead is worked on
     ``guesses``   a sentence on everything in the plan that was drafted and not stated
     """
 
@@ -79,6 +80,7 @@ class Plan:
     waivers: tuple[Waiver, ...] = ()
     fail_at: str = "error"
     work_limit: int | None = None
+    time_limit: int | None = None
     file: Path | None = None
     guesses: tuple[str, ...] = ()
     defines: Mapping[str, str] = field(default_factory=dict)
@@ -110,6 +112,7 @@ class Options:
     limits: Mapping[str, int] = field(default_factory=dict)
     fail_at: str | None = None
     work_limit: int | None = None
+    time_limit: int | None = None
     defines: Mapping[str, str] = field(default_factory=dict)
     include: tuple[Path, ...] = ()
     chain_file: Path | None = None
@@ -143,6 +146,7 @@ def merge(plan: Plan | None, options: Options) -> Plan:
         limits=replace(stated.limits, **options.limits),
         fail_at=options.fail_at or stated.fail_at,
         work_limit=stated.work_limit if options.work_limit is None else options.work_limit,
+        time_limit=options.time_limit,
         defines={**stated.defines, **options.defines},
         include=options.include or stated.include,
     )

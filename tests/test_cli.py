@@ -31,7 +31,7 @@ def use(monkeypatch: pytest.MonkeyPatch) -> Callable[[Audit], None]:
         monkeypatch.setitem(
             sys.modules,
             "auditor.audit",
-            SimpleNamespace(audit_modes=lambda plan, progress: {"": audit(plan, progress)}),
+            SimpleNamespace(audit_modes=lambda plan, progress, _tables: {"": audit(plan, progress)}),
         )
 
     return put
@@ -348,7 +348,7 @@ def test_a_closed_pipe_is_no_trouble() -> None:
     """A reader that leaves early gets the status of the verdict and no message."""
     code = (
         "import sys, types; from tests.support.facts import small_facts; from auditor import cli;"
-        "sys.modules['auditor.audit'] = types.SimpleNamespace(audit_modes=lambda plan, progress: {'': small_facts()});"
+        "sys.modules['auditor.audit'] = types.SimpleNamespace(audit_modes=lambda *_: {'': small_facts()});"
         "sys.stdin.readline(); sys.exit(cli.run(['audit', 'a.v']))"
     )
     reading, writing = os.pipe()
@@ -366,7 +366,7 @@ def test_a_full_disk_behind_the_screen_is_told() -> None:
     """Output that cannot be written is no defect of ours: status 2 and one message."""
     code = (
         "import sys, types; from tests.support.facts import small_facts; from auditor import cli;"
-        "sys.modules['auditor.audit'] = types.SimpleNamespace(audit_modes=lambda plan, progress: {'': small_facts()});"
+        "sys.modules['auditor.audit'] = types.SimpleNamespace(audit_modes=lambda *_: {'': small_facts()});"
         "sys.exit(cli.run(['audit', 'a.v']))"
     )
     with open("/dev/full", "w") as full:

@@ -7,11 +7,12 @@ from dataclasses import dataclass, field, replace
 
 from auditor.errors import fail, near_misses
 from auditor.gf2 import matrix
+from auditor.gf2.effort import Effort
 from auditor.gf2.order import order_of_x
 from auditor.machine.machine import LinearMachine, ObservedRow
 from auditor.phases.classes import CyclicSpace, alike, choose_reference, cyclic_spaces
 from auditor.phases.in_step import in_step, run_from_reset, shared_factors
-from auditor.phases.leads import Coordinates, Progress, coordinates
+from auditor.phases.leads import Coordinates, coordinates
 from auditor.phases.links import Links, find_links, proved_pairs
 from auditor.phases.registers import register_facts
 from auditor.phases.separations import closest, nearest_neighbours
@@ -21,29 +22,30 @@ from auditor.phases.table import LeadKind, Phase, PhaseClass, PhaseTable
 _TOGGLE = 0b11
 # Channels squared times window: the search of so many costs a few seconds and some hundred megabytes.
 _SEARCH_LIMIT = 1 << 46
+_WITHOUT_BOUNDS = Effort()
 
 
 def find_phases(
-    machine: LinearMachine, reference: str | None = None, window: int = 1 << 20, progress: Progress | None = None
+    machine: LinearMachine, reference: str | None = None, window: int = 1 << 20, effort: Effort = _WITHOUT_BOUNDS
 ) -> PhaseTable:
     """Return the registers, the classes and the phase of every channel.
 
-    ``reference`` names the reference of the class it is in. Where logarithms are out of reach, all pairs closer
-    than ``window`` cycles are still found; the table says so if many channels made it less. ``InputError`` if no
-    channel has the name; ``InternalError`` if a lead fails its proof.
+    ``reference`` names the reference of the class it is in. Where logarithms are out of reach, or a bound of the
+    effort ends them, all pairs closer than ``window`` cycles are still found; the table says so if many channels made
+    it less. ``InputError`` if no channel has the name; ``InternalError`` if a lead fails its proof.
     """
     affordable = min(window, _SEARCH_LIMIT // max(1, len(machine.observed)) ** 2)
-    search = _Search(machine, read_streams(machine), _numbered(machine, reference), affordable)
+    search = _Search(machine, read_streams(machine), _numbered(machine, reference), affordable, effort)
     for channel, observed in enumerate(machine.observed):
         if reason := _without_lead(search, channel, observed):
             search.phases[channel] = Phase(None, None, "none", None, None, 0, reason)
     for space in cyclic_spaces(search.streams):
-        _solve(search, space, progress)
+        _solve(search, space)
     table = _table(search)
     if not shared_factors(table.registers):
         return table
     start = run_from_reset(machine)
-    run = find_phases(start.machine, window=affordable, progress=progress)
+    run = find_phases(start.machine, window=affordable, effort=effort)
     return replace(table, in_step=tuple(in_step(machine, table, start, run)))
 
 
@@ -55,6 +57,7 @@ class _Search:
     streams: Streams
     named: int | None
     window: int
+    effort: Effort
     phases: dict[int, Phase] = field(default_factory=dict)
     classes: list[PhaseClass] = field(default_factory=list)
     open_classes: set[int] = field(default_factory=set)
@@ -110,9 +113,9 @@ class _Method:
         return self.found.decided or self.links is None or self.links.difference(member, base) is not None
 
 
-def _solve(search: _Search, space: CyclicSpace, progress: Progress | None) -> None:
+def _solve(search: _Search, space: CyclicSpace) -> None:
     """Split a space into classes and give its members their phases."""
-    method = _method(search, space, progress)
+    method = _method(search, space)
     cut = [bool(observed.cut_from) for observed in search.machine.observed]
     for group in alike(space, method.found):
         reference = choose_reference([space.members[place] for place in group], search.named, cut)
@@ -122,18 +125,20 @@ def _solve(search: _Search, space: CyclicSpace, progress: Progress | None) -> No
         if len(inside) < len(group):
             search.open_classes.add(len(search.classes) - 1)
             for place in set(group) - set(inside):
-                search.phases[space.members[place]] = Phase(None, None, "undecided", None, None, 0)
+                search.phases[space.members[place]] = Phase(
+                    None, None, "undecided", None, None, 0, method.found.because
+                )
     if method.links:
         settled = {place for place, channel in enumerate(space.members) if search.phases[channel].lead is not None}
         search.pairs += proved_pairs(search.streams, space, method.links, settled)
 
 
-def _method(search: _Search, space: CyclicSpace, progress: Progress | None) -> _Method:
+def _method(search: _Search, space: CyclicSpace) -> _Method:
     if len(space.members) == 1:
         found, period = Coordinates(()), order_of_x(space.annihilator)
         complete = True
     else:
-        found = coordinates(space.units, space.factors, progress)
+        found = coordinates(space.units, space.factors, search.effort)
         period = found.period
         complete = found.decided and found.known_period == period
     half_turn = False
@@ -151,7 +156,7 @@ def _add_class(search: _Search, space: CyclicSpace, method: _Method, inside: lis
         channel, lead = space.members[place], method.lead(place, base)
         if lead is None:
             search.open_classes.add(index)
-            phase = Phase(index, None, "undecided", method.found.known_period, None, 0)
+            phase = Phase(index, None, "undecided", method.found.known_period, None, 0, method.found.because)
         elif orbit is None or place == base:
             phase = Phase(index, 0, "exact", modulus, False, 0)
         else:

@@ -7,19 +7,20 @@ differ by a power of x if and only if they share every coset and the differences
 orders of two parts have a common divisor (Chinese remainders for moduli that are not coprime).
 """
 
-from collections.abc import Callable, Sequence
+from collections.abc import Sequence
 from itertools import combinations
 from math import gcd, lcm
 from typing import NamedTuple
 
 from auditor.errors import InternalError
+from auditor.gf2.effort import Effort
 from auditor.gf2.logarithm import logarithms
 from auditor.gf2.order import order_in_field
 from auditor.gf2.polynomial import degree, inverse, multiply, multiply_modulo, power_modulo, remainder
 from auditor.notation import Polynomial
 
 _X = 0b10
-Progress = Callable[[str], None]
+_WITHOUT_BOUNDS = Effort()
 
 
 class Part(NamedTuple):
@@ -27,12 +28,14 @@ class Part(NamedTuple):
 
     ``order``     of x in this part, None where it is unknown; cosets are then unknown too and all equal
     ``known``     residues are known modulo this divisor of the order
+    ``because``   why not modulo all of it, in words
     """
 
     order: int | None
     known: int
     cosets: tuple[Polynomial, ...]
     residues: tuple[int, ...]
+    because: str = ""
 
 
 class Coordinates(NamedTuple):
@@ -50,6 +53,11 @@ class Coordinates(NamedTuple):
     def known_period(self) -> int:
         """The modulus to which differences of leads are known, a divisor of the period."""
         return lcm(*(part.known for part in self.parts))
+
+    @property
+    def because(self) -> str:
+        """Why the known period is not the period, in words; empty where it is."""
+        return "; ".join(dict.fromkeys(part.because for part in self.parts if part.because))
 
     @property
     def decided(self) -> bool:
@@ -78,24 +86,24 @@ class Coordinates(NamedTuple):
 
 
 def coordinates(
-    units: Sequence[Polynomial], factors: Sequence[tuple[Polynomial, int]], progress: Progress | None = None
+    units: Sequence[Polynomial], factors: Sequence[tuple[Polynomial, int]], effort: Effort = _WITHOUT_BOUNDS
 ) -> Coordinates:
     """Return the coordinates of units of GF(2)[x]/(f); f is given by its factors, and f(0) = 1."""
     parts = []
     for irreducible, multiplicity in factors:
-        if progress:
-            progress(f"leads of {len(units)} channels in a field of degree {degree(irreducible)}")
-        parts.append(_field_part([remainder(unit, irreducible) for unit in units], irreducible))
+        effort.report(f"leads of {len(units)} channels in a field of degree {degree(irreducible)}")
+        parts.append(_field_part([remainder(unit, irreducible) for unit in units], irreducible, effort))
         if multiplicity > 1:
             parts.append(_two_part(units, irreducible, multiplicity))
     return Coordinates(tuple(parts))
 
 
-def _field_part(values: Sequence[Polynomial], g: Polynomial) -> Part:
+def _field_part(values: Sequence[Polynomial], g: Polynomial, effort: Effort) -> Part:
     """Return the part of the field modulo g; the cosets are told apart by value^order, and 1 stands for its own."""
     order = order_in_field(_X, g)
     if order is None:
-        return Part(None, 1, (0,) * len(values), (0,) * len(values))
+        because = f"the factors of 2^{degree(g)} - 1 are not known"
+        return Part(None, 1, (0,) * len(values), (0,) * len(values), because)
     if order == (1 << degree(g)) - 1:
         cosets, ratios = (1,) * len(values), list(values)
     else:
@@ -105,11 +113,11 @@ def _field_part(values: Sequence[Polynomial], g: Polynomial) -> Part:
             if coset not in inverses:
                 inverses[coset] = inverse(value, g)
         ratios = [multiply_modulo(v, inverses[coset], g) for v, coset in zip(values, cosets, strict=True)]
-    found = logarithms(ratios, g)
+    found = logarithms(ratios, g, effort=effort)
     residues = tuple(value for value in found.values if value is not None)
     if len(residues) < len(values):
         raise InternalError(f"a power of x modulo {g:#x} was told from the others, but has no logarithm")
-    return Part(order, found.modulus, cosets, residues)
+    return Part(order, found.modulus, cosets, residues, found.because)
 
 
 def _two_part(units: Sequence[Polynomial], g: Polynomial, multiplicity: int) -> Part:

@@ -38,7 +38,8 @@ class Phase:
     ``group``       index into the classes, None for a channel without one (constant, refused)
     ``lead``        0 <= lead < modulus, None where there is none or it is undecided
     ``kind``        exact: known modulo the class modulus and true from cycle 0 on; from: true from ``valid_from`` on;
-                    modulo: known only modulo ``lead_modulus``, a proper divisor; none: see ``no_lead_because``
+                    modulo: known only modulo ``lead_modulus``, a proper divisor; none: there is none
+    ``no_lead_because``  in words, for none and undecided
     ``inverted``    the channel is the complement of the shifted reference; None without a lead
     ``valid_from``  the cycle from which y_i(t) = y_ref(t + lead) + inverted holds for every state at cycle 0
     """

@@ -18,6 +18,7 @@ from auditor.report.array_json import array_part
 from auditor.report.capture_json import capture_part
 from auditor.report.digest import ChannelView, channel_views, cut_views, heaviest_output
 from auditor.report.facts import AuditFacts, Audits, worst
+from auditor.report.pairs_json import close_pairs
 from auditor.report.wording import CAUTIONS, decimal, exponents
 from auditor.risks.finding import Finding
 
@@ -93,6 +94,7 @@ def _found(facts: AuditFacts) -> Json:
         "machine": _machine(facts),
         "classes": [_phase_class(group, _names(facts)) for group in (table.classes if table else ())],
         "certified_at_least": _decimal(table.certified_at_least if table else None),
+        "close_pairs": close_pairs(facts),
         "channels": [_channel(view, facts) for view in channel_views(facts)],
         "cut_nets": [{**_channel(view, facts), "channel": view.row.cut_from} for view in cut_views(facts) if view.row],
         "flip_flops": [_flip_flop(load, facts) for load in facts.cone.loads],

@@ -163,10 +163,13 @@ def _remark(view: ChannelView, table: PhaseTable) -> str:
     parts = []
     if view.refusal:
         parts.append(f"cut at {view.refusal.gate} ({view.refusal.place}): {view.refusal.because}")
+    elif view.phase and view.phase.kind == "undecided":
+        if view.phase.no_lead_because:
+            parts.append(f"lead undecided: {view.phase.no_lead_because}")
+        if table.certified_at_least is not None:
+            parts.append(f"separation at least {decimal(table.certified_at_least)}")
     elif view.phase and view.phase.no_lead_because:
         parts.append(f"no lead: {view.phase.no_lead_because}")
-    elif view.phase and view.phase.kind == "undecided" and table.certified_at_least is not None:
-        parts.append(f"separation at least {decimal(table.certified_at_least)}")
     if view.row and view.row.cut_from:
         parts.append(f"feeds {view.row.cut_from}")
     return "; ".join(parts)

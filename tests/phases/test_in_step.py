@@ -141,16 +141,16 @@ def test_one_register_in_two_states_leads_by_the_steps_between_them() -> None:
 
 
 def test_without_logarithms_the_bounded_search_tells_what_is_near() -> None:
-    """2^131 - 1 has a prime of 38 digits: a lead within the window is found, a larger one stays open."""
-    register = galois((131, 8, 3, 2, 0))  # x^131 + x^8 + x^3 + x^2 + 1, irreducible (Seroussi 1998)
-    characteristic = sum(1 << k for k in (131, 8, 3, 2, 0))
+    """Beyond the largest degree with logarithms a lead within the window is found, a larger one stays open."""
+    register = galois((172, 7, 0))  # primitive (Zierler and Brillhart 1968)
+    characteristic = sum(1 << k for k in (172, 7, 0))
     for ahead, found in ((1000, 1000), (1 << 100, None)):
-        start = 1 | power_modulo(0b10, ahead, characteristic) << 131
+        start = 1 | power_modulo(0b10, ahead, characteristic) << 172
         machine = linear_machine(
             side_by_side(register, register),
-            [(1, 0), (1 << 131, 0)],
-            registers=[range(131), range(131, 262)],
-            reset_known=(1 << 262) - 1,
+            [(1, 0), (1 << 172, 0)],
+            registers=[range(172), range(172, 344)],
+            reset_known=(1 << 344) - 1,
             reset_state=start,
             transient=0,
         )

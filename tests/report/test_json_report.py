@@ -35,7 +35,8 @@ def test_the_top_level_names_stand_in_the_agreed_order():
     report = report_of(small_facts())
     assert [key for key in report if key in agreed] == agreed
     assert set(report) - set(agreed) == {
-        "top", "asked", "clock", "cut_nets", "cautions", "array", "without_shifter", "seeds"
+        "top", "asked", "clock", "close_pairs", "cut_nets", "cautions", "array", "without_shifter", "seeds", "capture", "cones",
+        "frozen_nets", "undecided_nets"
     }  # fmt: skip
     assert report["cautions"] == list(CAUTIONS)
 
@@ -226,7 +227,7 @@ def test_what_was_asked_stands_beside_the_answers():
     """Stated bounds are told, cycles as decimal strings; what was not stated is null."""
     facts = small_facts()
     limits, patterns = Limits(separation=10**17, fan_out=9), Patterns(20_000, 200, 1, "advances")
-    plan = Plan((), chain_length=200, limits=limits, patterns=patterns, fail_at="warning")
+    plan = Plan((), chain_length=200, limits=limits, patterns=patterns, fail_at="warning", work_limit=7, time_limit=60)
     assert report_of(replace(facts, plan=plan))["asked"] == {
         "chain_length": 200,
         "limits": {"separation": str(10**17), "fan_out": 9, "taps": None, "depth": None},
@@ -236,14 +237,18 @@ def test_what_was_asked_stands_beside_the_answers():
             "capture_cycles": "1",
             "generator_in_capture": "advances",
             "twin_window": 0,
+            "launch": "none",
         },
         "scan_outputs": [],
         "relations": None,
         "fail_at": "warning",
+        "work_limit": "7",
+        "time_limit": 60,
     }
     nothing = {"chain_length": None, "limits": dict.fromkeys(("separation", "fan_out", "taps", "depth"))}
     assert report_of(replace(facts, plan=Plan(())))["asked"] == {
-        **nothing, "patterns": None, "scan_outputs": [], "relations": None, "fail_at": "error"
+        **nothing, "patterns": None, "scan_outputs": [], "relations": None, "fail_at": "error",
+        "work_limit": None, "time_limit": None,
     }  # fmt: skip
 
 

@@ -253,6 +253,9 @@ def test_undecided_leads_are_said_with_what_is_proved():
     text = _words(_piped(replace(facts, phases=table, undecided=("The lead of chain[1] is undecided.",))))
     assert "chain[1] undecided - 0 - - 3 2 q[0] q[3] q[5] separation at least 1048576" in text
     assert "Proved for every pair of one class: at least 1048576." in text
+    reasoned = tuple(replace(phase, no_lead_because="the limit on work is reached") for phase in phases)
+    text_with_reason = _words(_piped(replace(facts, phases=replace(table, phases=reasoned))))
+    assert "lead undecided: the limit on work is reached; separation at least 1048576" in text_with_reason
     assert "Not decided - The lead of chain[1] is undecided." in text
 
 
