@@ -1,10 +1,10 @@
 """Drafts → modules: what waits is read, parameters get their values, and `.*` is written out."""
 
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Iterable, Mapping
 
 from auditor.verilog.checks import check
 from auditor.verilog.draft import EVERY_PORT, Draft
-from auditor.verilog.statements import Connection, Instance, Module
+from auditor.verilog.statements import Connection, Module
 from auditor.verilog.variants import Variants
 
 
@@ -57,8 +57,4 @@ def _connect_every_port(draft: Draft, modules: Mapping[str, Module]) -> None:
             if value not in draft.nets:
                 found = f"{instance.name} connects .*, and there is no net {pin} for that port of {instance.cell}"
                 draft.trouble(found, "declare the net, or write the connection out", instance.line)
-        draft.instances[number] = _connected(instance, own)
-
-
-def _connected(instance: Instance, connections: Sequence[Connection]) -> Instance:
-    return instance._replace(connections=tuple(connections))
+        draft.instances[number] = instance._replace(connections=tuple(own))
