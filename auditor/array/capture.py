@@ -37,15 +37,11 @@ def circuit_under_test(
     troubles.raise_any()
     known = {**TIES, **constants}
     spread(wiring, known, list(known))
-    while True:
-        walk = _Walk(wiring, known)
-        sinks = walk.sinks([stored[name] for name in cells])
-        walk.back_from(sink.wire for sink in sinks)
-        if not walk.settled:
-            break
-        known.update(walk.settled)
-        spread(wiring, known, list(walk.settled))
-    return _assemble(walk, sinks, [stored[name] for name in cells], {stored[n]: k for n, k in generator.items()})
+    walk = _Walk(wiring, known)
+    sinks = walk.sinks([stored[name] for name in cells])
+    walk.back_from(sink.wire for sink in sinks)
+    elements = {stored[name]: k for name, k in generator.items() if name in stored}
+    return _assemble(walk, sinks, [stored[name] for name in cells], elements)
 
 
 def _find_storage(wiring: Wiring, names: Iterable[str]) -> dict[str, tuple[int, int]]:
@@ -67,7 +63,7 @@ def _find_storage(wiring: Wiring, names: Iterable[str]) -> dict[str, tuple[int, 
 
 @dataclass(slots=True)
 class _Walk:
-    """The walk under one set of constants; ``settled`` are nets that turned out constant by themselves."""
+    """The walk under the constants ``known``; nets that turn out constant by themselves are added to them."""
 
     wiring: Wiring
     known: dict[int, int]
@@ -76,7 +72,6 @@ class _Walk:
     stored: dict[tuple[int, int], int] = field(default_factory=dict)
     free: dict[int, None] = field(default_factory=dict)
     outside: dict[int, str] = field(default_factory=dict)  # wire → what it is
-    settled: dict[int, int] = field(default_factory=dict)
     names: dict[int, str] = field(default_factory=dict)
     next_states: dict[int, tuple[Folded, int]] = field(default_factory=dict)
 
@@ -118,7 +113,7 @@ class _Walk:
             wire, all_behind_met = stack.pop()
             if all_behind_met:
                 state[wire] = _DONE
-                self.gates[wire] = waiting.pop(wire)
+                self._enter(wire, *waiting.pop(wire))
             elif state.get(wire) == _OPEN:
                 self.outside[wire] = "a net in a loop without storage"
             elif wire not in state:
@@ -130,6 +125,15 @@ class _Walk:
                     stack.extend((other, False) for other in reversed(gate[0].wires) if state.get(other) != _DONE)
         for wire in self.outside:
             self.gates.pop(wire, None)
+
+    def _enter(self, wire: int, folded: Folded, instance: int) -> None:
+        """Note a gate when all behind it is known: an input that turned out constant is folded in."""
+        if any(other in self.known for other in folded.wires):
+            folded = fold(folded.function, dict(zip(folded.function.inputs, folded.wires, strict=True)), self.known)
+        if folded.constant is None:
+            self.gates[wire] = folded, instance
+        else:
+            self.known[wire] = folded.constant
 
     def _behind(self, wire: int) -> tuple[Folded, int] | None:
         """Return the gate behind a wire, None where it is a source or constant."""
@@ -168,7 +172,7 @@ class _Walk:
         if OPEN_PIN in folded.wires:
             self.outside[net] = "the output of a gate with an open input"
         elif folded.constant is not None:
-            self.settled[net] = folded.constant
+            self.known[net] = folded.constant
         else:
             return folded, instance
         return None
@@ -199,11 +203,12 @@ class _Walk:
 def _assemble(
     walk: _Walk, sinks: list[Sink], cells: list[tuple[int, int]], generator: Mapping[tuple[int, int], int]
 ) -> Circuit:
-    """Tell the sources apart: scan cells, elements of the generator, input ports, and the rest."""
+    """Keep what decides the sinks, and tell its sources apart: scan cells, the generator, input ports, the rest."""
+    sinks = [sink for sink in dict.fromkeys(sinks) if sink.wire not in walk.known]
+    gates, read = _needed(walk, sinks)
     scanned = {walk.stored[key] for key in cells}
-    read = {wire for folded, _ in walk.gates.values() for wire in folded.wires} | {sink.wire for sink in sinks}
     elements = {walk.stored[key]: k for key, k in generator.items() if walk.stored.get(key) in read}
-    outside = [Outside(walk._name(wire), wire, because) for wire, because in walk.outside.items()]
+    outside = [Outside(walk._name(wire), wire, because) for wire, because in walk.outside.items() if wire in read]
     outside += [
         Outside(walk.names[wire], wire, "storage outside the chains")
         for wire in walk.stored.values()
@@ -212,11 +217,22 @@ def _assemble(
     netlist = walk.wiring.netlist
     return Circuit(
         netlist=netlist,
-        gates=tuple(Gate(wire, folded.function, folded.wires, i) for wire, (folded, i) in walk.gates.items()),
+        gates=gates,
         cells=tuple(walk.stored[key] for key in cells),
         generator={wire: k for wire, k in elements.items() if wire not in scanned},
-        free_inputs=tuple(sorted(walk.free, key=lambda net: natural_order(netlist.net_names[net]))),
+        free_inputs=tuple(sorted(walk.free.keys() & read, key=lambda net: natural_order(netlist.net_names[net]))),
         outside=tuple(sorted(outside, key=lambda source: natural_order(source.name))),
-        sinks=tuple(dict.fromkeys(sinks)),
+        sinks=tuple(sinks),
         names=dict(walk.names),
     )
+
+
+def _needed(walk: _Walk, sinks: Iterable[Sink]) -> tuple[tuple[Gate, ...], set[int]]:
+    """Return the gates that decide the sinks, sources first, and all wires that they or the sinks read."""
+    read = {sink.wire for sink in sinks}
+    gates = []
+    for wire, (folded, instance) in reversed(walk.gates.items()):
+        if wire in read:
+            read.update(folded.wires)
+            gates.append(Gate(wire, folded.function, folded.wires, instance))
+    return tuple(reversed(gates)), read
