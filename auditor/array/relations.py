@@ -12,7 +12,7 @@ from auditor.array.three import Progress, three_cell_forms
 
 MOST_EXAMPLES = 100
 _MOST_TOLD_APART = 50_000  # first forms
-_MOST_KEPT = 1 << 24  # first forms in memory
+_MOST_KEPT = 1 << 22  # first forms in memory: beyond, they are counted, and examples come from the first ones
 _MOST_SHIFTS = 1 << 26  # sets of distinct cells whose twins are multiplied out
 
 
@@ -30,12 +30,14 @@ def find_relations(
     """
     if size == 4 and not is_bearable(cells):
         return None
-    kept, count = [], 0
+    kept: list[Forms] = []
+    count = places = ones = 0
     for part in (three_cell_forms if size == 3 else four_cell_forms)(cells, tell):
-        kept.append(part)
         count += len(part.places)
-        if count > _MOST_KEPT:
-            return None
+        places += int(part.places.sum())
+        ones += int(part.places[part.ones].sum())
+        if count <= _MOST_KEPT:
+            kept.append(part)
     forms = joined(kept, size)
     relations = None
     if count <= _MOST_TOLD_APART:
@@ -45,10 +47,10 @@ def find_relations(
         size=size,
         distinct=len(cells),
         relations=relations,
-        places=int(forms.places.sum()),
-        ones=int(forms.places[forms.ones].sum()),
-        cell_sets=_cell_sets(cells, forms),
-        expected=comb(len(cells), size) / 2**dimension if dimension < 1000 else 0.0,
+        places=places,
+        ones=ones,
+        cell_sets=_cell_sets(cells, forms, places) if count <= _MOST_KEPT else None,
+        expected=comb(len(cells), size) / 2**dimension,
         examples=tuple(
             Relation(tuple(sorted(place_of(cells, entry) for entry in entries)), int(one), places)
             for entries, one, places in first
@@ -56,17 +58,18 @@ def find_relations(
     )
 
 
-def _cell_sets(cells: DistinctCells, forms: Forms) -> int | None:
+def _cell_sets(cells: DistinctCells, forms: Forms, total: int) -> int | None:
     """Return the sets of scan cells, every merged twin told apart: the product of the weights at every shift."""
-    total = int(forms.places.sum())
     if (cells.weight == 1).all():
         return total
     if total > _MOST_SHIFTS:
         return None
-    entries, places = forms.entries, forms.places
+    entries, places, weight = forms.entries, forms.places, cells.weight
+    if int(weight.max()) ** entries.shape[1] * len(entries) >= 1 << 62:
+        weight = weight.astype(object)
     sets, shift = 0, 0
     while len(entries):
-        sets += int(np.prod(cells.weight[entries + shift], axis=1).sum())
+        sets += int(np.prod(weight[entries + shift], axis=1).sum())
         shift += 1
         going_on = places > shift
         entries, places = entries[going_on], places[going_on]
