@@ -17,7 +17,12 @@ from auditor.notation import Vector
 
 NODE_LIMIT = 20_000  # new diagram nodes for one gate; ``--work-limit`` sets another
 RENEWED_AT = 400_000  # nodes at which diagrams are begun anew: many nets share some, but not all of them
+PROOFS = 1000  # node limits that all questions together may spend; what is asked later stays undecided
 FIRST_STEPS, STEPS = 500, 20_000  # nodes passed in one search over paths
+
+
+class _KnownTooLargeError(TooLargeError):
+    """A net behind was too large even alone: trying again does not help."""
 
 
 @dataclass(slots=True)
@@ -35,6 +40,7 @@ class Formulas:
     algebra: Diagrams = field(init=False)
     _known: dict[int, int] = field(default_factory=dict)
     _too_large: set[int] = field(default_factory=set)
+    _spent: int = 0
 
     def __post_init__(self) -> None:
         self.algebra = Diagrams(self.node_limit)
@@ -42,13 +48,17 @@ class Formulas:
     def diagram(self, wire: int) -> int:
         """Return the diagram of a wire; a failure is tried again with diagrams that hold nothing else.
 
-        Raises ``TooLargeError`` past the node limit.
+        Raises ``TooLargeError`` past the node limit, and when all questions together have spent too much.
         """
+        if self._spent + len(self.algebra.manager) > PROOFS * self.node_limit:
+            raise TooLargeError("the work of all proofs is spent")
         if len(self.algebra.manager) > RENEWED_AT:
             self._renew()
         if self._known:
             try:
                 return self._evaluate(wire)
+            except _KnownTooLargeError:
+                raise
             except TooLargeError:
                 self._renew()
         return self._evaluate(wire, last=True)
@@ -59,6 +69,7 @@ class Formulas:
         self._known[wire] = self.algebra.constant(value)
 
     def _renew(self) -> None:
+        self._spent += len(self.algebra.manager)
         self.algebra = Diagrams(self.node_limit)
         self._known.clear()
 
@@ -71,7 +82,7 @@ class Formulas:
                 stack.pop()
                 continue
             if current in self._too_large:
-                raise TooLargeError("a net behind it is too large")
+                raise _KnownTooLargeError("a net behind it is too large")
             gate = self.gates.get(current)
             if current in self.fixed or gate is None:
                 known[current] = self._source(current)
