@@ -1,6 +1,6 @@
 """What logarithms may cost, who is told how far they are, and where their tables come from."""
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from auditor.gf2.calculus.table import TableSource, make_factor_base
 from auditor.gf2.calculus.work import Progress, Work
@@ -24,6 +24,10 @@ class Effort:
     def work(self) -> Work:
         """Return a new count of work under these bounds."""
         return Work(self.work_limit, self.progress, self.deadline)
+
+    def under(self, phrase: str) -> "Effort":
+        """Return the same with a phrase before all that is reported."""
+        return replace(self, progress=lambda detail: self.report(f"{phrase}: {detail}"))
 
     def report(self, phrase: str) -> None:
         """Say in a few words what is being done."""

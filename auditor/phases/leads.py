@@ -91,8 +91,9 @@ def coordinates(
     """Return the coordinates of units of GF(2)[x]/(f); f is given by its factors, and f(0) = 1."""
     parts = []
     for irreducible, multiplicity in factors:
-        effort.report(f"leads of {len(units)} channels in a field of degree {degree(irreducible)}")
-        parts.append(_field_part([remainder(unit, irreducible) for unit in units], irreducible, effort))
+        phrase = f"leads of {len(units)} channels in a field of degree {degree(irreducible)}"
+        effort.report(phrase)
+        parts.append(_field_part([remainder(unit, irreducible) for unit in units], irreducible, effort.under(phrase)))
         if multiplicity > 1:
             parts.append(_two_part(units, irreducible, multiplicity))
     return Coordinates(tuple(parts))

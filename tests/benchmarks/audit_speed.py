@@ -3,7 +3,7 @@
     python -m tests.benchmarks.audit_speed
 
 Draws a register of 127 flip-flops with 300 three-tap channels on a published cell library where one is found beside
-the repository, else on the library of the samples; then a register of 71 flip-flops, whose leads are all exact.
+the repository, else on the library of the samples; then a register of 71 flip-flops.
 Times are CPU seconds. Exit status 1 if the first audit takes more than ``BUDGET`` besides the leads.
 """
 
@@ -72,7 +72,8 @@ def timed_audit(plan: Plan) -> tuple[AuditFacts, dict[str, float]]:
     marks.append(("end", time.process_time()))
     seconds: dict[str, float] = {}
     for (name, start), (_, end) in pairwise(marks):
-        seconds[name] = seconds.get(name, 0.0) + end - start
+        stage = name.partition(":")[0]
+        seconds[stage] = seconds.get(stage, 0.0) + end - start
     return facts, seconds
 
 
@@ -136,7 +137,7 @@ def main() -> int:
 
         netlist.write_text(generator(library, (71, 65), 300))
         facts, exact = timed_audit(plan)
-        print_stages("71 flip-flops, 300 channels, all leads exact", exact)
+        print_stages("71 flip-flops, 300 channels", exact)
         assert facts.phases is not None
         leads = [phase.lead for phase in facts.phases.phases]
         assert None not in leads
