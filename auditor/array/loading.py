@@ -74,9 +74,9 @@ def _augmented(state: Vector, constant: int) -> Vector:
 def _lock_ups(machine: LinearMachine, step: Matrix) -> tuple[tuple[Vector, ...], ...]:
     """Return, for each register that has lock-up states, independent forms that are all 0 in them and nowhere else.
 
-    A register that never moves, whatever its state, is left out: it holds a setting. A register is looked at by
-    itself: (A_RR + I) x = a_R. Where it has stuck it stays so, and it does not matter at which cycle one looks;
-    ``step`` is gone through as often as the steady rows are.
+    A register that stands still after the transient, whatever its state, is left out: it holds a setting. A register
+    is looked at by itself: (A_RR + I) x = a_R. Where it has stuck it stays so, and it does not matter at which cycle
+    one looks; ``step`` is gone through as often as the steady rows are.
     """
     found = []
     for register in machine.registers:
