@@ -74,16 +74,18 @@ def _augmented(state: Vector, constant: int) -> Vector:
 def _lock_ups(machine: LinearMachine, step: Matrix) -> tuple[tuple[Vector, ...], ...]:
     """Return, for each register that has lock-up states, independent forms that are all 0 in them and nowhere else.
 
-    A register that stands still after the transient, whatever its state, is left out: it holds a setting. A register
-    is looked at by itself: (A_RR + I) x = a_R. Where it has stuck it stays so, and it does not matter at which cycle
-    one looks; ``step`` is gone through as often as the steady rows are.
+    A register that stands still after the transient, whatever its state, is left out: it holds a setting. So is one
+    that another feeds: no state of its own keeps it. The others are stuck where (A_RR + I) x = a_R, and stay so: it
+    does not matter at which cycle one looks; ``step`` is gone through as often as the steady rows are.
     """
     found = []
     for register in machine.registers:
         inside = sum(1 << k for k in register)
+        if any(machine.transition[k] & ~inside for k in register):
+            continue
         span, forms = matrix.Span(), []
         for k in register:
-            form = _augmented(machine.transition[k] & inside ^ 1 << k, machine.offset >> k)
+            form = _augmented(machine.transition[k] ^ 1 << k, machine.offset >> k)
             for _ in range(machine.transient + 1):
                 form = matrix.row_times(form, step)
             if not span.add(form):
