@@ -1,19 +1,23 @@
 """Tables that are kept: found again, and never believed when they are wrong."""
 
+import json
 import os
 import stat
 from dataclasses import replace
 from pathlib import Path
+from typing import Any
 
 import pytest
 
 from auditor.cache import cache_folder, kept_tables
+from auditor.cli import run
 from auditor.gf2.calculus.factor_base import FactorBase
 from auditor.gf2.calculus.table import make_factor_base
 from auditor.gf2.calculus.work import Work
 from auditor.gf2.effort import Effort
 from auditor.gf2.logarithm import logarithms
 from auditor.gf2.polynomial import power_modulo
+from tests.benchmarks.audit_speed import LIBRARIES, generator
 
 N, MODULUS = 49, 4432676798593  # 2^49 - 1 = 127 x 4432676798593
 NAME = f"factor-base-{N}"
@@ -138,3 +142,28 @@ def test_where_the_folder_is(monkeypatch: pytest.MonkeyPatch, tmp_path: Path) ->
 
     monkeypatch.setattr(Path, "home", homeless)
     assert cache_folder() is None
+
+
+def test_the_command_line_keeps_tables_unless_told_not_to(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]
+) -> None:
+    """A register of 65 stages: the same report cold, with a kept table, without a cache; a limit leaves leads out."""
+    netlist = tmp_path / "g.v"
+    netlist.write_text(generator(LIBRARIES[-1], (65, 47), 5), encoding="ascii")
+    monkeypatch.setenv("XDG_CACHE_HOME", str(tmp_path / "cache"))
+
+    def report(*options: str) -> dict[str, Any]:
+        run(["audit", str(netlist), "--cells", str(LIBRARIES[-1].path), "--quiet", "--json", "-", *options])
+        found: dict[str, Any] = json.loads(capsys.readouterr().out)
+        return found
+
+    bare = report("--no-cache")
+    assert not (tmp_path / "cache").exists()
+    assert {channel["lead_kind"] for channel in bare["channels"]} == {"exact"}
+    assert report() == bare
+    assert [path.name for path in (tmp_path / "cache" / "auditor").iterdir()] == ["factor-base-65"]
+    assert report() == bare
+    limited = report("--work-limit", "5000")
+    assert [channel["lead_kind"] for channel in limited["channels"]] == ["exact", *["undecided"] * 4]
+    assert limited["channels"][1]["no_lead_because"] == "the limit on work is reached"
+    assert (limited["asked"]["work_limit"], report("--time-limit", "60")["asked"]["time_limit"]) == ("5000", 60)

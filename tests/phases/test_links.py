@@ -4,6 +4,7 @@ from functools import partial
 
 import pytest
 
+from auditor.gf2.effort import Effort
 from auditor.gf2.logarithm import logarithms
 from auditor.gf2.matrix import row_times
 from auditor.machine.machine import LinearMachine
@@ -119,6 +120,23 @@ def test_a_large_register_is_certified_without_its_leads(monkeypatch: pytest.Mon
     # Channel 2 leads by 5: scan cell 6 of its chain holds what scan cell 1 of the other holds.
     assert (found.pairs, found.example, found.complement) == (5, (1, 6), True)
     assert overlap(table, 1, 3, 101, 10) is None
+
+
+def test_a_limit_says_why_a_lead_is_undecided() -> None:
+    """Leads that a limit leaves out have a reason; progress names the field, and the limit changes nothing else."""
+    register, heard = fibonacci((59, 57, 55, 52, 0)), list[str]()
+    machine = linear_machine(register, [(1 << 5, 0), (0b111 << 20, 1), (1 << 6, 0)], registers=[range(59)])
+    limited = find_phases(machine, effort=Effort(work_limit=1000, progress=heard.append))
+    because = "the limit on work is reached"
+    assert [(phase.kind, phase.no_lead_because) for phase in limited.phases] == [
+        ("exact", ""),
+        ("undecided", because),
+        ("exact", ""),
+    ]
+    assert limited.phases[1].lead_modulus == 179951  # 2^59 - 1 = 179951 x 3203431780337
+    assert limited.certified_at_least == 1
+    assert all(phrase.startswith("leads of 3 channels in a field of degree 59") for phrase in heard)
+    assert find_phases(machine).phases[2] == limited.phases[2]
 
 
 def test_an_unknown_period_leaves_membership_open() -> None:
