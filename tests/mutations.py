@@ -3,7 +3,7 @@
     python -m tests.mutations --count 500 --seed 1 --log mutations.csv --report reports/mutations.md
 
 Half of the work are rewrites that keep the function (the comparison must say *same*), half are damages in one place
-(it must say *differs*, and name the damaged instance or, for swapped channels, those). Truth comes from
+(it must say *differs*, and name the damaged instance; three in ten have new names throughout as well). Truth comes from
 ``tests.support.gate_truth``, a simulator of the printed text with its own cell table, over more cycles from reset than
 two linear machines of the size need to show a difference; a damage that it does not see is harmless and leaves the
 count. The log holds a line a case; a run that finds lines of the same seed in it goes on behind them.
@@ -18,7 +18,7 @@ import tempfile
 import time
 from collections import Counter
 from collections.abc import Iterator
-from dataclasses import asdict, dataclass, fields
+from dataclasses import asdict, dataclass, fields, replace
 from pathlib import Path
 
 from auditor.audit import audit
@@ -27,11 +27,11 @@ from auditor.errors import InputError
 from auditor.plan import Plan
 from auditor.report.facts import AuditFacts
 from auditor.revisions.comparison import Comparison
-from tests.support.damages import DAMAGES, Damage
+from tests.support.damages import DAMAGES, Damage, readers_of
 from tests.support.gate_truth import streams
 from tests.support.machines import Machine, automaton, fibonacci, galois, with_channels
 from tests.support.mapped import Mapped, mapped
-from tests.support.rewrites import REWRITES, buffers, inverted_storage, pipelined
+from tests.support.rewrites import REWRITES, buffers, inverted_storage, pipelined, renamed
 
 ROOT = Path(__file__).parents[1]
 CELLS = ROOT / "sample_netlists" / "kelp90.lib"
@@ -119,12 +119,18 @@ def rewritten(found: Original, rng: random.Random) -> tuple[str, Mapped]:
 
 
 def damaged(found: Original, rng: random.Random) -> tuple[str, Mapped, Damage]:
-    """Return a netlist that is damaged in one place, and what was done."""
+    """Return a netlist that is damaged in one place, and what was done; some have new names throughout as well."""
     while True:
         name, netlist = rng.choice(list(DAMAGES)), found.netlist.copy()
         damage = DAMAGES[name](netlist, rng)
+        if damage and rng.random() < 0.3:
+            before = [instance.name for instance in netlist.instances]
+            renamed(netlist, rng)
+            names = dict(zip(before, (instance.name for instance in netlist.instances), strict=True))
+            damage = replace(damage, instances=tuple(names[old] for old in damage.instances))
+            name = f"{name}, renamed"
         if damage:
-            return name, netlist, damage
+            return name, netlist, replace(damage, readers=readers_of(netlist, damage.instances))
 
 
 def run_case(seed: int, number: int, folder: Path) -> Case:
@@ -148,7 +154,7 @@ def run_case(seed: int, number: int, folder: Path) -> Case:
 
 
 def _compared(texts: list[str], folder: Path, damage: Damage | None) -> tuple[str, str, str, int]:
-    """Return the outcome, the class, how the damage was found (by instance, by channel, or not), drivers named."""
+    """Return the outcome, the class, how the damage was found, and how many drivers are named."""
     sides = []
     for name, text in zip(("old.v", "new.v"), texts, strict=True):
         (folder / name).write_text(text)
@@ -165,10 +171,13 @@ def _audit(path: Path) -> AuditFacts:
 
 
 def _located(found: Comparison, damage: Damage) -> str:
-    if {net.instance for net in found.changed_nets} & set(damage.instances):
+    named = {net.instance for net in found.changed_nets}
+    if named & set(damage.instances):
         return "instance"
     channels = {name for net in found.changed_nets for name in net.feeds}
-    return "channel" if damage.channels and channels >= set(damage.channels) else "no"
+    if damage.channels and channels >= set(damage.channels):
+        return "channel"
+    return "reader" if named and named <= set(damage.readers) else "no"
 
 
 def run(count: int, seed: int, log: Path | None) -> Iterator[Case]:
@@ -226,15 +235,16 @@ def report(cases: list[Case], command: str, seconds: float) -> str:
         f"* {len(damages)} damages: {sum(not c.right for c in damages)} missed, "
         f"{sum(c.right and c.located == 'no' for c in damages)} told but not located.",
         f"* {len(cases) - len(counted)} more damages were harmless by the truth and left the count.", "",
-        "| damage | cases | told | by instance | alone | by channel | refused as no generator |",
-        "|---|---|---|---|---|---|---|",
+        "| damage | cases | told | by instance | alone | by channel | by its readers | not |",
+        "|---|---|---|---|---|---|---|---|",
     ]  # fmt: skip
-    for what in DAMAGES:
+    for what in (*DAMAGES, *(f"{what}, renamed" for what in DAMAGES)):
         own = [case for case in damages if case.what == what]
         found = Counter(case.located for case in own)
         alone = sum(case.located == "instance" and case.drivers == 1 for case in own)
-        counts = (len(own), sum(case.right for case in own), found["instance"], alone, found["channel"])
-        lines.append(f"| {what} | {' | '.join(map(str, counts))} | {found['by refusal']} |")
+        counts = (len(own), sum(case.right for case in own), found["instance"], alone, found["channel"],
+                  found["reader"], found["no"])  # fmt: skip
+        lines.append(f"| {what} | {' | '.join(map(str, counts))} |")
     lines += ["", "| rewrite (alone or with others) | cases | told the same |", "|---|---|---|"]
     for what in (*REWRITES, "other register form"):
         own = [case for case in rewrites if what in case.what.split(", ")]

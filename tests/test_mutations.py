@@ -13,7 +13,7 @@ from tests.support.machines import fibonacci, with_channels
 from tests.support.mapped import Mapped, mapped
 from tests.support.rewrites import REWRITES, XOR_FORMS, draw_xor
 
-SHORT = 12
+SHORT = 8
 SEED = 7
 
 

@@ -53,7 +53,8 @@ class Classified:
         if self.decimation:
             names = ["reversed" if self.decimation.factor == -1 else "decimated"]
         elif {"different", "undecided"} & statuses:
-            return ("different",) if "different" in statuses else ("undecided",)
+            # That no map makes all agree is proved, even where it is open whether some channel is a shift.
+            return ("different",)
         elif len({relation.shift for relation in self.found}) > 1:
             return ("different",)
         else:

@@ -28,6 +28,7 @@ from auditor.revisions.encoding import (
 )
 from auditor.revisions.findings import compare_findings
 from auditor.revisions.nets import changed_nets
+from auditor.revisions.places import matched_by_place
 from auditor.revisions.relations import Relations
 from auditor.revisions.reset import from_reset
 from auditor.revisions.revision import Revision
@@ -92,15 +93,17 @@ def _causes(old: Revision, new: Revision, matched: Matched, pairs: Sequence[Pair
     """Return the gates that did it, told by the match of the flip-flops that needs the fewest.
 
     One inverter in the feedback can turn the whole register over: by behaviour every flip-flop then stores the
-    complement and many channels changed; by name one gate did.
+    complement and many channels changed; by name one gate did. Where names are new, places may tell.
     """
-    channels = pairs or _named(old, new)
-    by_behaviour = {k: (other, inverted) for k, (other, inverted, _) in matched.items()}
     numbers = {element.name: k for k, element in enumerate(old.cone.elements)}
     by_name = {k: (numbers[e.name], False) for k, e in enumerate(new.cone.elements) if e.name in numbers}
-    told = [changed_nets(old.cone, new.cone, match, channels) for match in (by_name, by_behaviour) if match]
-    if by_name == by_behaviour:
-        return told[0] if told else ()
+    by_behaviour = {k: (other, inverted) for k, (other, inverted, _) in matched.items()}
+    matches = [by_name]
+    if 2 * len(by_name) < len(new.cone.elements) and old.machine and new.machine:
+        by_place = matched_by_place((old.machine, new.machine), (old.cone, new.cone), pairs)
+        matches = [{k: (other, False) for k, other in by_place.items()}]
+    matches += [by_behaviour] if by_behaviour != by_name else []
+    told = [changed_nets(old.cone, new.cone, match, pairs or _named(old, new)) for match in matches if match]
     return min((nets for nets in told if nets), key=len, default=())
 
 

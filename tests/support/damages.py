@@ -1,19 +1,23 @@
 """Damages of a mapped netlist, one place each, with what they touch."""
 
 import random
-from collections.abc import Callable
+from collections.abc import Callable, Collection
 from dataclasses import dataclass
 from typing import TypeAlias
 
-from tests.support.mapped import Instance, Mapped
+from tests.support.mapped import OUTPUTS, Instance, Mapped
 
 
 @dataclass(frozen=True)
 class Damage:
-    """What was damaged: the instances, of which one must be found, and the channels where they stand for them."""
+    """What was damaged: the instances, of which one must be found, and the channels where they stand for them.
+
+    ``readers`` are the instances that read what the damaged ones drive.
+    """
 
     instances: tuple[str, ...]
     channels: tuple[str, ...] = ()
+    readers: tuple[str, ...] = ()
 
 
 Maker: TypeAlias = Callable[[Mapped, random.Random], Damage | None]
@@ -129,6 +133,12 @@ def _on_flip_flop(
     ff = rng.choice(candidates)
     damage(ff)
     return Damage((ff.name,))
+
+
+def readers_of(netlist: Mapped, names: Collection[str]) -> tuple[str, ...]:
+    """Return the instances that read an output of the named ones."""
+    driven = [i.pins[pin] for i in netlist.instances if i.name in names for pin in OUTPUTS if pin in i.pins]
+    return tuple(reader.name for net in driven for reader, _ in netlist.readers(net))
 
 
 DAMAGES: dict[str, Maker] = {
