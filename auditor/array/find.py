@@ -104,7 +104,7 @@ def _orbits(search: _Search) -> tuple[Seeds | None, int | None]:
         clocks = plan.patterns.count * search.clocks if plan.patterns else 0
         orbits = search.solve(start_machine(machine, list(plan.seeds.values())), max(_ORBIT_WINDOW, clocks))
         seeds = find_seeds(machine, orbits, 0, plan.seeds, plan.patterns)
-        confirm_seeds(machine, seeds, seeds.pairs[:100])
+        confirm_seeds(machine, seeds, seeds.pairs[:10])
         if seeds.undecided:
             search.open.append(f"How far apart the seeds run is not decided for {seeds.undecided} pairs of them.")
         return replace(seeds, place=place), None

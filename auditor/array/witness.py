@@ -3,21 +3,23 @@
 64 runs at once: an element is a word, bit b its value in run b. They start in random states, or all in one state.
 """
 
-import random
-from collections.abc import Iterable, Mapping, Sequence
+from collections.abc import Iterable, Sequence
 from itertools import pairwise
 
+import numpy as np
+
 from auditor.array.orbits import augmented_step, state_after
+from auditor.array.rows import Indices, Words
 from auditor.array.scan_array import Chain, Loads, Place, Relation, SeedPair, Seeds, Twins
 from auditor.errors import InternalError
 from auditor.gf2 import matrix
 from auditor.machine.machine import LinearMachine
 from auditor.notation import Vector
 
-_LANES = 64
-_ALL = (1 << _LANES) - 1
+_ALL = np.uint64((1 << 64) - 1)
 _SEED = 0x5EED
-_STEPS = 1 << 12  # longer stretches are not stepped through but taken at once
+_MOST_STEPS = 1 << 15  # later cycles are not stepped to but reached at once
+_MOST_FAR = 3  # cycles so late; what is said of others is not looked at
 
 # A sum that is said to be constant: (channel by its name, cycle) of every bit in it, and the constant.
 Claim = tuple[tuple[tuple[str, int], ...], int]
@@ -51,16 +53,17 @@ def _claim(chains: Sequence[Chain], cells: Sequence[Place], constant: int, later
 
 
 def confirm(machine: LinearMachine, claims: Sequence[Claim], start: Vector | None = None) -> None:
-    """Run the machine, transient first, and hold every claim against it. ``InternalError`` where one fails."""
-    needed: dict[int, set[str]] = {}
-    for bits, _ in claims:
-        for name, cycle in bits:
-            needed.setdefault(cycle, set()).add(name)
-    shown = _run(machine, needed, start)
+    """Run the machine, transient first, and hold the claims against it. ``InternalError`` where one fails."""
+    named = {row.name: k for k, row in enumerate(machine.observed) if row.row is not None and not row.cut_from}
+    cycles = sorted({cycle for bits, _ in claims for _, cycle in bits})
+    far = [cycle for cycle in cycles if cycle > _MOST_STEPS]
+    kept = {cycle for cycle in cycles if cycle <= _MOST_STEPS} | set(far[:_MOST_FAR])
+    shown = _run(machine, list(named.values()), sorted(kept), start)
+    column = {name: place for place, name in enumerate(named)}
     for bits, constant in claims:
-        total = 0
-        for name, cycle in bits:
-            total ^= shown[cycle][name]
+        if not kept.issuperset(cycle for _, cycle in bits):
+            continue
+        total = np.bitwise_xor.reduce([shown[cycle][column[name]] for name, cycle in bits])
         if total != (_ALL if constant else 0):
             told = ", ".join(f"{name} in cycle {cycle}" for name, cycle in bits)
             raise InternalError(f"the run of the machine contradicts what was found on {told}")
@@ -80,42 +83,46 @@ def confirm_seeds(machine: LinearMachine, seeds: Seeds, pairs: Iterable[SeedPair
                 raise InternalError(f"seed {run.name} does move")
 
 
-def _run(machine: LinearMachine, needed: Mapping[int, set[str]], start: Vector | None) -> dict[int, dict[str, int]]:
-    """Return what the needed channels show in the needed cycles, cycle 0 the first after the transient."""
-    draw = random.Random(_SEED)
-    state = [draw.getrandbits(_LANES) if start is None else _spread(start, k) for k in range(machine.size)]
-    rows = [(tuple(matrix.ones(row)), _spread(machine.offset, i)) for i, row in enumerate(machine.transition)]
-    channels = {
-        row.name: (tuple(matrix.ones(row.row.state)), _spread(row.row.constant, 0))
-        for row in machine.observed
-        if row.row is not None and not row.cut_from
-    }
-    cycles = sorted(needed)
+class _Sums:
+    """Rows as index lists over (state, 1, 0), for all runs at once; each reads the 0 at least."""
+
+    def __init__(self, rows: Iterable[tuple[Vector, int]], size: int) -> None:
+        columns: list[int] = []
+        starts = []
+        for row, constant in rows:
+            starts.append(len(columns))
+            columns += [*matrix.ones(row), size if constant else size + 1]
+        self._columns: Indices = np.array(columns, dtype=np.intp)
+        self._starts: Indices = np.array(starts, dtype=np.intp)
+
+    def __call__(self, state: Words) -> Words:
+        """Return one word for each row."""
+        if not len(self._starts):
+            return np.zeros(0, np.uint64)
+        full = np.concatenate([state, np.array([_ALL, 0], dtype=np.uint64)])
+        return np.asarray(np.bitwise_xor.reduceat(full[self._columns], self._starts), dtype=np.uint64)
+
+
+def _run(
+    machine: LinearMachine, channels: Sequence[int], cycles: Sequence[int], start: Vector | None
+) -> dict[int, Words]:
+    """Return what the channels show in each of the rising cycles; cycle 0 is the first after the transient."""
+    size = machine.size
+    if start is None:
+        state = np.random.default_rng(_SEED).integers(0, 1 << 64, size, dtype=np.uint64)
+    else:
+        state = np.array([_ALL if start >> k & 1 else 0 for k in range(size)], dtype=np.uint64)
+    step = _Sums(((row, machine.offset >> i & 1) for i, row in enumerate(machine.transition)), size)
+    rows = (machine.observed[channel].row for channel in channels)
+    look = _Sums(((row.state, row.constant) for row in rows if row), size)
     shown = {}
     for before, cycle in pairwise([-machine.transient, *cycles]):
-        state = _advanced(machine, rows, state, cycle - before)
-        shown[cycle] = {name: _sum(state, *channels[name]) for name in needed[cycle]}
+        if cycle <= _MOST_STEPS:
+            for _ in range(cycle - before):
+                state = step(state)
+        else:
+            power = matrix.power(augmented_step(machine), cycle - before)[:size]
+            mask = (1 << size) - 1
+            state = _Sums(((row & mask, row >> size) for row in power), size)(state)
+        shown[cycle] = look(state)
     return shown
-
-
-def _advanced(
-    machine: LinearMachine, rows: Sequence[tuple[tuple[int, ...], int]], state: list[int], cycles: int
-) -> list[int]:
-    """Return the state of all runs that many cycles later."""
-    if cycles <= _STEPS:
-        for _ in range(cycles):
-            state = [_sum(state, *row) for row in rows]
-        return state
-    power = matrix.power(augmented_step(machine), cycles)
-    return [_sum([*state, _ALL], tuple(matrix.ones(row)), 0) for row in power[:-1]]
-
-
-def _sum(state: Sequence[int], elements: Iterable[int], constant: int) -> int:
-    for element in elements:
-        constant ^= state[element]
-    return constant
-
-
-def _spread(vector: Vector, k: int) -> int:
-    """Return bit k of a vector in every run."""
-    return _ALL if vector >> k & 1 else 0
