@@ -36,7 +36,7 @@ def test_the_top_level_names_stand_in_the_agreed_order():
     assert [key for key in report if key in agreed] == agreed
     assert set(report) - set(agreed) == {
         "top", "asked", "clock", "close_pairs", "cut_nets", "cautions", "array", "without_shifter", "seeds",
-        "capture", "cones", "capture", "cones", "frozen_nets", "undecided_nets",
+        "capture", "cones", "frozen_nets", "undecided_nets",
     }  # fmt: skip
     assert report["cautions"] == list(CAUTIONS)
 
