@@ -38,12 +38,15 @@ def _separations(evidence: Evidence) -> Iterator[str]:
         return
     if table.decides(bound):
         return
-    leads = [table.phases[number].kind for number, _ in evidence.channels()]
-    unknown, certified = leads.count("undecided"), table.certified_at_least
+    phases = [table.phases[number] for number, _ in evidence.channels()]
+    unknown = [phase.no_lead_because for phase in phases if phase.kind == "undecided"]
+    certified = table.certified_at_least
     if unknown and (certified is None or certified < bound):
+        reasons = "; ".join(dict.fromkeys(filter(None, unknown)))
         yield (
-            f"Whether all channels are {decimal(bound)} cycles apart is not decided: {unknown} of {len(leads)} leads "
-            f"have no value, and at least {decimal(certified or 0)} cycles are certified."
+            f"Whether all channels are {decimal(bound)} cycles apart is not decided: {len(unknown)} of {len(phases)} "
+            f"leads have no value{f' ({reasons})' if reasons else ''}, and at least {decimal(certified or 0)} cycles are "
+            "certified."
         )
 
 

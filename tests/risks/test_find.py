@@ -82,7 +82,9 @@ def undecided_leads(certified: int | None, window: int, **stated: object) -> Evi
     """Return evidence in which the lead of c2 has no value and a bounded search certifies a separation."""
     told = evidence(linear_machine(REGISTER, [(1, 0), (3, 0), (2, 0)]), **stated)
     assert told.phases
-    phases = (*told.phases.phases[:2], replace(told.phases.phases[2], lead=None, kind="undecided", inverted=None))
+    because = "the limit on work is reached"
+    open_lead = replace(told.phases.phases[2], lead=None, kind="undecided", inverted=None, no_lead_because=because)
+    phases = (*told.phases.phases[:2], open_lead)
     return replace(told, phases=replace(told.phases, phases=phases, certified_at_least=certified, window=window))
 
 
@@ -91,8 +93,8 @@ def test_a_lead_without_value_is_a_question_only_where_a_bound_needs_it() -> Non
     assert open_questions(undecided_leads(100, 100)) == ()
     assert open_questions(undecided_leads(100, 100, chain_length=100)) == ()
     assert open_questions(undecided_leads(100, 100, limits=Limits(separation=90), chain_length=101)) == (
-        "Whether all channels are 101 cycles apart is not decided: 1 of 3 leads have no value, and at least 100 cycles "
-        "are certified.",
+        "Whether all channels are 101 cycles apart is not decided: 1 of 3 leads have no value (the limit on work "
+        "is reached), and at least 100 cycles are certified.",
     )
     # A pair closer than the bound is known, and so are all others: the search looked far enough.
     assert open_questions(undecided_leads(3, 100, chain_length=100)) == ()
