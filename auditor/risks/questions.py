@@ -43,10 +43,10 @@ def _separations(evidence: Evidence) -> Iterator[str]:
     certified = table.certified_at_least
     if unknown and (certified is None or certified < bound):
         reasons = "; ".join(dict.fromkeys(filter(None, unknown)))
+        because = f" ({reasons})" if reasons else ""
         yield (
             f"Whether all channels are {decimal(bound)} cycles apart is not decided: {len(unknown)} of {len(phases)} "
-            f"leads have no value{f' ({reasons})' if reasons else ''}, and at least {decimal(certified or 0)} cycles are "
-            "certified."
+            f"leads have no value{because}, and at least {decimal(certified or 0)} cycles are certified."
         )
 
 
