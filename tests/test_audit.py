@@ -111,7 +111,7 @@ def test_the_screen_puts_the_modes_side_by_side_first() -> None:
     assert " ".join(lines[3].split()) == "calm pass 836 1 note degree 14, primitive"
     assert " ".join(lines[4].split()) == "storm fail infinite 6 errors, 1 warning, 1 note degree 14, period 585"
     at = lines.index("Mode calm")
-    assert lines[at + 1] == "Verdict pass: selected_taps, no findings"
+    assert lines[at + 1] == "Verdict pass: selected_taps, 1 note"
     assert lines[lines.index("Mode storm") + 1].startswith("Verdict fail: selected_taps, 6 errors")
     assert lines.count("Cautions") == 1
 

@@ -27,6 +27,8 @@ CONTRACT = {
     "registers-in-step": "error", "fan-out-over-limit": "warning", "taps-over-limit": "warning",
     "depth-over-limit": "warning", "forced-net": "note", "scan-cells-twinned": "error", "scan-cell-relation": "note",
     "patterns-repeat": "error", "seeds-overlap": "error", "seed-in-lock-up": "error",
+    "cone-short-of-rank": "warning",
+    "net-frozen": "error",
 }  # fmt: skip
 
 
