@@ -6,10 +6,11 @@ from dataclasses import dataclass, field, replace
 from auditor.array.distinct import DistinctCells, distinct_cells
 from auditor.array.forms import Position
 from auditor.array.loads import find_loads
+from auditor.array.meetings import comes_again_within
 from auditor.array.orbits import reset_start, start_machine
 from auditor.array.relations import find_relations, look_ups
 from auditor.array.rows import ChainRows, chain_rows
-from auditor.array.scan_array import ArrayFacts, Place, Relation, Relations, ScanArray, Seeds, WithoutShifter
+from auditor.array.scan_array import ArrayFacts, Chain, Place, Relation, Relations, ScanArray, Seeds, WithoutShifter
 from auditor.array.seeds import check_seeds, find_seeds
 from auditor.array.straight import network_area, straight_chains, straight_elements, straight_machine
 from auditor.array.twins import find_twins
@@ -79,8 +80,10 @@ def find_array(
     if plan.patterns:
         loads = find_loads(machine, table, rows, search.clocks, reset_period)
         if loads.distinct is None:
-            search.open.append("How many patterns differ is not decided: the period is not known.")
-        elif loads.exact and loads.distinct < plan.patterns.count:
+            loads = replace(loads, beyond=_outlasts(search, rows))
+        if loads.distinct is None and not loads.beyond:
+            search.open.append("Whether all planned patterns differ is not decided: the period is not known.")
+        elif loads.distinct is not None and loads.exact and loads.distinct < plan.patterns.count:
             start = machine.reset_state if loads.start == "reset" else None
             confirm(machine, load_claims((chain.channel for chain in rows.chains), loads, search.clocks), start)
     three, four = _relations(search, rows, _position(search, rows))
@@ -105,8 +108,8 @@ def _orbits(search: _Search) -> tuple[Seeds | None, int | None]:
         orbits = search.solve(start_machine(machine, list(plan.seeds.values())), max(_ORBIT_WINDOW, clocks))
         seeds = find_seeds(machine, orbits, 0, plan.seeds, plan.patterns)
         confirm_seeds(machine, seeds, seeds.pairs[:10])
-        if seeds.undecided:
-            search.open.append(f"How far apart the seeds run is not decided for {seeds.undecided} pairs of them.")
+        if seeds.at_least is not None and seeds.at_least < clocks:
+            search.open.append(f"Whether {seeds.undecided} pairs of seeds meet within the planned test is not decided.")
         return replace(seeds, place=place), None
     reset = reset_start(machine)
     if reset is None or plan.patterns is None or any(machine.input_matrix):
@@ -115,6 +118,16 @@ def _orbits(search: _Search) -> tuple[Seeds | None, int | None]:
     group = orbits.phases[0].group
     period = None if group is None else orbits.classes[group].modulus
     return None, None if period == 1 else period
+
+
+def _outlasts(search: _Search, rows: ChainRows) -> bool:
+    """Whether the stream of the first chain, from most states, and the run from reset are new for the whole test."""
+    clocks = search.plan.patterns.count * search.clocks if search.plan.patterns else 0
+    reset = reset_start(search.machine)
+    runs = [rows] if rows.chains else []
+    if reset is not None and not search.plan.seeds:
+        runs.append(chain_rows(start_machine(search.machine, [reset]), [Chain("0", 1)]))
+    return bool(runs) and all(comes_again_within(run, clocks + 1) is False for run in runs)
 
 
 def _position(search: _Search, rows: ChainRows) -> Callable[[Place], Position]:

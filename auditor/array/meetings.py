@@ -5,7 +5,7 @@ that is row_i S^b = row_k S^(g B), because S can be undone once the transient is
 met by as many giant steps as the reach needs, finds all of them (the balance of Shanks 1971).
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from math import isqrt
 
 import numpy as np
@@ -60,6 +60,16 @@ def find_meetings(rows: ChainRows, reach: int) -> Meetings | None:
         if total > _MOST_MEETINGS:
             return None
     return _joined(found)
+
+
+def comes_again_within(rows: ChainRows, reach: int) -> bool | None:
+    """Whether the stream of the first chain, or its complement, is itself again in less than ``reach`` cycles.
+
+    None where that exceeds the work that is done.
+    """
+    alone = replace(rows, numbers=rows.numbers[:1], chains=rows.chains[:1], rows=rows.rows[:1])
+    meetings = find_meetings(alone, reach)
+    return None if meetings is None else bool(len(meetings.first))
 
 
 def _progression(rows: ChainRows, stride: int, count: int, start: Rows) -> Rows:

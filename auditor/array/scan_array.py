@@ -186,12 +186,14 @@ class Loads:
 
     ``distinct``  None while the period is undecided
     ``exact``     the loads tell all states apart; otherwise there are at most so many
+    ``beyond``    the period is longer than the planned test, even if it is undecided
     """
 
     period: int | None
     distinct: int | None
     exact: bool
     start: Start
+    beyond: bool = False
 
 
 @dataclass(frozen=True, slots=True)
@@ -242,12 +244,16 @@ class SeedPair:
 
 @dataclass(frozen=True, slots=True)
 class Seeds:
-    """All seeds; ``apart``: pairs on different cycles; ``undecided``: pairs of which neither is known."""
+    """All seeds; ``apart``: pairs on different cycles; ``undecided``: pairs of which neither is known.
+
+    ``at_least``  no pair of the undecided ones is closer; None where none is undecided
+    """
 
     runs: tuple[SeedRun, ...]
     pairs: tuple[SeedPair, ...]
     apart: int
     undecided: int
+    at_least: int | None
     place: SourcePlace | None = None
 
 

@@ -48,7 +48,8 @@ def find_seeds(
         pair = _pair(orbits, (i, k), first, patterns)
         undecided += pair is None
         pairs += [pair] if pair else []
-    return Seeds(tuple(runs), tuple(sorted(pairs, key=lambda p: (p.cycles, p.seeds))), apart, undecided)
+    at_least = (orbits.window or 0) if undecided else None
+    return Seeds(tuple(runs), tuple(sorted(pairs, key=lambda p: (p.cycles, p.seeds))), apart, undecided, at_least)
 
 
 def stuck_registers(machine: LinearMachine, state: Vector) -> tuple[int, ...]:

@@ -42,7 +42,12 @@ def _array(array: ArrayFacts, scan: ScanArray) -> Json:
         },
         "distinct_patterns": _decimal(loads.distinct if loads else None),
         "distinct_patterns_basis": loads
-        and {"period": _decimal(loads.period), "start": loads.start, "exact": loads.exact},
+        and {
+            "period": _decimal(loads.period),
+            "start": loads.start,
+            "exact": loads.exact,
+            "beyond_the_test": loads.beyond,
+        },
     }
 
 

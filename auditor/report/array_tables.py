@@ -73,6 +73,8 @@ def _sets(count: str) -> str:
 
 
 def _loads_text(loads: Loads, planned: int) -> str:
+    if loads.distinct is None and loads.beyond:
+        return f"{decimal(planned)} planned; the period is longer than the test"
     if loads.distinct is None:
         return f"{decimal(planned)} planned; how many can differ is undecided"
     most = "" if loads.exact else "at most "
@@ -129,5 +131,7 @@ def _say_seeds(page: Page, seeds: Seeds, elements: int, plan: Plan) -> None:
     page.table(columns, rows)
     if len(seeds.runs) > _MOST_SEEDS:
         page.say(f"Shown are {_MOST_SEEDS} of {len(seeds.runs)} seeds; the rest in the JSON.")
+    if seeds.at_least is not None:
+        page.say(f"{plural(seeds.undecided, 'pair')} of seeds are at least {decimal(seeds.at_least)} cycles apart.")
     if seeds.apart:
         page.say(f"{plural(seeds.apart, 'pair')} of seeds run through different cycles and never meet.")

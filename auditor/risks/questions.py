@@ -69,7 +69,8 @@ def _array(evidence: Evidence) -> Iterator[str]:
         return
     yield from array.open
     loads = array.loads
-    if patterns and loads and not loads.exact and loads.distinct is not None and loads.distinct >= patterns.count:
+    enough = loads and (loads.beyond or (loads.distinct is not None and patterns and loads.distinct >= patterns.count))
+    if patterns and loads and not loads.exact and enough:
         yield (
             f"Whether all {decimal(patterns.count)} planned patterns differ is not decided: the scan cells do not tell "
             "all states of the generator apart."

@@ -5,6 +5,7 @@ import random
 import pytest
 
 from auditor.array.loads import find_loads, load_rank
+from auditor.array.meetings import comes_again_within
 from auditor.array.orbits import reset_start
 from auditor.array.rows import chain_rows
 from auditor.array.scan_array import Chain
@@ -59,3 +60,12 @@ def test_a_start_is_known_where_everything_that_is_felt_has_a_reset() -> None:
     piped = [*fibonacci((3, 1, 0)), 0b100]
     assert reset_start(linear_machine(piped, [(0b1000, 0)], reset_known=0b0111, reset_state=0b0101)) == 0b0101
     assert reset_start(linear_machine(piped, [(0b1000, 0)], reset_known=0b1110, reset_state=0b0101)) is None
+
+
+def test_a_stream_is_new_until_its_period_is_over() -> None:
+    """Period 31: nothing comes again in less than 31 cycles, and something in less than 32; too far is not decided."""
+    rows = chain_rows(linear_machine(galois((5, 2, 0)), [(1, 0)]), [Chain("c0", 3)])
+    assert [comes_again_within(rows, reach) for reach in (1, 30, 31, 32, 100)] == [False, False, False, True, True]
+    assert comes_again_within(rows, 1 << 60) is None
+    wide = chain_rows(linear_machine(galois((521, 32, 0)), [(1, 0)]), [Chain("c0", 3)])
+    assert comes_again_within(wide, 1 << 16) is False

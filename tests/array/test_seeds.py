@@ -109,3 +109,15 @@ def test_a_seed_that_does_not_fit_is_refused() -> None:
         "plan.toml: seed wide has 6 bits, but the generator has 5 storage elements; give at most 2 hexadecimal digits, "
         "bit k for element k of the report"
     ]
+
+
+def test_seeds_of_a_register_without_known_order_are_apart_as_far_as_was_searched() -> None:
+    """Degree 521 has no factored order: near seeds are found, and far ones are at least the window apart."""
+    machine = linear_machine(fibonacci((521, 489, 0)), [(1, 0)])
+    states = {"a": 5, "b": state_after(machine, 5, 1000), "c": state_after(machine, 5, 1 << 70)}
+    found = seeds_of(machine, states, Patterns(100, 30))
+    (pair,) = found.pairs
+    assert (pair.seeds, pair.cycles, pair.overlap, pair.repeated) == ((1, 0), 1000, 2000, 0)
+    assert found.undecided == 2
+    assert found.at_least is not None
+    assert found.at_least >= 3000
