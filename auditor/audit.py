@@ -152,7 +152,7 @@ def _facts(plan: Plan, library: CellLibrary, cone: Cone, inputs: tuple[InputFile
         phases=phases,
         replay=replayed,
         findings=findings,
-        assumed=(*plan.guesses, *cone.assumed, *library.notes),
+        assumed=(*plan.guesses, *cone.assumed, *(capture.assumed if capture else ()), *library.notes),
         undecided=undecided,
         verdict=verdict(findings, undecided, plan.fail_at),
         environment=_environment(),

@@ -181,3 +181,8 @@ class CaptureFacts:
     circuit: Circuit
     cones: ConeFacts
     nets: FrozenFacts
+
+    @property
+    def assumed(self) -> tuple[str, ...]:
+        """Sentences on what was taken for granted."""
+        return ("in capture each scan cell takes its data, and its asynchronous pins are inactive",)

@@ -66,6 +66,15 @@ def test_what_cannot_be_seen_through_is_listed(tmp_path: Path) -> None:
     }
 
 
+def test_a_source_outside_can_be_held(tmp_path: Path) -> None:
+    """A constant for an internal net in capture takes the place of whatever drives it."""
+    body = SCAN + "wire m; memory k (.A(a), .Y(m)); km_nand2 g (.A(m), .B(q), .Y(d)); assign y = q;"
+    assert [source.name for source in circuit(tmp_path, body, capture={"scan_en": 0}).outside] == ["m"]
+    held = circuit(tmp_path, body, capture={"scan_en": 0, "m": 0})
+    assert not held.outside
+    assert [sink.name for sink in held.sinks] == ["y"]
+
+
 def test_a_loop_without_storage_is_cut(tmp_path: Path) -> None:
     """One net of a loop becomes a source; what is behind it stays in the circuit."""
     body = (
