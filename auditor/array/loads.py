@@ -3,6 +3,7 @@
 from collections.abc import Iterable, Iterator
 from math import gcd, lcm
 
+from auditor.array.cycles import cycle_counts
 from auditor.array.rows import ChainRows
 from auditor.array.scan_array import Loads, Start
 from auditor.gf2 import matrix
@@ -26,16 +27,17 @@ def find_loads(
     """
     start: Start = "reset"
     period = from_reset
+    one = len(table.registers) == 1 and bool(table.registers[0].primitive)
     if period is None:
         channel = {row.name: k for k, row in enumerate(machine.observed) if not row.cut_from}
         groups = {table.phases[channel[chain.channel]].group for chain in rows.chains}
         moduli = [table.classes[group].modulus for group in sorted(g for g in groups if g is not None)]
         known = [modulus for modulus in moduli if modulus is not None]
         period = lcm(*known) if known and len(known) == len(moduli) and None not in groups else None
-        one = len(table.registers) == 1 and bool(table.registers[0].primitive)
         start = "any state outside lock-up" if one else "the states of the longest cycles"
     exact = load_rank(rows) == machine.cycling_degree
-    return Loads(period, distinct_loads(period, clocks), exact, start)
+    cycles = None if one else cycle_counts(machine)
+    return Loads(period, distinct_loads(period, clocks), exact, start, cycles=tuple((cycles or {}).items()))
 
 
 def load_rank(rows: ChainRows) -> int:

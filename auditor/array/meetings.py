@@ -29,6 +29,10 @@ class Meetings:
     distance: NDArray[np.int64]
     complement: NDArray[np.bool_]
 
+    def taken(self, which: Indices | slice) -> "Meetings":
+        """Return the entries at these places, in that order."""
+        return Meetings(self.first[which], self.second[which], self.distance[which], self.complement[which])
+
 
 def find_meetings(rows: ChainRows, reach: int) -> Meetings | None:
     """Return all meetings closer than ``reach`` cycles, None where that exceeds the work that is done."""
@@ -118,5 +122,4 @@ def _joined(found: list[Meetings]) -> Meetings:
     second = np.concatenate([none, *(part.second for part in found)])
     distance = np.concatenate([np.zeros(0, np.int64), *(part.distance for part in found)])
     complement = np.concatenate([np.zeros(0, bool), *(part.complement for part in found)])
-    order = np.lexsort((second, first, distance))
-    return Meetings(first[order], second[order], distance[order], complement[order])
+    return Meetings(first, second, distance, complement).taken(np.lexsort((second, first, distance)))

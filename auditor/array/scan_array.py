@@ -187,6 +187,8 @@ class Loads:
     ``distinct``  None while the period is undecided
     ``exact``     the loads tell all states apart; otherwise there are at most so many
     ``beyond``    the period is longer than the planned test, even if it is undecided
+    ``cycles``    (length, how many) of all cycles of a machine that is not one primitive register, shortest first;
+                  empty where they are not known
     """
 
     period: int | None
@@ -194,6 +196,7 @@ class Loads:
     exact: bool
     start: Start
     beyond: bool = False
+    cycles: tuple[tuple[int, int], ...] = ()
 
 
 @dataclass(frozen=True, slots=True)

@@ -35,8 +35,7 @@ def find_twins(rows: ChainRows, window: int = 0, clocks: int = 0) -> Twins | Non
     here = _Counted(rows, meetings, 0, 0)
     twins, repeats = here.part(meetings.first != meetings.second), here.part(meetings.first == meetings.second)
     signed = _both_ways(meetings, len(rows.chains)) if window else meetings
-    across = [_Counted(rows, signed, later, later * clocks) for later in range(1, window + 1)]
-    others = [counted.part(np.ones(len(signed.first), bool)) for counted in across]
+    others = [_later(rows, signed, later, later * clocks) for later in range(1, window + 1)]
     near = meetings.distance[(meetings.first != meetings.second) & (meetings.distance < span)]
     return Twins(
         pairs=twins.total,
@@ -62,18 +61,28 @@ def _with_selves(meetings: Meetings, chains: Sequence[int]) -> Meetings:
     )
 
 
+def _later(rows: ChainRows, meetings: Meetings, later: int, shift: int) -> "_Part":
+    """Return the twins between patterns ``later`` apart; ``meetings`` stand by distance."""
+    span = rows.greatest_delay + 1
+    near = slice(*np.searchsorted(meetings.distance, [shift - span, shift + span]).tolist())
+    counted = _Counted(rows, meetings.taken(near), later, shift)
+    return counted.part(np.ones(len(counted.pairs), bool))
+
+
 def _both_ways(meetings: Meetings, count: int) -> Meetings:
-    """Return each meeting of two as seen from either chain, with a sign, and every chain met by itself in step."""
-    two = (meetings.first != meetings.second) | (meetings.distance > 0)
-    first, second = meetings.first[two], meetings.second[two]
-    distance, complement = meetings.distance[two], meetings.complement[two]
+    """Return each meeting of two as seen from either chain, with a sign, and every chain met by itself in step.
+
+    They stand by distance.
+    """
+    two = meetings.taken(np.flatnonzero((meetings.first != meetings.second) | (meetings.distance > 0)))
     turned = Meetings(
-        np.concatenate([first, second]),
-        np.concatenate([second, first]),
-        np.concatenate([distance, -distance]),
-        np.concatenate([complement, complement]),
+        np.concatenate([two.first, two.second]),
+        np.concatenate([two.second, two.first]),
+        np.concatenate([two.distance, -two.distance]),
+        np.concatenate([two.complement, two.complement]),
     )
-    return _with_selves(turned, range(count))
+    signed = _with_selves(turned, range(count))
+    return signed.taken(np.argsort(signed.distance, kind="stable"))
 
 
 class _Counted:

@@ -5,6 +5,7 @@ from typing import Any, TypeAlias
 from auditor.array.scan_array import (
     ArrayFacts,
     Chain,
+    Loads,
     Place,
     Relations,
     ScanArray,
@@ -19,6 +20,8 @@ from auditor.report.wording import decimal
 
 Json: TypeAlias = dict[str, Any]
 
+_MOST_CYCLES = 100  # lengths
+
 
 def array_part(array: ArrayFacts | None, elements: int) -> Json:
     """Return the entries of the report that speak of chains and seeds; ``elements`` are those of a state."""
@@ -31,7 +34,6 @@ def array_part(array: ArrayFacts | None, elements: int) -> Json:
 
 
 def _array(array: ArrayFacts, scan: ScanArray) -> Json:
-    loads = array.loads
     return {
         "known_from": scan.known_from,
         "chains": [_chain(chain) for chain in scan.chains],
@@ -40,14 +42,20 @@ def _array(array: ArrayFacts, scan: ScanArray) -> Json:
             "three": array.three and _relations(array.three, scan),
             "four": array.four and _relations(array.four, scan),
         },
-        "distinct_patterns": _decimal(loads.distinct if loads else None),
-        "distinct_patterns_basis": loads
-        and {
-            "period": _decimal(loads.period),
-            "start": loads.start,
-            "exact": loads.exact,
-            "beyond_the_test": loads.beyond,
-        },
+        "distinct_patterns": _decimal(array.loads.distinct if array.loads else None),
+        "distinct_patterns_basis": array.loads and _loads(array.loads),
+    }
+
+
+def _loads(loads: Loads) -> Json:
+    shortest = loads.cycles[:_MOST_CYCLES]
+    return {
+        "period": _decimal(loads.period),
+        "start": loads.start,
+        "exact": loads.exact,
+        "beyond_the_test": loads.beyond,
+        "cycles": [{"length": decimal(length), "count": decimal(count)} for length, count in shortest],
+        "all_cycles_listed": len(shortest) == len(loads.cycles),
     }
 
 

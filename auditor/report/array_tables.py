@@ -7,7 +7,7 @@ from auditor.report.facts import AuditFacts
 from auditor.report.page import EMPTY, Column, Page, Row
 from auditor.report.wording import decimal, number_text, plural
 
-_MOST_SEEDS = 40
+_MOST_SEEDS, _MOST_LENGTHS = 40, 6
 _SOURCES = {"length": "stated", "file": "from the file of the chains", "netlist": "traced in the netlist"}
 
 
@@ -26,6 +26,8 @@ def say_array(page: Page, facts: AuditFacts) -> None:
                 _say_relations(page, relations, array.scan)
         if array.loads and facts.plan.patterns:
             page.entry("patterns", _loads_text(array.loads, facts.plan.patterns.count))
+            if array.loads.cycles:
+                page.entry("cycles", _cycles_text(array.loads))
         if array.bare:
             _say_without(page, array, array.bare)
     if array.seeds:
@@ -79,6 +81,14 @@ def _loads_text(loads: Loads, planned: int) -> str:
         return f"{decimal(planned)} planned; how many can differ is undecided"
     most = "" if loads.exact else "at most "
     return f"{decimal(planned)} planned; {most}{number_text(loads.distinct)} differ from {loads.start}"
+
+
+def _cycles_text(loads: Loads) -> str:
+    """Return how many cycles of each length there are, the shortest few and the longest."""
+    told = [f"{decimal(count)} of length {decimal(length)}" for length, count in loads.cycles]
+    if len(told) > _MOST_LENGTHS:
+        told[_MOST_LENGTHS - 1 : -1] = [f"{len(told) - _MOST_LENGTHS} lengths more"]
+    return ", ".join(told)
 
 
 def _say_without(page: Page, array: ArrayFacts, bare: WithoutShifter) -> None:

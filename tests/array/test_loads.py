@@ -45,6 +45,7 @@ def test_without_a_reset_the_longest_cycles_count() -> None:
     whole, part = linear_machine(galois((4, 1, 0)), [(1, 0)]), linear_machine(galois((4, 2, 0)), [(1, 0)])
     facts = [find_loads(m, find_phases(m), chain_rows(m, [Chain("c0", 4)]), 3, None) for m in (whole, part)]
     assert [(one.period, one.distinct) for one in facts] == [(15, 5), (6, 2)]
+    assert [one.cycles for one in facts] == [(), ((1, 1), (3, 1), (6, 2))]
     assert [one.start for one in facts] == ["any state outside lock-up", "the states of the longest cycles"]
 
 
