@@ -16,7 +16,7 @@ from auditor.gf2.polynomial import degree, divide, multiply_modulo
 from auditor.notation import Polynomial
 
 # An element is split into factors of the base degree and so much more, in large fields one more.
-_BEYOND, _LARGE_FIELD = 7, 149
+_BEYOND, _LARGE_FIELD = 7, 129
 _ATTEMPTS = 40  # multiples of an element that are split before the search is given up
 _SPLIT_SIZES = (4, 6)  # coefficients of the multipliers of fractions
 _RELATION_SIZES = (5, 6)  # and of those of relations

@@ -21,7 +21,7 @@ TableSource: TypeAlias = Callable[[int, int, Work], FactorBase]
 # (largest n, degree of the base, width of the sieve)
 _PARAMETERS = (
     *((56, 11, 9), (70, 12, 9), (82, 13, 10), (94, 14, 10), (106, 15, 11), (128, 16, 11)),
-    *((138, 17, 11), (152, 18, 12), (LARGEST_DEGREE, 19, 13)),
+    *((140, 16, 12), (156, 17, 12), (LARGEST_DEGREE, 18, 12)),
 )
 _BLOCKS = 512  # of the sieve, before the search is given up
 _X_INDEX = 0  # x is the first of the irreducible polynomials
