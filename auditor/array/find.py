@@ -5,12 +5,22 @@ from dataclasses import dataclass, field, replace
 
 from auditor.array.distinct import DistinctCells, distinct_cells
 from auditor.array.forms import Position
-from auditor.array.loads import find_loads
+from auditor.array.loads import count_loads, find_loads
 from auditor.array.meetings import comes_again_within
 from auditor.array.orbits import reset_start, start_machine
 from auditor.array.relations import find_relations, look_ups
 from auditor.array.rows import ChainRows, chain_rows
-from auditor.array.scan_array import ArrayFacts, Chain, Place, Relation, Relations, ScanArray, Seeds, WithoutShifter
+from auditor.array.scan_array import (
+    ArrayFacts,
+    Chain,
+    Loads,
+    Place,
+    Relation,
+    Relations,
+    ScanArray,
+    Seeds,
+    WithoutShifter,
+)
 from auditor.array.seeds import check_seeds, find_seeds
 from auditor.array.straight import network_area, straight_chains, straight_elements, straight_machine
 from auditor.array.twins import find_twins
@@ -76,16 +86,7 @@ def find_array(
         search.open.append("Which scan cells are twins is not decided: the chains or the window are too long.")
     else:
         confirm(machine, twin_claims(scan.chains, twins, search.clocks))
-    loads = None
-    if plan.patterns:
-        loads = find_loads(machine, table, rows, search.clocks, reset_period)
-        if loads.distinct is None:
-            loads = replace(loads, beyond=_outlasts(search, rows))
-        if loads.distinct is None and not loads.beyond:
-            search.open.append("Whether all planned patterns differ is not decided: the period is not known.")
-        elif loads.distinct is not None and loads.exact and loads.distinct < plan.patterns.count:
-            start = machine.reset_state if loads.start == "reset" else None
-            confirm(machine, load_claims((chain.channel for chain in rows.chains), loads, search.clocks), start)
+    loads = _loads(search, rows, reset_period)
     three, four = _relations(search, rows, _position(search, rows))
     for found in (three, four):
         if found:
@@ -118,6 +119,25 @@ def _orbits(search: _Search) -> tuple[Seeds | None, int | None]:
     group = orbits.phases[0].group
     period = None if group is None else orbits.classes[group].modulus
     return None, None if period == 1 else period
+
+
+def _loads(search: _Search, rows: ChainRows, reset_period: int | None) -> Loads | None:
+    """Return how many of the planned loads differ, with a repeat among them confirmed; None where none are planned."""
+    patterns, machine = search.plan.patterns, search.machine
+    if patterns is None:
+        return None
+    loads = find_loads(machine, search.table, rows, search.clocks, reset_period)
+    if loads.distinct is None:
+        loads = replace(loads, beyond=_outlasts(search, rows))
+        if not loads.beyond:
+            search.open.append("Whether all planned patterns differ is not decided: the period is not known.")
+    elif loads.distinct < patterns.count:
+        start = machine.reset_state if loads.start == "reset" else None
+        confirm(machine, load_claims((chain.channel for chain in rows.chains), loads, search.clocks), start)
+    elif not loads.exact and loads.start == "reset":
+        search.tell("planned loads")
+        loads = replace(loads, counted=count_loads(machine, rows, patterns, machine.reset_state))
+    return loads
 
 
 def _outlasts(search: _Search, rows: ChainRows) -> bool:

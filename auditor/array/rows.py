@@ -39,12 +39,14 @@ class ChainRows:
 
     ``numbers``  which chain of the array each is       ``chains``  these chains
     ``rows``     their channels' rows once the transient is over: bit 0 the constant, ``width`` bits in all
+    ``elements`` the machine's elements in the order of the bits 1, 2, ...
     ``step``     (width,) rows of the augmented next-state matrix: a row times it is what is shown a cycle later
     """
 
     numbers: tuple[int, ...]
     chains: tuple[Chain, ...]
     rows: tuple[Vector, ...]
+    elements: tuple[int, ...]
     step: Matrix
 
     @property
@@ -101,7 +103,8 @@ def chain_rows(machine: LinearMachine, chains: Sequence[Chain]) -> ChainRows:
     width = max(seen, default=0) + 1
     step = [streams.step[k] if k in seen else 0 for k in range(width)]
     step[0] = 1
-    return ChainRows(tuple(found), tuple(chains[number] for number in found), tuple(found.values()), step)
+    fed = tuple(chains[number] for number in found)
+    return ChainRows(tuple(found), fed, tuple(found.values()), streams.elements[: width - 1], step)
 
 
 class Keys:

@@ -186,6 +186,8 @@ class Loads:
 
     ``distinct``  None while the period is undecided
     ``exact``     the loads tell all states apart; otherwise there are at most so many
+    ``counted``   different loads among the planned ones from reset, taken one by one; None where that was not needed
+                  or not possible
     ``beyond``    the period is longer than the planned test, even if it is undecided
     ``cycles``    (length, how many) of all cycles of a machine that is not one primitive register, shortest first;
                   empty where they are not known
@@ -195,8 +197,14 @@ class Loads:
     distinct: int | None
     exact: bool
     start: Start
+    counted: int | None = None
     beyond: bool = False
     cycles: tuple[tuple[int, int], ...] = ()
+
+    @property
+    def different(self) -> int | None:
+        """The least that is known of how many patterns differ at most."""
+        return min((count for count in (self.distinct, self.counted) if count is not None), default=None)
 
 
 @dataclass(frozen=True, slots=True)

@@ -42,7 +42,7 @@ def _array(array: ArrayFacts, scan: ScanArray) -> Json:
             "three": array.three and _relations(array.three, scan),
             "four": array.four and _relations(array.four, scan),
         },
-        "distinct_patterns": _decimal(array.loads.distinct if array.loads else None),
+        "distinct_patterns": _decimal(array.loads.different if array.loads else None),
         "distinct_patterns_basis": array.loads and _loads(array.loads),
     }
 
@@ -53,6 +53,7 @@ def _loads(loads: Loads) -> Json:
         "period": _decimal(loads.period),
         "start": loads.start,
         "exact": loads.exact,
+        "counted": _decimal(loads.counted),
         "beyond_the_test": loads.beyond,
         "cycles": [{"length": decimal(length), "count": decimal(count)} for length, count in shortest],
         "all_cycles_listed": len(shortest) == len(loads.cycles),

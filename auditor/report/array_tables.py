@@ -79,6 +79,8 @@ def _loads_text(loads: Loads, planned: int) -> str:
         return f"{decimal(planned)} planned; the period is longer than the test"
     if loads.distinct is None:
         return f"{decimal(planned)} planned; how many can differ is undecided"
+    if loads.counted is not None:
+        return f"{decimal(planned)} planned; {decimal(loads.counted)} differ from {loads.start}, counted one by one"
     most = "" if loads.exact else "at most "
     return f"{decimal(planned)} planned; {most}{number_text(loads.distinct)} differ from {loads.start}"
 
@@ -93,9 +95,7 @@ def _cycles_text(loads: Loads) -> str:
 
 def _say_without(page: Page, array: ArrayFacts, bare: WithoutShifter) -> None:
     """Put the phase shifter's figures beside those of the same register without it."""
-    page.say(
-        f"With the phase shifter, and with the chains fed straight from {plural(bare.elements, 'flip-flop')} in turn:"
-    )
+    page.say(f"As it is, and with the chains fed straight from {plural(bare.elements, 'flip-flop')} in turn:")
     rows = [Row(("twins between chains", _pairs(array.twins), _pairs(bare.twins)))]
     rows.append(Row(("smallest separation within the chains", _nearest(array.twins), _nearest(bare.twins))))
     if array.three or bare.three:
@@ -104,7 +104,7 @@ def _say_without(page: Page, array: ArrayFacts, bare: WithoutShifter) -> None:
     if bare.area is not None and bare.register_area:
         share = f"{bare.area:.2f} ({100 * bare.area / bare.register_area:.0f} % of the register)"
         rows.append(Row(("area of the network", share, "0")))
-    page.table([Column(""), Column("with", True), Column("without", True)], rows)
+    page.table([Column(""), Column("as it is", True), Column("straight", True)], rows)
 
 
 def _pairs(twins: Twins | None) -> str:

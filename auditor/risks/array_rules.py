@@ -129,11 +129,10 @@ def patterns_repeat(evidence: Evidence) -> Iterator[Finding]:
             if run.distinct is not None and run.distinct < patterns.count:
                 start = f"from seed {run.name}"
                 yield _repeat(evidence, (run.name,), start, run.period, run.distinct, array.seeds.place)
-    elif array.loads and array.loads.distinct is not None and array.loads.distinct < patterns.count:
-        loads = array.loads
+    elif (loads := array.loads) and loads.different is not None and loads.different < patterns.count:
         names = tuple(name for register in evidence.registers for name in evidence.storage_names(register))
         place = evidence.element_place(evidence.registers[0].elements[0]) if evidence.registers else None
-        yield _repeat(evidence, names, f"from {loads.start}", loads.period, loads.distinct or 0, place)
+        yield _repeat(evidence, names, f"from {loads.start}", loads.period, loads.different, place)
 
 
 def _repeat(
@@ -145,8 +144,8 @@ def _repeat(
     return finding(
         "patterns-repeat",
         where,
-        f"Of the {decimal(count)} planned patterns only {decimal(distinct)} {verb} {start}: pattern "
-        f"{decimal(distinct + 1)} loads what the first one loaded, and from there on nothing new is tested.",
+        f"Of the {decimal(count)} planned patterns only {decimal(distinct)} {verb} {start}: the others load what "
+        "patterns before them loaded, and test nothing new.",
         {
             "patterns": decimal(count),
             "distinct": decimal(distinct),

@@ -70,7 +70,7 @@ def _array(evidence: Evidence) -> Iterator[str]:
     yield from array.open
     loads = array.loads
     enough = loads and (loads.beyond or (loads.distinct is not None and patterns and loads.distinct >= patterns.count))
-    if patterns and loads and not loads.exact and enough:
+    if patterns and loads and not loads.exact and loads.counted is None and enough:
         yield (
             f"Whether all {decimal(patterns.count)} planned patterns differ is not decided: the scan cells do not tell "
             "all states of the generator apart."

@@ -4,12 +4,13 @@ import random
 
 import pytest
 
-from auditor.array.loads import find_loads, load_rank
+from auditor.array.loads import count_loads, find_loads, load_basis
 from auditor.array.meetings import comes_again_within
 from auditor.array.orbits import reset_start
 from auditor.array.rows import chain_rows
 from auditor.array.scan_array import Chain
 from auditor.phases.find import find_phases
+from auditor.plan import Patterns
 from tests.support.brute_force import run
 from tests.support.linear_machines import fibonacci, galois, linear_machine
 from tests.support.machines import rank
@@ -22,7 +23,7 @@ def test_the_rank_is_that_of_the_columns(seed: int) -> None:
     machine, chains = random_array(random.Random(seed))
     columns, everything = columns_of(machine, chains)
     linear = [column ^ everything if column & 1 else column for column in columns.values()]
-    assert load_rank(chain_rows(machine, chains)) == rank(linear)
+    assert len(load_basis(chain_rows(machine, chains))) == rank(linear)
 
 
 @pytest.mark.parametrize("clocks", range(1, 13))
@@ -70,3 +71,31 @@ def test_a_stream_is_new_until_its_period_is_over() -> None:
     assert comes_again_within(rows, 1 << 60) is None
     wide = chain_rows(linear_machine(galois((521, 32, 0)), [(1, 0)]), [Chain("c0", 3)])
     assert comes_again_within(wide, 1 << 16) is False
+
+
+@pytest.mark.parametrize("seed", range(40))
+def test_counted_loads_are_those_of_a_run(seed: int) -> None:
+    """Different contents of all scan cells after each of the planned loads from a start."""
+    rng = random.Random(seed)
+    machine, chains = random_array(rng)
+    rows = chain_rows(machine, chains)
+    if not rows.chains:
+        return
+    start, count, shift = rng.getrandbits(machine.size), rng.randint(1, 20), rng.randint(1, 9)
+    states = [start]
+    while len(states) <= machine.transient + rows.greatest_delay + 20 * count + 50:
+        states.append(run(machine.transition, machine.offset, states[-1]))
+    base = max(machine.transient, shift - rows.greatest_delay)
+    contents = set()
+    for pattern in range(count):
+        parked = base + rows.greatest_delay + pattern * shift
+        contents.add(
+            tuple(
+                (row.row.state & states[parked - delay]).bit_count() & 1
+                for chain in rows.chains
+                for row in machine.observed
+                if row.name == chain.channel and row.row
+                for delay in chain.delays
+            )
+        )
+    assert count_loads(machine, rows, Patterns(count, shift), start) == len(contents)
