@@ -3,10 +3,11 @@
     python -m tests.mutations --count 500 --seed 1 --log mutations.csv --report reports/mutations.md
 
 Half of the work are rewrites that keep the function (the comparison must say *same*), half are damages in one place
-(it must say *differs*, and name the damaged instance; three in ten have new names throughout as well). Truth comes from
-``tests.support.gate_truth``, a simulator of the printed text with its own cell table, over more cycles from reset than
-two linear machines of the size need to show a difference; a damage that it does not see is harmless and leaves the
-count. The log holds a line a case; a run that finds lines of the same seed in it goes on behind them.
+(it must say *differs*, and name the damaged instance, or exactly the channels and rows of A that it moves; three in ten
+have new names throughout as well). Truth comes from ``tests.support.gate_truth``, a simulator of the printed text with
+its own cell table, over more cycles from reset than two linear machines of the size need to show a difference; a damage
+that it does not see is harmless and leaves the count. The log holds a line a case; a run that finds lines of the same
+seed in it goes on behind them.
 """
 
 import argparse
@@ -27,7 +28,7 @@ from auditor.errors import InputError
 from auditor.plan import Plan
 from auditor.report.facts import AuditFacts
 from auditor.revisions.comparison import Comparison
-from tests.support.damages import DAMAGES, Damage, readers_of
+from tests.support.damages import DAMAGES, Damage, reached_from
 from tests.support.gate_truth import streams
 from tests.support.machines import Machine, automaton, fibonacci, galois, with_channels
 from tests.support.mapped import Mapped, mapped
@@ -130,7 +131,7 @@ def damaged(found: Original, rng: random.Random) -> tuple[str, Mapped, Damage]:
             damage = replace(damage, instances=tuple(names[old] for old in damage.instances))
             name = f"{name}, renamed"
         if damage:
-            return name, netlist, replace(damage, readers=readers_of(netlist, damage.instances))
+            return name, netlist, replace(damage, reached=reached_from(netlist, damage.instances))
 
 
 def run_case(seed: int, number: int, folder: Path) -> Case:
@@ -174,10 +175,9 @@ def _located(found: Comparison, damage: Damage) -> str:
     named = {net.instance for net in found.changed_nets}
     if named & set(damage.instances):
         return "instance"
-    channels = {name for net in found.changed_nets for name in net.feeds}
-    if damage.channels and channels >= set(damage.channels):
-        return "channel"
-    return "reader" if named and named <= set(damage.readers) else "no"
+    told = {name for net in found.changed_nets for name in (*net.feeds, *net.rows)}
+    exact = told == damage.reached or (damage.channels and told == set(damage.channels))
+    return "reach" if told and exact else "no"
 
 
 def run(count: int, seed: int, log: Path | None) -> Iterator[Case]:
@@ -235,15 +235,15 @@ def report(cases: list[Case], command: str, seconds: float) -> str:
         f"* {len(damages)} damages: {sum(not c.right for c in damages)} missed, "
         f"{sum(c.right and c.located == 'no' for c in damages)} told but not located.",
         f"* {len(cases) - len(counted)} more damages were harmless by the truth and left the count.", "",
-        "| damage | cases | told | by instance | alone | by channel | by its readers | not |",
-        "|---|---|---|---|---|---|---|---|",
+        "| damage | cases | told | by instance | alone | by its channels and rows of A | not |",
+        "|---|---|---|---|---|---|---|",
     ]  # fmt: skip
     for what in (*DAMAGES, *(f"{what}, renamed" for what in DAMAGES)):
         own = [case for case in damages if case.what == what]
         found = Counter(case.located for case in own)
         alone = sum(case.located == "instance" and case.drivers == 1 for case in own)
-        counts = (len(own), sum(case.right for case in own), found["instance"], alone, found["channel"],
-                  found["reader"], found["no"])  # fmt: skip
+        counts = (len(own), sum(case.right for case in own), found["instance"], alone, found["reach"],
+                  found["no"])  # fmt: skip
         lines.append(f"| {what} | {' | '.join(map(str, counts))} |")
     lines += ["", "| rewrite (alone or with others) | cases | told the same |", "|---|---|---|"]
     for what in (*REWRITES, "other register form"):

@@ -11,6 +11,8 @@ from auditor.revisions.steady import Steady
 
 RowPair = tuple[Vector, Vector]
 _SEEDS = 8
+# A map under which less than two of so many pairs agree is not followed further, nor one that its seed does not make.
+_GLANCE = 48
 
 
 @dataclass(frozen=True, slots=True)
@@ -49,7 +51,9 @@ def align(old_step: Matrix, new_step: Matrix, pairs: Sequence[RowPair]) -> Align
 
 def _grow(old_step: Matrix, new_step: Matrix, pairs: Sequence[RowPair], order: Sequence[int]) -> Alignment:
     relations, inverted = Relations(old_step, new_step), dict[int, bool]()
-    for place in order:
+    for seen, place in enumerate(order):
+        if (seen == 1 and not inverted) or (seen == _GLANCE and len(inverted) < 2):
+            break
         old, new = pairs[place]
         if relations.relate(old, new):
             inverted[place] = False

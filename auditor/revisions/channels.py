@@ -49,9 +49,10 @@ def pairs_under(relations: Relations, old: Mapping[int, Vector], new: Mapping[in
 
 def channel_facts(revision: Revision, channel: int) -> ChannelFacts | None:
     """Return what the audit says of a channel, None where the machine was refused."""
-    if revision.machine is None:
+    machine, phase = revision.machine, revision.phase(channel)
+    if machine is None:
         return None
-    row, phase, machine = revision.observed[channel], revision.phase(channel), revision.machine
+    row = machine.observed[channel]
     storage = machine.storage
     taps = tuple(storage[t.element] + (f"(t-{t.delay})" if t.delay else "") for t in row.taps)
     nearest = phase.nearest if phase else None

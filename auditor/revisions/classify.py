@@ -6,6 +6,7 @@ the flip-flops of both registers have the same names and these make a map of the
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field, replace
+from typing import NamedTuple
 
 from auditor.gf2.effort import Effort
 from auditor.notation import Vector
@@ -14,10 +15,19 @@ from auditor.revisions.comparison import ChannelStatus
 from auditor.revisions.decimation import Decimation, find_decimation
 from auditor.revisions.permutation import find_permutation
 from auditor.revisions.relations import Relations
-from auditor.revisions.shifts import Shift, shifts
+from auditor.revisions.shifts import Shift, nearest, shifts
 from auditor.revisions.steady import Steady
 
 Pair = tuple[int, int]  # old channel, new channel
+
+
+class Lead(NamedTuple):
+    """A lead that an audit proved: y(t) = y_ref(t + cycles) + inverted, y_ref the reference of the class ``group``."""
+
+    group: int
+    cycles: int
+    inverted: bool
+    modulus: int
 
 
 @dataclass(frozen=True, slots=True)
@@ -51,7 +61,7 @@ class Classified:
         statuses = {relation.status for relation in self.found}
         inverted = any(relation.inverted for relation in self.found)
         if self.decimation:
-            names = ["reversed" if self.decimation.factor == -1 else "decimated"]
+            names: list[str] = [self.decimation.name]
         elif {"different", "undecided"} & statuses:
             # That no map makes all agree is proved, even where it is open whether some channel is a shift.
             return ("different",)
@@ -73,7 +83,7 @@ class Question:
     """What is asked: the steady parts, the channels paired so far, and what names and audits offer.
 
     ``names``   elements of one name in both registers       ``least``  how many of them must speak for a map
-    ``leads``   lead of a channel against its class reference, old and new, with the class: channel → (class, lead)
+    ``leads``   what both audits proved of the channels that have a lead
     """
 
     old: Steady
@@ -81,7 +91,7 @@ class Question:
     pairs: tuple[Pair, ...]
     names: Sequence[Pair]
     least: int
-    leads: tuple[Mapping[int, tuple[int, int]], Mapping[int, tuple[int, int]]] = field(default=({}, {}))
+    leads: tuple[Mapping[int, Lead], Mapping[int, Lead]] = field(default=({}, {}))
     effort: Effort = field(default_factory=Effort)
 
     def rows(self) -> list[RowPair]:
@@ -106,13 +116,14 @@ def classify(question: Question) -> Classified:
             best = by_names
     turn = 0
     if 2 * len(best.inverted) <= len(rows):
-        if permuted := find_permutation(question.old, question.new, rows):
+        permuted = find_permutation(question.old, question.new, rows) if _may_be_permuted(question) else None
+        if permuted:
             turn = _turn(question, named, permuted)
             best = agreeing(permuted, rows)
         elif not (named and best.inverted) and (
             decimation := find_decimation(question.old.step, question.new.step, rows, question.effort)
         ):
-            found = [Relation("different", None, decimation.inverted.get(place)) for place in range(len(rows))]
+            found = [Relation(decimation.name, None, decimation.inverted.get(place)) for place in range(len(rows))]
             return Classified(question.pairs, tuple(found), None, decimation)
     found = _relations(question, best)
     if turn:
@@ -124,8 +135,20 @@ def _one_shift(question: Question, named: Relations) -> bool:
     """Whether the first channel is a shift of its old self under the map of the names."""
     old, new = question.rows()[0]
     base = named.to_new(old)
-    found = shifts(question.new.step, [(base, new)], (), question.effort)[0] if base is not None else None
+    found = shifts(question.new.step, [(base, new)], question.effort)[0] if base is not None else None
     return bool(found and found.cycles)
+
+
+def _may_be_permuted(question: Question) -> bool:
+    """Whether the leads leave it open: in one class, a permutation turns the circle of all old leads into the new."""
+    leads = [[side.get(pair[k]) for pair in question.pairs] for k, side in enumerate(question.leads)]
+    old, new = ([lead for lead in own if lead] for own in leads)
+    whole = len(old) == len(new) == len(question.pairs)
+    if not whole or len({lead.group for lead in old}) > 1 or len({lead[0::3] for lead in new}) > 1:
+        return True
+    modulus, targets = new[0].modulus, {lead.cycles for lead in new}
+    apart = [lead.cycles - old[0].cycles for lead in old]
+    return any(all((first + d) % modulus in targets for d in apart) for first in targets)
 
 
 def _turn(question: Question, named: Relations | None, permuted: Relations) -> int:
@@ -133,7 +156,7 @@ def _turn(question: Question, named: Relations | None, permuted: Relations) -> i
     row = next(old for old, _ in question.rows() if old > 1)
     if named is None or (base := named.to_new(row)) is None or (image := permuted.to_new(row)) is None:
         return 0
-    found = shifts(question.new.step, [(base, image)], (), question.effort)[0]
+    found = shifts(question.new.step, [(base, image)], question.effort)[0]
     return found.cycles or 0 if found else 0
 
 
@@ -144,7 +167,7 @@ def _relations(question: Question, best: Alignment) -> list[Relation]:
         place: Relation("inverted" if inverted else "same", 0, inverted) for place, inverted in best.inverted.items()
     }
     carried = _carried(question, relations, [place for place in range(len(rows)) if place not in found])
-    open_places, pairs, hints = [], list[tuple[Vector, Vector]](), list[int | None]()
+    open_places, pairs = list[int](), list[tuple[Vector, Vector]]()
     for place, (old, new) in enumerate(rows):
         if place in found:
             continue
@@ -153,11 +176,12 @@ def _relations(question: Question, best: Alignment) -> list[Relation]:
             found[place] = Relation("permuted", 0, *carried[place])
         elif base is None:
             found[place] = Relation("different")
+        elif by_leads := _by_leads(question, best, place):
+            found[place] = _shifted(by_leads)
         else:
             open_places.append(place)
             pairs.append((base, new))
-            hints.append(_hint(question, best, place))
-    for place, shift in zip(open_places, shifts(question.new.step, pairs, hints, question.effort), strict=True):
+    for place, shift in zip(open_places, shifts(question.new.step, pairs, question.effort), strict=True):
         found[place] = _shifted(shift)
     return [found[place] for place in range(len(rows))]
 
@@ -185,13 +209,18 @@ def _carried(question: Question, relations: Relations, places: Sequence[int]) ->
     return found if carried == {question.pairs[place][0] for place in found} else {}
 
 
-def _hint(question: Question, best: Alignment, place: int) -> int | None:
-    """Return the shift that the leads of both audits give, by way of a channel of the same classes that agrees."""
+def _by_leads(question: Question, best: Alignment, place: int) -> Shift | None:
+    """Return the shift that the leads of both audits give, by way of a channel of the same classes that agrees.
+
+    All of it is proved: both leads by their audits, and that channel by the map.
+    """
     (i, j), (old, new) = question.pairs[place], question.leads
     if i not in old or j not in new:
         return None
     for other, inverted in best.inverted.items():
         a, b = question.pairs[other]
-        if not inverted and a in old and b in new and old[a][0] == old[i][0] and new[b][0] == new[j][0]:
-            return (new[j][1] - new[b][1]) - (old[i][1] - old[a][1])
+        if a in old and b in new and old[a].group == old[i].group and new[b].group == new[j].group:
+            cycles = (new[j].cycles - new[b].cycles) - (old[i].cycles - old[a].cycles)
+            bits = (new[j].inverted, new[b].inverted, old[i].inverted, old[a].inverted, inverted)
+            return Shift(nearest(cycles % new[j].modulus, new[j].modulus), sum(bits) % 2 == 1)
     return None

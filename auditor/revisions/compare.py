@@ -7,7 +7,7 @@ from auditor.gf2.effort import Effort
 from auditor.machine.machine import LinearMachine
 from auditor.phases.streams import read_streams
 from auditor.revisions.channels import changes, pairs_by_behaviour, pairs_by_name, pairs_under
-from auditor.revisions.classify import Classified, Pair, Question, Relation, classify
+from auditor.revisions.classify import Classified, Lead, Pair, Question, Relation, classify
 from auditor.revisions.comparison import (
     ALIKE,
     ChangedNet,
@@ -98,12 +98,15 @@ def _causes(old: Revision, new: Revision, matched: Matched, pairs: Sequence[Pair
     numbers = {element.name: k for k, element in enumerate(old.cone.elements)}
     by_name = {k: (numbers[e.name], False) for k, e in enumerate(new.cone.elements) if e.name in numbers}
     by_behaviour = {k: (other, inverted) for k, (other, inverted, _) in matched.items()}
+    turned = any(inverted for _, inverted in by_behaviour.values())
     matches = [by_name]
     if 2 * len(by_name) < len(new.cone.elements) and old.machine and new.machine:
         by_place = matched_by_place((old.machine, new.machine), (old.cone, new.cone), pairs)
         matches = [{k: (other, False) for k, other in by_place.items()}]
-    matches += [by_behaviour] if by_behaviour != by_name else []
-    told = [changed_nets(old.cone, new.cone, match, pairs or _named(old, new)) for match in matches if match]
+    # Of equally short answers the first is taken: behaviour comes last where it has to call flip-flops inverted.
+    matches = [*matches, by_behaviour] if turned or matches == [by_name] else [by_behaviour, *matches]
+    matches = [match for place, match in enumerate(matches) if match and match not in matches[:place]]
+    told = [changed_nets(old.cone, new.cone, match, pairs or _named(old, new)) for match in matches]
     return min((nets for nets in told if nets), key=len, default=())
 
 
@@ -189,9 +192,14 @@ def _question(
     return Question(*steadies, pairs, names, least, (_leads(old), _leads(new)), effort)
 
 
-def _leads(revision: Revision) -> dict[int, tuple[int, int]]:
-    phases = revision.phases.phases if revision.phases else ()
-    return {k: (p.group, p.lead) for k, p in enumerate(phases) if p.group is not None and p.lead is not None}
+def _leads(revision: Revision) -> dict[int, Lead]:
+    """Return the exact leads of a revision's channels."""
+    found = {}
+    for channel, phase in enumerate(revision.phases.phases if revision.phases else ()):
+        modulus = phase.lead_modulus
+        if phase.group is not None and phase.lead is not None and modulus and phase.kind in ("exact", "from"):
+            found[channel] = Lead(phase.group, phase.lead, bool(phase.inverted), modulus)
+    return found
 
 
 def _pairing_remarks(old: Revision, new: Revision, named: Sequence[Pair], pairs: Sequence[Pair]) -> tuple[str, ...]:

@@ -10,7 +10,17 @@ from auditor.risks.finding import Finding
 Outcome: TypeAlias = Literal["same", "differs", "undecided"]
 MatchedBy: TypeAlias = Literal["name", "behaviour"]
 ChannelStatus: TypeAlias = Literal[
-    "same", "inverted", "shifted", "permuted", "different", "undecided", "refused", "added", "removed"
+    "same",
+    "inverted",
+    "shifted",
+    "permuted",
+    "reversed",
+    "decimated",
+    "different",
+    "undecided",
+    "refused",
+    "added",
+    "removed",
 ]
 # Classes under which every stream of one machine is one of the other, channel by channel.
 ALIKE = ("identical", "re-encoded")

@@ -6,6 +6,7 @@ every polynomial over GF(2) onto each other (Golomb 1967), so only odd factors h
 
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
+from typing import Literal
 
 from auditor.gf2 import matrix
 from auditor.gf2.effort import Effort
@@ -29,6 +30,11 @@ class Decimation:
     factor: int
     one_map: bool
     inverted: Mapping[int, bool]
+
+    @property
+    def name(self) -> Literal["reversed", "decimated"]:
+        """The class."""
+        return "reversed" if self.factor == -1 else "decimated"
 
 
 def find_decimation(
@@ -90,4 +96,4 @@ def _up_to_shifts(
     if is_irreducible(polynomial) and order_of_x(polynomial) == (1 << degree(polynomial)) - 1:
         # All states but one lie on one cycle, so any two streams are shifts of each other.
         return all(relations.dimension == len(new_step) - 1 for _ in known)
-    return all(shift is not None and shift.cycles is not None for shift in shifts(new_step, known, (), effort))
+    return all(shift is not None and shift.cycles is not None for shift in shifts(new_step, known, effort))

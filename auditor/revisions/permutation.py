@@ -1,8 +1,9 @@
 """Whether the channels only changed places: the streams of one machine are those of the other in another order."""
 
 from collections import Counter
-from collections.abc import Sequence
+from collections.abc import Collection, Sequence
 
+from auditor.gf2 import matrix
 from auditor.notation import Vector
 from auditor.revisions.align import RowPair
 from auditor.revisions.relations import Relations
@@ -10,6 +11,7 @@ from auditor.revisions.steady import Steady
 
 # How many channels are tried for others, times the dimension of the machines: a second or two.
 _WORK = 1 << 18
+_LOOKS = 3
 
 
 def find_permutation(old: Steady, new: Steady, pairs: Sequence[RowPair]) -> Relations | None:
@@ -23,6 +25,7 @@ def find_permutation(old: Steady, new: Steady, pairs: Sequence[RowPair]) -> Rela
     ours = [row for row, _ in pairs]
     left = Counter(row for _, row in pairs)
     tries = _WORK // max(1, old.width)
+    glance = _Glance(old, new, ours, left)
     waiting = [(Relations(old.step, new.step), 0, left)]
     while waiting and tries:
         relations, place, left = waiting.pop()
@@ -34,13 +37,32 @@ def find_permutation(old: Steady, new: Steady, pairs: Sequence[RowPair]) -> Rela
         if place == len(ours):
             return relations
         branches = []
+        candidates = list(left) if place else [row for row in left if glance.fits(row)]
         for inverted in (0, 1):
-            for row in left:
+            for row in candidates:
                 grown = relations.copy()
                 if grown.relate(ours[place], row ^ inverted):
                     branches.append((grown, place, left))
         waiting += reversed(branches)
     return None
+
+
+class _Glance:
+    """A quick look at what a new row for the first channel would mean for a few others that it binds."""
+
+    def __init__(self, old: Steady, new: Steady, ours: Sequence[Vector], rows: Collection[Vector]) -> None:
+        span, row, length = matrix.Span(), ours[0], 0
+        while not span.add(row >> 1):
+            row, length = matrix.row_times(row, old.step), length + 1
+        bound = ((other >> 1, span.reduce(other >> 1)) for other in ours[1:])
+        self._combinations = [combination for other, (rest, combination) in bound if other and not rest][:_LOOKS]
+        self._step, self._length = new.step, length
+        self._wanted = {other >> 1 for other in rows}
+
+    def fits(self, row: Vector) -> bool:
+        """Whether the images of the few are among the new channels, inverted or not."""
+        powers = matrix.krylov(row, self._step, self._length)
+        return all(matrix.row_times(few, powers) >> 1 in self._wanted for few in self._combinations)
 
 
 def _bound(

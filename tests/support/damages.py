@@ -12,12 +12,12 @@ from tests.support.mapped import OUTPUTS, Instance, Mapped
 class Damage:
     """What was damaged: the instances, of which one must be found, and the channels where they stand for them.
 
-    ``readers`` are the instances that read what the damaged ones drive.
+    ``reached`` are the channels, and the flip-flops by their data, that gates carry the damage to in the same cycle.
     """
 
     instances: tuple[str, ...]
     channels: tuple[str, ...] = ()
-    readers: tuple[str, ...] = ()
+    reached: frozenset[str] = frozenset()
 
 
 Maker: TypeAlias = Callable[[Mapped, random.Random], Damage | None]
@@ -135,10 +135,19 @@ def _on_flip_flop(
     return Damage((ff.name,))
 
 
-def readers_of(netlist: Mapped, names: Collection[str]) -> tuple[str, ...]:
-    """Return the instances that read an output of the named ones."""
-    driven = [i.pins[pin] for i in netlist.instances if i.name in names for pin in OUTPUTS if pin in i.pins]
-    return tuple(reader.name for net in driven for reader, _ in netlist.readers(net))
+def reached_from(netlist: Mapped, names: Collection[str]) -> frozenset[str]:
+    """Return the channels and the flip-flops that the outputs of the named instances reach through gates."""
+    pending = [i.pins[pin] for i in netlist.instances if i.name in names for pin in OUTPUTS if pin in i.pins]
+    found, seen = {net for net in pending if net.startswith("so[")}, set(pending)
+    for net in pending:
+        for reader, _ in netlist.readers(net):
+            if reader.stores:
+                found.add(reader.name)
+            elif reader.output() not in seen:
+                seen.add(reader.output())
+                pending.append(reader.output())
+                found |= {reader.output()} if reader.output().startswith("so[") else set()
+    return frozenset(found)
 
 
 DAMAGES: dict[str, Maker] = {
