@@ -160,7 +160,7 @@ def _position(search: _Search, rows: ChainRows) -> Callable[[Place], Position]:
         turn = search.table.classes[phase.group].turn if phase.group is not None else None
         if phase.lead is None or phase.group is None or not turn:
             return None
-        return phase.group, (phase.lead - rows.chains[place.chain].delays[place.cell]) % turn, turn
+        return phase.group, (phase.lead - rows.chains[place.chain].delay_of(place.cell)) % turn, turn
 
     return position
 

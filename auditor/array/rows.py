@@ -86,7 +86,7 @@ class ChainRows:
     def row_of(self, place: Place) -> Vector:
         """Return the affine form of one scan cell, its inversion included; ``place`` counts in ``chains``."""
         chain = self.chains[place.chain]
-        cycles = self.greatest_delay - chain.delays[place.cell]
+        cycles = self.greatest_delay - chain.delay_of(place.cell)
         return matrix.row_times(self.rows[place.chain], matrix.power(self.step, cycles)) ^ chain.inverted(place.cell)
 
 

@@ -45,6 +45,10 @@ class Chain:
         """The delay of the scan cell that is filled first."""
         return max((cell.delay for cell in self.cells), default=self.length)
 
+    def delay_of(self, cell: int) -> int:
+        """Return the delay of one scan cell."""
+        return self.cells[cell].delay if self.cells else cell + 1
+
     def inverted(self, cell: int) -> bool:
         """Whether a scan cell holds the complement of what the channel gave."""
         return bool(self.cells) and self.cells[cell].inverted

@@ -1,7 +1,7 @@
 """Twin scan cells: those that hold the same bit, or its complement, whatever the state.
 
 Where chain i leads chain k by e cycles, scan cells of the delays a and b are twins in one pattern if a - b = e, and
-cells of a pattern and of the one q patterns of C clocks later if a - b = e - q C. Without delays of their own the
+cells of a pattern and of the one q patterns of C clocks later if a - b = e - q C. Where the delays are 1, 2, ... the
 cells j = max(1, 1 + e) ... min(L_1, L_2 + e) of the first chain have a partner.
 """
 
@@ -30,7 +30,7 @@ def find_twins(rows: ChainRows, window: int = 0, clocks: int = 0) -> Twins | Non
     meetings = find_meetings(rows, span + window * clocks)
     if meetings is None:
         return None
-    known = [number for number, chain in enumerate(rows.chains) if chain.cells]
+    known = [number for number, chain in enumerate(rows.chains) if not chain.is_plain]
     meetings = _with_selves(meetings, known)
     here = _Counted(rows, meetings, 0, 0)
     twins, repeats = here.part(meetings.first != meetings.second), here.part(meetings.first == meetings.second)
@@ -94,7 +94,7 @@ class _Counted:
         lengths = np.array([chain.length for chain in rows.chains], dtype=np.int64)
         first, second = lengths[meetings.first], lengths[meetings.second]
         self.pairs = np.maximum(0, np.minimum(first, second + difference) - np.maximum(0, difference))
-        own = np.array([bool(chain.cells) for chain in rows.chains], dtype=bool)
+        own = np.array([not chain.is_plain for chain in rows.chains], dtype=bool)
         for place in np.flatnonzero(own[meetings.first] | own[meetings.second]).tolist():
             i, k = int(meetings.first[place]), int(meetings.second[place])
             same = i == k and not meetings.distance[place] and not later
@@ -154,7 +154,7 @@ def _equal_delays(one: Chain, other: Chain, difference: int, same: bool) -> int:
 
 def _first_pair(one: Chain, other: Chain, difference: int, same: bool) -> tuple[int, int]:
     """Return the first scan cell of one chain that has a partner, and the first such; arguments as above."""
-    if not one.cells and not other.cells:
+    if one.is_plain and other.is_plain:
         first = max(0, difference)
         return first, first - difference
     places: dict[int, list[int]] = {}

@@ -46,7 +46,7 @@ def _claim(chains: Sequence[Chain], cells: Sequence[Place], constant: int, later
     bits = []
     for (number, cell), cycles in zip(cells, later, strict=True):
         chain = chains[number]
-        bits.append((chain.channel, cycles - chain.delays[cell]))
+        bits.append((chain.channel, cycles - chain.delay_of(cell)))
         constant ^= chain.inverted(cell)
     least = min(cycle for _, cycle in bits)
     return tuple((name, cycle - least) for name, cycle in bits), constant
