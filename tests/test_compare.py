@@ -118,6 +118,21 @@ def test_added_and_removed_channels_are_listed(tmp_path: Path) -> None:
     assert (status, statuses(report)) == (1, {"a": "same", "b": "added", "c": "same"})
 
 
+def test_channels_that_moved_to_other_names_are_hinted_at(tmp_path: Path) -> None:
+    """Where some names are kept but mean other channels, that is a difference; that all streams are there is said."""
+    gates = "".join(f"  km_xor2 u_{i} (.A(s{i}), .B(s3), .Y(y[{i}]));\n" for i in range(3))
+    old = netlist(tmp_path, "old", REGISTER + gates, "[2:0] y")
+    new = netlist(
+        tmp_path,
+        "new",
+        REGISTER + gates.replace("y[2]", "y[3]").replace("y[1]", "y[2]").replace("y[0]", "y[1]"),
+        "[3:1] y",
+    )
+    status, report = compared(tmp_path, old, new)
+    assert status == 1
+    assert any("they may be renamed only" in remark for remark in report["compare"]["remarks"])
+
+
 def test_no_channel_in_common_is_said(tmp_path: Path) -> None:
     """Without a name in common, and with other counts, the rest is still compared."""
     other = (REGISTER + SHIFTER).replace(".Y(a)", ".Y(x)").replace(".Y(b)", ".Y(y)")

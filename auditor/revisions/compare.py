@@ -6,11 +6,11 @@ from dataclasses import dataclass, replace
 from auditor.gf2.effort import Effort
 from auditor.machine.machine import LinearMachine
 from auditor.phases.streams import read_streams
-from auditor.revisions.channels import changes, pairs_by_behaviour, pairs_by_name, pairs_under
+from auditor.revisions.causes import causes, matched_storage, named_channels
+from auditor.revisions.channels import changes, pairs_by_behaviour, pairs_under
 from auditor.revisions.classify import Classified, Lead, Pair, Question, Relation, classify
 from auditor.revisions.comparison import (
     ALIKE,
-    ChangedNet,
     Comparison,
     FromReset,
     MatchedBy,
@@ -27,13 +27,11 @@ from auditor.revisions.encoding import (
     state_map,
 )
 from auditor.revisions.findings import compare_findings
-from auditor.revisions.nets import changed_nets
-from auditor.revisions.places import matched_by_place
 from auditor.revisions.relations import Relations
 from auditor.revisions.reset import from_reset
 from auditor.revisions.revision import Revision
 from auditor.revisions.steady import Steady, settle
-from auditor.revisions.structure import Matched, flip_flop_changes, structure
+from auditor.revisions.structure import flip_flop_changes, structure
 from auditor.revisions.witness import followed_witness, reset_witness
 
 # Names of storage speak for a map of the states where so many of the registers' elements kept theirs.
@@ -63,11 +61,11 @@ def compare_revisions(old: Revision, new: Revision, effort: Effort = _WITHOUT_BO
     ``effort`` bounds the logarithms by which shifts are found.
     """
     result = _compare_machines(old, new, effort) if old.machine and new.machine else _refused(old, new)
-    matched = _matched(old, new, result.elements)
+    matched = matched_storage(old, new, result.elements)
     names = {old.cone.elements[other].name: new.cone.elements[k].name for k, (other, _, _) in matched.items()}
     names |= {old.cone.channels[i].name: new.cone.channels[j].name for i, j in result.related}
     outcome = _outcome(result)
-    nets = _causes(old, new, matched, tuple(result.related)) if outcome != "same" else ()
+    nets = causes(old, new, matched, tuple(result.related)) if outcome != "same" else ()
     decimation = result.classified.decimation if result.classified else None
     return Comparison(
         outcome=outcome,
@@ -89,27 +87,6 @@ def compare_revisions(old: Revision, new: Revision, effort: Effort = _WITHOUT_BO
     )
 
 
-def _causes(old: Revision, new: Revision, matched: Matched, pairs: Sequence[Pair]) -> tuple[ChangedNet, ...]:
-    """Return the gates that did it, told by the match of the flip-flops that needs the fewest.
-
-    One inverter in the feedback can turn the whole register over: by behaviour every flip-flop then stores the
-    complement and many channels changed; by name one gate did. Where names are new, places may tell.
-    """
-    numbers = {element.name: k for k, element in enumerate(old.cone.elements)}
-    by_name = {k: (numbers[e.name], False) for k, e in enumerate(new.cone.elements) if e.name in numbers}
-    by_behaviour = {k: (other, inverted) for k, (other, inverted, _) in matched.items()}
-    turned = any(inverted for _, inverted in by_behaviour.values())
-    matches = [by_name]
-    if 2 * len(by_name) < len(new.cone.elements) and old.machine and new.machine:
-        by_place = matched_by_place((old.machine, new.machine), (old.cone, new.cone), pairs)
-        matches = [{k: (other, False) for k, other in by_place.items()}]
-    # Of equally short answers the first is taken: behaviour comes last where it has to call flip-flops inverted.
-    matches = [*matches, by_behaviour] if turned or matches == [by_name] else [by_behaviour, *matches]
-    matches = [match for place, match in enumerate(matches) if match and match not in matches[:place]]
-    told = [changed_nets(old.cone, new.cone, match, pairs or _named(old, new)) for match in matches]
-    return min((nets for nets in told if nets), key=len, default=())
-
-
 def _outcome(result: _Result) -> Outcome:
     if "undecided" in result.parts:
         return "undecided"
@@ -127,7 +104,7 @@ def _refused(old: Revision, new: Revision) -> _Result:
                 f"{name} is no linear machine, so its streams were not compared: {first.what}, {first.because}"
             )
     remarks.append("Findings, structure and single gates are compared, flip-flops and channels by name.")
-    related = {pair: Relation("refused") for pair in _named(old, new)}
+    related = {pair: Relation("refused") for pair in named_channels(old, new)}
     by: dict[Pair, MatchedBy] = dict.fromkeys(related, "name")
     return _Result(
         ("undecided",), related, by, {}, FromReset(None, "there is no linear machine"), remarks=tuple(remarks)
@@ -142,7 +119,7 @@ def _compare_machines(old: Revision, new: Revision, effort: Effort) -> _Result:
         settle(machines[0], start, [i for i, row in enumerate(old.observed) if row.row], streams[0]),
         settle(machines[1], start, [i for i, row in enumerate(new.observed) if row.row], streams[1]),
     )
-    named = _named(old, new)
+    named = named_channels(old, new)
     by: MatchedBy = "name" if named else "behaviour"
     pairs = tuple(p for p in named if p[0] in steadies[0].rows and p[1] in steadies[1].rows)
     refused = [p for p in named if p not in pairs]
@@ -168,11 +145,6 @@ def _compare_machines(old: Revision, new: Revision, effort: Effort) -> _Result:
     if result.parts[0] not in ALIKE or reset.agree is False:
         result.witness = reset_witness(machines, pairs, reset) or followed_witness(machines, streams, pairs, start)
     return result
-
-
-def _named(old: Revision, new: Revision) -> tuple[Pair, ...]:
-    """Return the channels of one name."""
-    return pairs_by_name([c.name for c in old.cone.channels], [c.name for c in new.cone.channels])
 
 
 def _machines(old: Revision, new: Revision) -> tuple[LinearMachine, LinearMachine]:
@@ -268,6 +240,8 @@ def _name_class(
     counts = [len(revision.observed) - len(result.related) for revision in revisions]
     if any(counts):
         result.remarks += (_counted(counts, result.parts),)
+        if counts[0] == counts[1] and pairs_by_behaviour(*steadies):
+            result.remarks += ("Matched without their names, all channels carry the same: they may be renamed only.",)
         result.parts = ("different",)
     if not inputs_act_alike(machines, (steadies[0].streams, steadies[1].streams), list(classified.pairs)):
         result.remarks += ("Free inputs do not do the same to the channels in both revisions.",)
@@ -294,20 +268,6 @@ def _with_names(elements: Mapping[int, Element], machines: tuple[LinearMachine, 
     for k, name in enumerate(machines[1].storage):
         if k not in found and name in left:
             found[k] = left[name], False
-    return found
-
-
-def _matched(old: Revision, new: Revision, elements: Mapping[int, Element]) -> Matched:
-    """Return the matched elements by their numbers in the cones: by behaviour where there is one, else by name."""
-    numbers = [{element.name: k for k, element in enumerate(r.cone.elements)} for r in (old, new)]
-    found: dict[int, tuple[int, bool, MatchedBy]] = {}
-    if old.machine and new.machine:
-        for k, (other, inverted) in elements.items():
-            found[numbers[1][new.machine.storage[k]]] = numbers[0][old.machine.storage[other]], inverted, "behaviour"
-    taken = {other for other, _, _ in found.values()}
-    for name, k in numbers[1].items():
-        if k not in found and name in numbers[0] and numbers[0][name] not in taken:
-            found[k] = numbers[0][name], False, "name"
     return found
 
 
