@@ -178,6 +178,8 @@ def test_free_inputs_must_act_alike(tmp_path: Path) -> None:
     new = REGISTER.replace(".D(s1)", ".D(g)") + SHIFTER + "  wire g;\n" + into.format("s1")
     paths = netlist(tmp_path, "old", old, more=", input i"), netlist(tmp_path, "new", new, more=", input i")
     assert compared(tmp_path, paths[0], paths[0])[0] == 0
+    renamed = netlist(tmp_path, "renamed", old.replace(".B(i)", ".B(j)"), more=", input j")
+    assert compared(tmp_path, paths[0], renamed)[0] == 0
     status, report = compared(tmp_path, *paths)
     assert status == 1
     assert any("Free inputs" in remark for remark in report["compare"]["remarks"])

@@ -118,7 +118,8 @@ def only_renamed(
     if not complete or len(old.free_inputs) != len(new.free_inputs) or old.half_cycle != _moved(new, matched):
         return False
     moved = {other: element for element, (other, _) in matched.items()}
-    inputs = {k: new.free_inputs.index(name) for k, name in enumerate(old.free_inputs) if name in new.free_inputs}
+    places = _input_places(old, new)
+    inputs = {k: places[1].index(place) for k, place in enumerate(places[0]) if place in places[1]}
 
     def renamed(row: Vector, places: Mapping[int, int]) -> Vector:
         return sum(1 << places[k] for k in matrix.ones(row) if k in places)
@@ -144,18 +145,25 @@ def _moved(machine: LinearMachine, matched: Mapping[int, Element]) -> frozenset[
     return frozenset(matched[element][0] for element in machine.half_cycle)
 
 
+def _input_places(old: LinearMachine, new: LinearMachine) -> tuple[list[int], list[int]]:
+    """Return a common number for every free input of both: by name, or in order where they only got other names."""
+    if len(old.free_inputs) == len(new.free_inputs) and set(old.free_inputs) != set(new.free_inputs):
+        return list(range(len(old.free_inputs))), list(range(len(new.free_inputs)))
+    names = list(dict.fromkeys([*old.free_inputs, *new.free_inputs]))
+    return [names.index(name) for name in old.free_inputs], [names.index(name) for name in new.free_inputs]
+
+
 def inputs_act_alike(
     machines: tuple[LinearMachine, LinearMachine],
     streams: tuple[Streams, Streams],
     pairs: Sequence[tuple[int, int]],
 ) -> bool:
-    """Whether free inputs of one name do the same to every channel at every later cycle.
+    """Whether free inputs of one name, or of one place where names differ, do the same to every channel for ever.
 
     The differences of the channels' rows and all that follow from them must not see the inputs' columns.
     """
     old, new = machines
-    names = list(dict.fromkeys([*old.free_inputs, *new.free_inputs]))
-    places = [{k: names.index(name) for k, name in enumerate(machine.free_inputs)} for machine in machines]
+    places = _input_places(old, new)
 
     def by_name(row: Vector, side: int) -> Vector:
         return sum(1 << places[side][k] for k in matrix.ones(row))
