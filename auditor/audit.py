@@ -22,6 +22,7 @@ from auditor.cone.extract import extract_cone
 from auditor.errors import InputError, Trouble, fail
 from auditor.gf2.calculus.table import TableSource
 from auditor.gf2.effort import Effort
+from auditor.in_capture import settle_capture
 from auditor.machine.machine import Extraction, LinearMachine
 from auditor.machine.prove import prove_machine
 from auditor.netlist.flatten import flatten
@@ -133,10 +134,11 @@ def _facts(plan: Plan, library: CellLibrary, cone: Cone, inputs: tuple[InputFile
     tell = effort.report
     tell("machine")
     extraction = prove_machine(cone, plan.work_limit)
+    machine = extraction.machine
+    plan, held = settle_capture(plan, cone.netlist, library, machine) if machine else (plan, ())
     scan = _chains(plan, library, cone, tell)
     replayed, phases = _solve(plan, library, cone, extraction, scan, effort)
     array = _array(plan, library, cone, extraction, phases, scan, effort)
-    machine = extraction.machine
     capture = examine_capture(plan, cone.netlist, library, machine, scan, tell) if machine else None
     tell("risks")
     evidence = Evidence(plan, cone, extraction, phases, array, capture)
@@ -152,7 +154,7 @@ def _facts(plan: Plan, library: CellLibrary, cone: Cone, inputs: tuple[InputFile
         phases=phases,
         replay=replayed,
         findings=findings,
-        assumed=(*plan.guesses, *cone.assumed, *(capture.assumed if capture else ()), *library.notes),
+        assumed=(*plan.guesses, *cone.assumed, *(capture.assumed if capture else ()), *held, *library.notes),
         undecided=undecided,
         verdict=verdict(findings, undecided, plan.fail_at),
         environment=_environment(),

@@ -22,7 +22,7 @@ class Patterns:
     count: int
     shift_cycles: int
     capture_cycles: int = 0
-    generator_in_capture: str = "holds"  # or "advances"
+    generator_in_capture: str | None = None  # "holds" or "advances"; None: what the netlist proves, else it holds
     twin_window: int = 0  # scan cells of patterns up to so many apart are compared
     launch: str = "none"  # or "shift": two-cycle tests, launched by the last shift
 

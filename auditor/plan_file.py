@@ -266,7 +266,8 @@ class _Reader:
                 self.troubles.add(f"[patterns] has no {key}", f"state {key} = N", self.place("patterns"))
         count, shift = self.number("patterns", "count", 1), self.number("patterns", "shift_cycles", 1)
         capture = self.number("patterns", "capture_cycles", 0) or 0
-        generator = self.choice("patterns", "generator_in_capture", ("holds", "advances"))
+        stated = "generator_in_capture" in table
+        generator = self.choice("patterns", "generator_in_capture", ("holds", "advances")) if stated else None
         window = self.number("patterns", "twin_window", 0, LONGEST_TWIN_WINDOW) or 0
         return Patterns(count, shift, capture, generator, window, launch) if count and shift else None
 
