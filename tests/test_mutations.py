@@ -32,6 +32,13 @@ def test_a_short_run_has_no_false_alarm_and_no_miss(tmp_path: Path) -> None:
             assert case.located != "no", case
 
 
+def test_the_report_is_one_of_a_long_run_without_a_wrong_answer() -> None:
+    """The run in reports/ has 500 cases of each kind, no false alarm and no miss."""
+    text = (Path(__file__).parents[1] / "reports" / "mutations.md").read_text(encoding="utf-8")
+    assert "* 500 rewrites that keep the function: 0 false alarms." in text
+    assert "* 500 damages: 0 missed," in text
+
+
 def test_a_case_can_be_made_again(tmp_path: Path) -> None:
     """Seed and number are all that a case depends on."""
     assert run_case(SEED, 5, tmp_path) == run_case(SEED, 5, tmp_path)
