@@ -135,7 +135,7 @@ def _facts(plan: Plan, library: CellLibrary, cone: Cone, inputs: tuple[InputFile
     tell("machine")
     extraction = prove_machine(cone, plan.work_limit)
     machine = extraction.machine
-    plan, held = settle_capture(plan, cone.netlist, library, machine) if machine else (plan, ())
+    plan, held = settle_capture(plan, cone, library, machine) if machine else (plan, ())
     scan = _chains(plan, library, cone, tell)
     replayed, phases = _solve(plan, library, cone, extraction, scan, effort)
     array = _array(plan, library, cone, extraction, phases, scan, effort)

@@ -3,17 +3,17 @@
 from dataclasses import replace
 
 from auditor.cells.library import CellLibrary
+from auditor.cone.cone import Cone
 from auditor.cone.extract import extract_cone
 from auditor.errors import InputError, fail
 from auditor.machine.machine import LinearMachine
 from auditor.machine.prove import prove_machine
-from auditor.netlist.netlist import Netlist
 from auditor.notation import SourcePlace, Vector
 from auditor.plan import Plan
 
 
 def settle_capture(
-    plan: Plan, netlist: Netlist, library: CellLibrary, machine: LinearMachine
+    plan: Plan, cone: Cone, library: CellLibrary, machine: LinearMachine
 ) -> tuple[Plan, tuple[str, ...]]:
     """Return the plan with what the generator does in capture, and a sentence for the assumptions if it is not proved.
 
@@ -22,7 +22,7 @@ def settle_capture(
     if plan.patterns is None or not plan.patterns.capture_cycles:
         return plan, ()
     stated = plan.patterns.generator_in_capture
-    found = _in_capture(plan, netlist, library, machine) if plan.capture is not None else None
+    found = _in_capture(plan, cone, library, machine) if plan.capture is not None else None
     if found and stated and found != stated:
         raise fail(
             f"the plan says that the generator {stated} in capture, but under [capture] every register of it {found}",
@@ -35,18 +35,21 @@ def settle_capture(
     return replace(plan, patterns=replace(plan.patterns, generator_in_capture=settled)), assumed
 
 
-def _in_capture(plan: Plan, netlist: Netlist, library: CellLibrary, machine: LinearMachine) -> str | None:
+def _in_capture(plan: Plan, cone: Cone, library: CellLibrary, machine: LinearMachine) -> str | None:
     """Return "holds" or "advances" if all registers do so under the constants of capture, else None."""
+    registers = [machine.storage[k] for part in machine.registers for k in part]
+    nets = {e.name: cone.netlist.net_names[e.outputs[0][0]] for e in cone.elements if e.outputs}
+    if not registers or any(name not in nets for name in registers):
+        return None
     try:
         captured = prove_machine(
-            extract_cone(netlist, library, plan.capture or {}, plan.channels), plan.work_limit
+            extract_cone(cone.netlist, library, plan.capture or {}, [nets[name] for name in registers]), plan.work_limit
         ).machine
     except InputError:  # a clock that capture turns off or leaves open, for one: neither is proved
         return None
     if captured is None:
         return None
     rows, as_shifted = _rows(captured), _rows(machine)
-    registers = [machine.storage[k] for part in machine.registers for k in part]
     if any(name not in rows for name in registers):
         return None
     if all(rows[name] == (frozenset({name}), frozenset(), 0) for name in registers):
