@@ -187,11 +187,13 @@ def _table(search: _Search) -> PhaseTable:
     classes = [search.classes[index] for index in order]
     open_classes = {renumbered[index] for index in search.open_classes}
     pairs = tuple(sorted(search.pairs))
-    neighbours = nearest_neighbours(classes, phases, dict.fromkeys(open_classes, search.window), pairs)
+    cut = {channel for channel, observed in enumerate(search.machine.observed) if observed.cut_from}
+    neighbours = nearest_neighbours(classes, phases, dict.fromkeys(open_classes, search.window), pairs, cut)
     phases = [replace(phase, nearest=neighbours.get(channel)) for channel, phase in enumerate(phases)]
-    classes = [replace(group, minimum=closest(group.channels, neighbours)) for group in classes]
+    between = {channel: near for channel, near in neighbours.items() if channel not in cut}
+    classes = [replace(group, minimum=closest(group.channels, between)) for group in classes]
     undecided = any(phase.kind == "undecided" for phase in phases)
-    certified = min((n.separation for n in neighbours.values()), default=search.window)
+    certified = min((near.separation for near in between.values()), default=search.window)
     return PhaseTable(
         registers=register_facts(search.machine),
         classes=tuple(classes),

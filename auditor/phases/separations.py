@@ -1,7 +1,7 @@
 """How far apart channels are, from sorted leads: O(m log m) for nearest neighbours, never all pairs."""
 
 from bisect import bisect_left
-from collections.abc import Iterable, Iterator, Mapping, Sequence
+from collections.abc import Container, Iterable, Iterator, Mapping, Sequence
 
 from auditor.phases.table import Closest, Infinite, Neighbour, Phase, PhaseClass, PhaseTable, Separation
 
@@ -87,22 +87,27 @@ def sorted_leads(group: PhaseClass, phases: Sequence[Phase], turn: int) -> list[
 
 
 def nearest_neighbours(
-    classes: Sequence[PhaseClass], phases: Sequence[Phase], windows: Mapping[int, int], pairs: Iterable[Pair]
+    classes: Sequence[PhaseClass],
+    phases: Sequence[Phase],
+    windows: Mapping[int, int],
+    pairs: Iterable[Pair],
+    cut: Container[int] = (),
 ) -> dict[int, Neighbour]:
     """Return the nearest neighbour of every channel for which it is certain; of equals the first channel.
 
     Some members of a class may have no lead, or not be recognised. ``windows`` gives such a class the bound below
-    which leads and the pairs of a bounded search together still leave no pair out.
+    which leads and the pairs of a bounded search together still leave no pair out. ``cut`` are nets that feed no
+    chain: they have a neighbour and are none.
     """
     candidates: dict[int, tuple[int, int, bool]] = {}
 
     def offer(channel: int, other: int, cycles: int, complement: bool) -> None:
         candidate = (cycles, other, complement)
-        if channel not in candidates or candidate < candidates[channel]:
+        if other not in cut and (channel not in candidates or candidate < candidates[channel]):
             candidates[channel] = candidate
 
     for index, group in enumerate(classes):
-        for channel, other in _ring_neighbours(group, phases):
+        for channel, other in _ring_neighbours(group, phases, cut):
             cycles, complement = gap(group, phases[channel], phases[other])
             if index not in windows or cycles < windows[index]:
                 offer(channel, other, cycles, complement)
@@ -114,20 +119,20 @@ def nearest_neighbours(
     }
 
 
-def _ring_neighbours(group: PhaseClass, phases: Sequence[Phase]) -> Iterator[tuple[int, int]]:
-    """Yield each channel with those that can be its nearest: one in step with it, else the first on either side."""
+def _ring_neighbours(group: PhaseClass, phases: Sequence[Phase], cut: Container[int]) -> Iterator[tuple[int, int]]:
+    """Yield each member with those that can be its nearest: one in step with it, else the first on either side."""
     ring = sorted_leads(group, phases, group.turn) if group.turn else []
     places: dict[int, list[int]] = {}
-    for lead, channel in ring if len(ring) > 1 else []:
-        places.setdefault(lead, []).append(channel)
-    rings = list(places.values())
-    for k, here in enumerate(rings):
-        for channel in here:
-            if len(here) > 1:
-                yield channel, here[0] if here[0] != channel else here[1]
-            else:
-                yield channel, rings[k - 1][0]
-                yield channel, rings[(k + 1) % len(rings)][0]
+    for lead, channel in ring:
+        if channel not in cut:
+            places.setdefault(lead, []).append(channel)
+    leads = list(places)
+    for lead, channel in ring if leads else []:
+        at = bisect_left(leads, lead)
+        in_step = places.get(lead, [])
+        sides = (leads[at - 1], leads[(at + bool(in_step)) % len(leads)])
+        others = [other for other in in_step[:2] if other != channel] or [places[side][0] for side in sides]
+        yield from ((channel, other) for other in others[:2] if other != channel)
 
 
 def closest(channels: Iterable[int], neighbours: Mapping[int, Neighbour]) -> Closest | None:

@@ -42,6 +42,12 @@ def cut_views(facts: AuditFacts) -> list[ChannelView]:
     return [view for view in _observed(facts) if view.row and view.row.cut_from]
 
 
+def fed_channels(facts: AuditFacts) -> set[int]:
+    """Return the numbers of the channels that feed chains in ``LinearMachine.observed``."""
+    machine = facts.extraction.machine
+    return {k for k, row in enumerate(machine.observed if machine else ()) if not row.cut_from}
+
+
 def _observed(facts: AuditFacts) -> list[ChannelView]:
     machine, phases = facts.extraction.machine, facts.phases
     if machine is None:
@@ -72,7 +78,7 @@ def closest_pairs(facts: AuditFacts, count: int) -> list[Pair]:
     machine, table = facts.extraction.machine, facts.phases
     if machine is None or table is None:
         return []
-    fed = {k for k, row in enumerate(machine.observed) if not row.cut_from}
+    fed = fed_channels(facts)
     known = [Pair(c, min(i, j), max(i, j), complement) for i, j, c, complement in table.close_pairs if {i, j} <= fed]
     for group in table.classes:
         channels = tuple(k for k in group.channels if k in fed)

@@ -5,7 +5,7 @@ down; hexadecimal forms have bit k for x^k or for element k. The same facts give
 """
 
 import json
-from collections.abc import Sequence
+from collections.abc import Container, Sequence
 from typing import Any, TypeAlias
 
 from auditor import __version__
@@ -16,7 +16,7 @@ from auditor.phases.table import PhaseClass, RegisterFacts, ResetFacts
 from auditor.plan import Plan
 from auditor.report.array_json import array_part
 from auditor.report.capture_json import capture_part
-from auditor.report.digest import ChannelView, channel_views, cut_views, heaviest_output
+from auditor.report.digest import ChannelView, channel_views, cut_views, fed_channels, heaviest_output
 from auditor.report.facts import AuditFacts, Audits, worst
 from auditor.report.pairs_json import close_pairs
 from auditor.report.wording import CAUTIONS, decimal, exponents
@@ -92,7 +92,7 @@ def _found(facts: AuditFacts) -> Json:
         "mode": dict(facts.mode),
         "verdict": facts.verdict,
         "machine": _machine(facts),
-        "classes": [_phase_class(group, _names(facts)) for group in (table.classes if table else ())],
+        "classes": _classes(facts),
         "certified_at_least": _decimal(table.certified_at_least if table else None),
         "close_pairs": close_pairs(facts),
         "channels": [_channel(view, facts) for view in channel_views(facts)],
@@ -176,12 +176,17 @@ def _reset(reset: ResetFacts | None, width: int) -> Json | None:
     }
 
 
-def _phase_class(group: PhaseClass, names: Sequence[str]) -> Json:
+def _classes(facts: AuditFacts) -> list[Json]:
+    table, names = facts.phases, _names(facts)
+    return [_phase_class(group, names, fed_channels(facts)) for group in (table.classes if table else ())]
+
+
+def _phase_class(group: PhaseClass, names: Sequence[str], fed: Container[int]) -> Json:
     least = group.minimum
     return {
         "reference": names[group.reference],
         "modulus": _decimal(group.modulus),
-        "channels": [names[k] for k in group.channels],
+        "channels": [names[k] for k in group.channels if k in fed],
         "minimum": least
         and {
             "channels": [names[k] for k in least.channels],

@@ -5,7 +5,15 @@ from collections.abc import Sequence
 from auditor.cone.cone import Load
 from auditor.machine.machine import AffineRow, LinearMachine, ObservedRow
 from auditor.phases.table import Phase, PhaseTable
-from auditor.report.digest import ChannelView, Pair, channel_views, closest_pairs, cut_views, heaviest_output
+from auditor.report.digest import (
+    ChannelView,
+    Pair,
+    channel_views,
+    closest_pairs,
+    cut_views,
+    fed_channels,
+    heaviest_output,
+)
 from auditor.report.facts import AuditFacts
 from auditor.report.page import EMPTY, Column, Page, Row
 from auditor.report.wording import as_power, decimal, plural
@@ -73,11 +81,17 @@ def say_classes(page: Page, facts: AuditFacts) -> None:
     if len(table.classes) > 1:
         page.say("Channels of one class carry the same stream, shifted or complemented; those of two classes never do.")
     columns = [Column("class", True), Column("reference"), Column("channels", True), Column("smallest", True)]
-    rows = []
+    rows, fed = [], fed_channels(facts)
     for number, group in enumerate(table.classes[:MOST_ROWS]):
         least = EMPTY if group.minimum is None else decimal(group.minimum.cycles)
         modulus = "undecided" if group.modulus is None else as_power(group.modulus) or decimal(group.modulus)
-        cells = (str(number), machine.observed[group.reference].name, str(len(group.channels)), least, modulus)
+        cells = (
+            str(number),
+            machine.observed[group.reference].name,
+            str(len(fed & set(group.channels))),
+            least,
+            modulus,
+        )
         rows.append(Row(cells))
     page.table([*columns, Column("modulus")], rows)
     _say_rest(page, len(table.classes), "class", "classes")

@@ -242,6 +242,17 @@ def test_the_reference_is_named_or_the_first_that_is_a_channel() -> None:
     assert find_phases(only_cut).classes[0].reference == 1
 
 
+def test_a_net_behind_a_spoiled_channel_is_nobodys_nearest() -> None:
+    """It has a nearest channel, but the neighbours and the smallest pair of a class are channels that feed chains."""
+    register = fibonacci((5, 3, 0))
+    table = find_phases(linear_machine(register, [None, (1, 0), (1, 0), (4, 0)], cut_from=[1]))
+    near = [phase.nearest and (phase.nearest.channel, phase.nearest.separation) for phase in table.phases]
+    assert near == [None, (2, 0), (3, 2), (2, 2)]
+    minimum = table.classes[0].minimum
+    assert minimum
+    assert (minimum.channels, minimum.cycles) == ((2, 3), 2)
+
+
 def test_an_unknown_reference_is_an_input_error() -> None:
     """A reference that is no channel is refused with the names that come near."""
     with pytest.raises(InputError, match="the reference c111 is no channel; did you mean c11"):

@@ -58,7 +58,7 @@ def small_facts() -> AuditFacts:
         connection_polynomial=0x171, factors=(Factor(0x11D, 1, True),), period=255, maximum_period=255,
         primitive=True, lock_up_count=1, lock_up_states=(0,), reset=ResetFacts(1, (), False, 255),
     )  # fmt: skip
-    table = phase_table(len(seen), leads, {2}, 255, (register,), valid_from=1)
+    table = phase_table(len(seen), leads, {2}, 255, (register,), valid_from=1, cut=(6,))
     return _facts(machine, table, (REFUSED,))
 
 
@@ -100,16 +100,21 @@ def phase_table(
     modulus: int,
     registers: tuple[RegisterFacts, ...],
     valid_from: int,
+    cut: Sequence[int] = (),
 ) -> PhaseTable:
-    """Return the table for one class of channels with known leads; the other channels have none."""
+    """Return the table for one class of channels with known leads; the other channels have none.
+
+    ``cut`` are nets behind a spoiled channel: nobody's nearest.
+    """
     phases = [Phase(None, None, "none", None, None, 0, "it is constant or not affine")] * count
     pairs = []
     for i, lead in leads.items():
-        near = min((_apart(lead, leads[j], modulus), j) for j in leads if j != i)
+        near = min((_apart(lead, leads[j], modulus), j) for j in leads if j != i and j not in cut)
         nearest = Neighbour(near[1], near[0], (i in inverted) != (near[1] in inverted))
         kind = "from" if valid_from else "exact"
         phases[i] = Phase(0, lead, kind, modulus, i in inverted, valid_from, nearest=nearest)
-        pairs.append((near[0], min(i, near[1]), max(i, near[1]), nearest.complement))
+        if i not in cut:
+            pairs.append((near[0], min(i, near[1]), max(i, near[1]), nearest.complement))
     cycles, first, second, complement = min(pairs)
     group = PhaseClass(min(leads), modulus, tuple(sorted(leads)), Closest((first, second), cycles, complement))
     return PhaseTable(registers, (group,), tuple(phases), None)
