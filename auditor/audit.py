@@ -70,7 +70,7 @@ def audit_modes(
     deadline = None if plan.time_limit is None else monotonic() + plan.time_limit
     bounds = Effort(plan.work_limit, deadline, tables=tables or kept_tables(None))
     tell("cells")
-    library = read_cells(plan.cells, plan.defines, plan.include)
+    library = read_library(plan)
     tell("netlist")
     reading = Reading()
     netlist = read_netlist(plan, library, reading)
@@ -85,6 +85,26 @@ def audit_modes(
         plans,
         lambda name: _facts(plans[name], library, cones[name], inputs, replace(bounds, progress=in_mode(name))),
     )
+
+
+def read_library(plan: Plan) -> CellLibrary:
+    """Read the cells of a plan. Troubles come together with those that the netlist has whatever the cells are."""
+    try:
+        return read_cells(plan.cells, plan.defines, plan.include)
+    except InputError as error:
+        troubles = error.troubles
+    try:
+        read_verilog(plan.netlists, "both", plan.defines, plan.include, cells=_AnyCell())
+    except InputError as error:
+        troubles += error.troubles
+    raise InputError(troubles)
+
+
+class _AnyCell:
+    """Takes every module for a library cell: what is inside may be a model, whose text is not judged."""
+
+    def __contains__(self, name: object) -> bool:
+        return True
 
 
 def read_netlist(plan: Plan, library: CellLibrary, reading: Reading | None = None) -> Netlist:

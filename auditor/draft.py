@@ -3,9 +3,8 @@
 from collections.abc import Mapping, Sequence
 from dataclasses import replace
 
-from auditor.audit import read_netlist
+from auditor.audit import read_library, read_netlist
 from auditor.cells.library import CellLibrary
-from auditor.cells.read import read_cells
 from auditor.cone.constants import resolve_mode
 from auditor.cone.extract import extract_cone
 from auditor.cone.wiring import connect
@@ -28,7 +27,7 @@ PROOF_NODES = 5_000
 
 def draft(plan: Plan) -> Draft:
     """Return what the netlists of a plan hold, under the constants of its mode. Raises ``InputError``."""
-    library = read_cells(plan.cells, plan.defines, plan.include)
+    library = read_library(plan)
     netlist = read_netlist(plan, library)
     troubles = TroubleList()
     stated = resolve_mode(netlist, plan.mode, troubles)

@@ -85,6 +85,21 @@ def test_the_troubles_of_all_modes_come_together() -> None:
     assert sum(text.startswith("mode c: ") and "stage_q" in text for text in found) == 1
 
 
+def test_the_troubles_of_cells_and_netlists_come_together(tmp_path: Path) -> None:
+    """A library that is not there hides no netlist that is not there or does not end; inside modules none is judged."""
+    (tmp_path / "open.v").write_text("module a (input x);\n")
+    (tmp_path / "model.v").write_text("module b (input x, output reg y);\n  always @(x) y = x;\nendmodule\n")
+    netlists = tuple(tmp_path / name for name in ("none.v", "open.v", "model.v"))
+    with pytest.raises(InputError) as caught:
+        audit_modes(Plan(netlists=netlists, cells=(tmp_path / "none.lib",)))
+    found = [(Path(str(t.place.file)).name, t.found) for t in caught.value.troubles if t.place]
+    assert found == [
+        ("none.lib", "no such file"),
+        ("none.v", "there is no such file"),
+        ("open.v", "the file ends inside module a"),
+    ]
+
+
 def test_a_mode_that_leaves_the_choice_open_is_undecidable_for_itself_only() -> None:
     """An open select pin refuses the machine of its mode, a finding; the other modes keep their machines."""
     audits = audit_modes(replace(selected_taps(), modes={"open": {}, "calm": {"storm": 0}}))
