@@ -82,11 +82,13 @@ class ConeTroubles:
         )
 
     def open_pin(self, instance: int, pin: str) -> None:
-        """Note an input inside the cone that is connected to nothing."""
-        netlist = self.wiring.netlist
+        """Note an input inside the cone that is connected to nothing, and the pins written that its cell has not."""
+        netlist, cell = self.wiring.netlist, self.wiring.cell(instance)
+        strange = [name for name, _ in netlist.pins_of(instance) if cell and name not in cell.pins]
+        mistaken = f"; its cell has no pin {', '.join(strange)}" if strange else ""
         self.loose.add(
             f"input {pin} of {netlist.instance_names[instance]} ({netlist.cell_of(instance).name}) "
-            "inside the cone is not connected",
+            f"inside the cone is not connected{mistaken}",
             "connect it or tie it to 0 or 1",
             netlist.instance_place(instance),
         )
