@@ -63,7 +63,7 @@ class Asynchronous:
     def reset_value(self, stored: Stored, known: Mapping[int, int]) -> tuple[int | None, list[int]]:
         """Return the bit that activating a single port gives, and the ports that give it.
 
-        The bit is None where no port does, or where two of them disagree.
+        The bit is None where no port does, where two of them disagree, or where clear and preset together give none.
         """
         clear, preset = stored.storage.clear, stored.storage.preset
         conditions = [condition for condition in (clear, preset) if condition is not None]
@@ -79,14 +79,18 @@ class Asynchronous:
             elif cleared or preset_on:
                 outcomes[port] = int(preset_on)
         values = set(outcomes.values())
-        return (values.pop(), list(outcomes)) if len(values) == 1 else (None, [])
+        return (values.pop(), list(outcomes)) if len(values) == 1 and None not in values else (None, [])
 
     def _release(self, condition: Function, stored: Stored, known: Mapping[int, int]) -> str:
-        """Return the constant of a single port that would make an active pin inactive."""
+        """Return the constant of a single port that would make an active pin inactive, and the other not active."""
         inputs = {net: value for net, value in known.items() if net in self.ports}
+        conditions = [c for c in (stored.storage.clear, stored.storage.preset) if c is not None]
         for port in sorted(self._trace_all(condition, stored).ports):
             value = 1 - known.get(port, 0)
-            if self._value(condition, stored, {**inputs, port: value}) == 0:
+            changed = {**inputs, port: value}
+            if self._value(condition, stored, changed) == 0 and all(
+                self._value(c, stored, changed) != 1 for c in conditions
+            ):
                 return f"--mode {self.wiring.netlist.net_names[port]}={value}"
         return ""
 

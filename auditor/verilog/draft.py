@@ -61,7 +61,8 @@ class Draft:
     ``shift``, so that they are those of the file in which it begins. ``plain`` turns False with the first parameter:
     any name may then be a number.
     ``given`` are values for its parameters; ``every_port`` says whether an instance connects `.*`,
-    ``described`` whether it is a cell that a library describes, so that only its ports matter.
+    ``described`` whether it is a cell that a library describes, so that only its ports matter, and
+    ``passed_over`` whether it holds more than ports.
     """
 
     name: str
@@ -75,6 +76,7 @@ class Draft:
     last_line: int = 0
     every_port: bool = False
     described: bool = False
+    passed_over: bool = False
     given: dict[str, Constant] = field(default_factory=dict)
     signed: set[str] = field(default_factory=set)
     ports: list[HeaderPort] = field(default_factory=list)

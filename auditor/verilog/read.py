@@ -30,8 +30,8 @@ def read_verilog(
     for behind that of the including one; a macro of one file is known to those that follow. Plain statements take the
     fast lane, others the grammar lane; with ``lane`` "grammar" every statement takes the latter, which is slow and
     gives the same modules. Of a module that is one of ``cells``, which a library describes, only the ports are read:
-    it may be a model that is not structural. Included files and notes are entered into ``reading``. Raises InputError
-    with the troubles of all files.
+    it may be a model that is not structural, and what it holds beside them is noted. Included files and notes are
+    entered into ``reading``. Raises InputError with the troubles of all files.
     """
     troubles, told = TroubleList(), reading or Reading()
     preprocessor = Preprocessor(defines, include, troubles, told)
@@ -57,8 +57,19 @@ def read_verilog(
         files = ", ".join(map(str, paths)) or "no file"
         troubles.add(f"no module in {files}", "give a netlist with at least one module")
     troubles.raise_any()
-    told.notes[:] = dict.fromkeys(told.notes)
+    told.notes[:] = dict.fromkeys(told.notes + _passed_over(drafts))
     return modules
+
+
+def _passed_over(drafts: Mapping[str, Draft]) -> list[str]:
+    """Return a note on the modules that say otherwise what a cell does, if there are any."""
+    doubled = [draft for draft in drafts.values() if draft.passed_over]
+    if not doubled:
+        return []
+    names = (
+        f"module {doubled[0].name} is" if len(doubled) == 1 else f"{len(doubled)} modules ({doubled[0].name} first) are"
+    )
+    return [f"{doubled[0].place}: {names} described by --cells as well: the cell counts"]
 
 
 @contextmanager

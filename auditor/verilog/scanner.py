@@ -118,7 +118,9 @@ class _Scanner(PlainInstances):
             if word in _DECLARING and self.draft.plain and self._name_list(self.draft):
                 return
             statement = self._take_statement(line)
-            if statement is not None and not (self.draft.described and word not in _SAYING_PORTS):
+            if self.draft.described and word not in _SAYING_PORTS:
+                self.draft.passed_over = True
+            elif statement is not None:
                 _HANDLERS.get(word, Items.instances)(self.items, self.draft, statement, line)
         else:
             self._refused(self.draft, word, line)
@@ -132,6 +134,7 @@ class _Scanner(PlainInstances):
                 draft.note("specify blocks from here on are passed over: timing has no part in the audit", line)
             self._skip_past(_SPECIFY_END)
         elif draft.described:
+            draft.passed_over = True
             self._skip_to("endmodule")
         elif word == "trireg":
             self._trouble("trireg nets store charge", "store the bit in a cell", line)

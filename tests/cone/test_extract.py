@@ -3,6 +3,7 @@
 from pathlib import Path
 
 from auditor.cells.library import Cell, CellLibrary, Function, Pin, Storage
+from auditor.cells.read import read_cells
 from auditor.machine.prove import prove_machine
 from auditor.replay.replay import replay
 from tests.support.cones import cone_of, library, troubles_of
@@ -96,6 +97,31 @@ def test_an_asynchronous_pin_that_the_mode_holds_active_is_an_obstacle(tmp_path:
         "its asynchronous preset is active under the mode",
     ]
     assert {obstacle.cure for obstacle in cone.obstacles} == {"--mode reset=0"}
+
+
+GATES = Path(__file__).parents[1] / "support" / "gates.lib"
+
+BOTH = """\
+  wire a, p;
+  {gate} i (.A(r), .Y(p));
+  ff_clear_and_set a_ff (.CK(clk), .D(y), .RN(r), .SN(p), .Q(a));
+  inv out (.A(a), .Y(y));"""
+
+
+def test_a_port_that_clears_and_sets_at_once_gives_no_reset_state(tmp_path: Path) -> None:
+    """Where the library says nothing of clear and preset together, the port is inactive and no state is promised."""
+    cone = cone_of(
+        tmp_path, BOTH.format(gate="buffer"), ports="input clk, input r, output y", cells=read_cells((GATES,))
+    )
+    assert cone.assumed == ("r = 1: the asynchronous pins behind it are inactive",)
+    assert [element.reset for element in cone.elements] == [None]
+
+
+def test_no_constant_cures_a_pin_by_making_the_other_active(tmp_path: Path) -> None:
+    """Clear by a port and preset by its inverse: one of them is always active, and the audit proposes neither."""
+    cone = cone_of(tmp_path, BOTH.format(gate="inv"), ports="input clk, input r, output y", cells=read_cells((GATES,)))
+    assert [obstacle.because for obstacle in cone.obstacles] == ["its asynchronous preset is active under the mode"]
+    assert [obstacle.cure for obstacle in cone.obstacles] == [""]
 
 
 def test_an_inverted_clock_tree_is_traced_to_its_root(tmp_path: Path) -> None:

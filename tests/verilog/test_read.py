@@ -237,7 +237,31 @@ def test_of_a_described_cell_only_the_ports_are_read(tmp_path: Path, lane: Liter
     assert not cell.instances
     assert not cell.assigns
     assert reading.notes == [
-        f"{tmp_path}/n.v:6: specify blocks from here on are passed over: timing has no part in the audit"
+        f"{tmp_path}/n.v:6: specify blocks from here on are passed over: timing has no part in the audit",
+        f"{tmp_path}/n.v:1: module DFF is described by --cells as well: the cell counts",
     ]
     with pytest.raises(InputError, match="module DFF is not structural: found always"):
         read_verilog([tmp_path / "n.v"], lane)
+
+
+@pytest.mark.parametrize(
+    ("body", "told"),
+    [
+        ("xor (Y, A);", True),
+        ("assign Y = A;", True),
+        ("INV u(.A(A), .Y(Y));", True),
+        ("always @* Y = A;", True),
+        ("", False),
+        ("wire n;", False),
+        ("specify (A => Y) = 1; endspecify", False),
+    ],
+)
+def test_a_module_that_a_library_describes_too_is_told(tmp_path: Path, body: str, told: bool) -> None:
+    """Where both say what a cell does the reader learns that the library counts; a frame of ports says nothing."""
+    (tmp_path / "n.v").write_text(f"module BUF(input A, output Y);\n{body}\nendmodule\n{_HEAD}BUF u(a, y);\nendmodule")
+    reading = Reading()
+    read_verilog([tmp_path / "n.v"], cells={"BUF"}, reading=reading)
+    assert (
+        any(note.endswith("module BUF is described by --cells as well: the cell counts") for note in reading.notes)
+        == told
+    )
