@@ -42,6 +42,8 @@ def degrees_left(first: Elements, second: Elements, size: int, power: int) -> By
         covered += count
     growth = power * np.array([degree(multiplier) for multiplier in range(1 << size)])[:, None]
     sizes = [growth + degrees(side) for side in (first, second)]
+    for size_of in sizes:
+        size_of[0] = -1  # a multiplier of zero leaves nothing, however long the polynomial
     whole = np.maximum(sizes[0][None], sizes[1][:, None]).clip(0).astype(np.uint8)
     return (whole - np.minimum(covered, whole)).reshape(-1, len(first))
 

@@ -84,3 +84,19 @@ def test_no_search_is_no_work():
     """An empty list of searches has nothing left over."""
     work = Work(limit=0)
     assert find_smooth([], 1, 6, 18, lambda *_: True, work) == []
+
+
+def test_short_elements_are_their_own_fractions():
+    """An element as short as 1 stands over 1, however long the other row of its lattice: no field is too large."""
+    field = 1 << 163 | 0b11001001
+    elements = [1, 2, 0b1011]
+    fractions = [short_fractions(element, field) for element in elements]
+    offered = {}
+
+    def accept(number, left, right):
+        offered[number] = left, right
+        return True
+
+    searches = [Search((r0, r1), (s0, s1)) for (r0, s0), (r1, s1) in fractions]
+    assert not find_smooth(searches, 1, 4, 24, accept, Work())
+    assert offered == {number: (element, 1) for number, element in enumerate(elements)}
