@@ -1,7 +1,7 @@
 """From a netlist and a mode to the cone of the channels: the main verb of this room."""
 
 from collections import Counter
-from collections.abc import Mapping, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
 from auditor.cells.library import CellLibrary
@@ -103,6 +103,8 @@ def _assemble(wiring: Wiring, closed: _Closed, wanted: list[tuple[str, int]], fo
     if clock_loop:
         troubles.loop(clock_loop)
     troubles.raise_any()
+    inside = [instance for _, instance in (*walk.gates.values(), *tree.gates.values())]
+    inside += [s.instance for s in stored]
     elements = tuple(element_of(wiring, walk, clocking, s) for s in stored)
     return Cone(
         netlist=netlist,
@@ -120,7 +122,7 @@ def _assemble(wiring: Wiring, closed: _Closed, wanted: list[tuple[str, int]], fo
         loads=find_loads(wiring, elements),
         obstacles=_obstacles(netlist, stored, closed.obstacles),
         forced=forced,
-        assumed=_assumptions(netlist, closed),
+        assumed=(*_assumptions(netlist, closed), *_ignored_pins(wiring, inside)),
     )
 
 
@@ -132,6 +134,23 @@ def _obstacles(
         for number, s in enumerate(stored)
         if s.wire in because
     )
+
+
+def _ignored_pins(wiring: Wiring, instances: Iterable[int]) -> Iterator[str]:
+    """Yield a sentence a cell of the cone whose instances have pins that its description lacks: supplies, mostly."""
+    ignored: dict[str, tuple[dict[str, None], list[int]]] = {}
+    for instance in sorted(set(instances)):
+        cell = wiring.cell(instance)
+        names = [pin for pin in wiring.nets_of(instance) if cell and pin not in cell.pins]
+        if cell and names:
+            pins, where = ignored.setdefault(cell.name, ({}, []))
+            pins.update(dict.fromkeys(names))
+            where.append(instance)
+    for name in sorted(ignored, key=natural_order):
+        pins, where = ignored[name]
+        more = f" and {len(where) - 1} more" if len(where) > 1 else ""
+        first = wiring.netlist.instance_names[where[0]]
+        yield f"cell {name} has no pin {', '.join(pins)} in its description: ignored at {first}{more}"
 
 
 def _assumptions(netlist: Netlist, closed: _Closed) -> tuple[str, ...]:

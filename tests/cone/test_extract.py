@@ -185,6 +185,16 @@ def test_an_unknown_cell_outside_the_cone_does_not_matter(tmp_path: Path) -> Non
     assert cone.loads[0].capacitance_ff == (None,)
 
 
+def test_pins_that_a_cell_does_not_have_are_told(tmp_path: Path) -> None:
+    """Connected pins that the description of a cell in the cone lacks are ignored, and the report says so."""
+    body = RING.replace("km_dff a_ff (", "km_dff a_ff (.SE(se), .SI(b), ").replace("g (", "g (.VPP(clk), ")
+    cone = cone_of(tmp_path, body, ports="input clk, input se, output y")
+    assert cone.assumed == (
+        "cell km_dff has no pin SE, SI in its description: ignored at a_ff",
+        "cell km_xor2 has no pin VPP in its description: ignored at g",
+    )
+
+
 def test_two_drivers_are_named(tmp_path: Path) -> None:
     """A net with two drivers names both with their places."""
     assert troubles_of(tmp_path, RING + "\n  km_inv second (.A(a), .Y(f));") == [
