@@ -88,6 +88,7 @@ def audit_parser() -> argparse.ArgumentParser:
         help="hold a port or net in capture, and look at the circuit under test; may be repeated",
     )
     add("--relations", metavar="3|4", help="search sets of up to so many scan cells whose sum never changes")
+    add("--cones", metavar="F", help="cones to be ranked: a CSV file of net,cell, one line for each scan cell")
     names = ", ".join(LEAST_LIMIT)
     add("--limit", action="append", default=[], metavar="NAME=N", help=f"bound on {names}; may be repeated")
     add("--fail-at", metavar="LEVEL", help="note, warning or error (default error): findings that fail the audit")
@@ -131,6 +132,7 @@ def read_arguments(words: Sequence[str]) -> Request:
             chain_file=Path(given.chains) if given.chains else None,
             scan_outputs=tuple(given.scan_outputs),
             relations=_read_number("--relations", given.relations, 3, troubles, 4),
+            cone_file=Path(given.cones) if given.cones else None,
             limits=_read_limits(given.limit, troubles),
             fail_at=given.fail_at,
             work_limit=_read_number("--work-limit", given.work_limit, 1, troubles),

@@ -13,6 +13,7 @@ from typing import TypeVar
 from auditor.array.chains import scan_array
 from auditor.array.examine import examine_capture
 from auditor.array.find import find_array
+from auditor.array.given_cones import rank_given_cones
 from auditor.array.scan_array import ArrayFacts, ScanArray
 from auditor.cache import kept_tables
 from auditor.cells.library import CellLibrary
@@ -160,8 +161,9 @@ def _facts(plan: Plan, library: CellLibrary, cone: Cone, inputs: tuple[InputFile
     replayed, phases = _solve(plan, library, cone, extraction, scan, effort)
     array = _array(plan, library, cone, extraction, phases, scan, effort)
     capture = examine_capture(plan, cone.netlist, library, machine, scan, tell) if machine else None
+    given = rank_given_cones(plan, machine, scan) if machine else None
     tell("risks")
-    evidence = Evidence(plan, cone, extraction, phases, array, capture)
+    evidence = Evidence(plan, cone, extraction, phases, array, capture, given)
     findings = find_risks(evidence)
     undecided = open_questions(evidence)
     return AuditFacts(
@@ -180,6 +182,7 @@ def _facts(plan: Plan, library: CellLibrary, cone: Cone, inputs: tuple[InputFile
         environment=_environment(),
         array=array,
         capture=capture,
+        given=given,
     )
 
 
@@ -239,8 +242,9 @@ def _input_files(plan: Plan, included: Sequence[Path]) -> tuple[InputFile, ...]:
     files: list[tuple[Path, str]] = [(plan.file, "plan")] if plan.file else []
     files += [(path, "netlist") for path in plan.netlists] + [(path, "include") for path in included]
     files += [(path, "cells") for path in plan.cells]
-    if plan.chain_file and plan.chain_file.is_file():  # what is wrong with it is told where it is read
-        files.append((plan.chain_file, "chains"))
+    for path, role in ((plan.chain_file, "chains"), (plan.cone_file, "cones")):
+        if path and path.is_file():  # what is wrong with it is told where it is read
+            files.append((path, role))
     return tuple(InputFile(str(path), role, hashlib.sha256(path.read_bytes()).hexdigest()) for path, role in files)
 
 

@@ -61,6 +61,7 @@ class Plan:
     ``chain_length``  scan cells of every chain, or None where not stated
     ``chain_file``, ``scan_outputs``  what tells the chains in its place: a file, or the nets they end at
     ``relations``  3 or 4: constant sums of up to so many scan cells are searched; None: of three where that is cheap
+    ``cone_file``  cones that the reviewer gives, one line a scan cell
     ``seeds``      name → state, bit k for storage element k
     ``capture``    net or port → 0 or 1 in capture; None: the circuit under test is not asked about
     ``time_limit``  seconds from the start of the audit after which no lead is worked on
@@ -88,6 +89,7 @@ class Plan:
     chain_file: Path | None = None
     scan_outputs: tuple[str, ...] = ()
     relations: int | None = None
+    cone_file: Path | None = None
     seeds: Mapping[str, int] = field(default_factory=dict)
     capture: Mapping[str, int] | None = None
 
@@ -118,6 +120,7 @@ class Options:
     chain_file: Path | None = None
     scan_outputs: tuple[str, ...] = ()
     relations: int | None = None
+    cone_file: Path | None = None
     capture: Mapping[str, int] | None = None
 
 
@@ -142,6 +145,7 @@ def merge(plan: Plan | None, options: Options) -> Plan:
         chain_file=chains.chain_file,
         scan_outputs=chains.scan_outputs,
         relations=stated.relations if options.relations is None else options.relations,
+        cone_file=options.cone_file or stated.cone_file,
         capture=stated.capture if options.capture is None else {**(stated.capture or {}), **options.capture},
         limits=replace(stated.limits, **options.limits),
         fail_at=options.fail_at or stated.fail_at,

@@ -16,7 +16,7 @@ KEYS: dict[str, tuple[str, ...]] = {
     "channels": ("names", "reference"),
     "chains": ("length", "file", "scan_outputs"),
     "patterns": ("count", "shift_cycles", "capture_cycles", "generator_in_capture", "launch", "twin_window"),
-    "array": ("relations",),
+    "array": ("relations", "cones"),
     "limits": tuple(LEAST_LIMIT),
 }
 SECTIONS = ("netlist", "mode", "capture", "channels", "chains", "patterns", "array", "limits", "seeds", "waivers")
@@ -50,6 +50,7 @@ def read_plan(path: Path) -> Plan:
         chain_file=reader.chain_file(),
         scan_outputs=reader.texts("chains", "scan_outputs"),
         relations=reader.number("array", "relations", 3, 4),
+        cone_file=reader.path("array", "cones"),
         seeds=reader.seeds(),
         patterns=reader.patterns(),
         limits=Limits(**limits),
@@ -169,6 +170,11 @@ class _Reader:
         self.wrong(section, key, "a list of texts", f'write {key} = ["...", "..."]')
         return ()
 
+    def path(self, section: str, key: str) -> Path | None:
+        """Return a path, taken relative to the plan, or None where not stated."""
+        name = self.text(section, key)
+        return None if name is None else self.folder / name
+
     def paths(self, section: str, key: str) -> tuple[Path, ...]:
         """Return a list of paths, taken relative to the plan."""
         return tuple(self.folder / name for name in self.texts(section, key))
@@ -208,8 +214,7 @@ class _Reader:
         if len(told) > 1:
             place = self.place("chains", told[1])
             self.troubles.add(f"[chains] tells the chains by {' and by '.join(told)}", "keep one of them", place)
-        name = self.text("chains", "file")
-        return None if name is None else self.folder / name
+        return self.path("chains", "file")
 
     def seeds(self) -> dict[str, int]:
         """Return [seeds]: name → state, given in hexadecimal digits."""

@@ -237,7 +237,7 @@ NO_OPTION = "is no option of auditor audit"
         (["a.v"], "a.v is no command of auditor", "write auditor audit NETLIST..., or see --help"),
         (["audit"], "no netlist is given", "name a Verilog file, or give --plan F"),
         (["audit", "a.v", "--chanels", "x"], f"--chanels {NO_OPTION}",
-         "did you mean --channels or --chains or --cells?"),
+         "did you mean --channels or --chains or --cones?"),
         (["audit", "a.v", "--html=x"], f"--html=x {NO_OPTION}", "see auditor audit --help"),
         (["audit", "a.v", "--top"], "--top has no value", "give it one, or leave it out"),
         (["audit", "a.v", "--top", ""], "--top is empty", "give it a value, or leave it out"),

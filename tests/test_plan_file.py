@@ -147,11 +147,13 @@ def test_capture_and_launch_are_read(tmp_path: Path) -> None:
 def test_chains_and_seeds_are_read(tmp_path: Path) -> None:
     """Chains come from a length, a file or scan outputs; seeds are hexadecimal states; relations 3 or 4."""
     (tmp_path / "plan.toml").write_text(
-        '[chains]\nfile = "chains.csv"\n[array]\nrelations = 4\n[seeds]\nfirst = "1F"\nsecond = "000a"\n'
+        '[chains]\nfile = "chains.csv"\n[array]\nrelations = 4\ncones = "cones.csv"\n'
+        '[seeds]\nfirst = "1F"\nsecond = "000a"\n'
         "[patterns]\ncount = 5\nshift_cycles = 3\ntwin_window = 2\n"
     )
     plan = read_plan(tmp_path / "plan.toml")
     assert (plan.chain_file, plan.chain_length, plan.scan_outputs) == (tmp_path / "chains.csv", None, ())
+    assert plan.cone_file == tmp_path / "cones.csv"
     assert (plan.relations, plan.seeds) == (4, {"first": 0x1F, "second": 10})
     assert plan.patterns == Patterns(5, 3, twin_window=2)
     (tmp_path / "plan.toml").write_text('[chains]\nscan_outputs = ["so", "misr_in"]\n')

@@ -8,11 +8,11 @@ In the second form a line is a scan cell; those of a chain stand in order from i
 chain. The columns ``delay`` (default: the place of the cell, from 1) and ``inverted`` (default 0) may be left out.
 """
 
-import csv
-from collections.abc import Collection, Iterator, Mapping
+from collections.abc import Collection, Mapping
 from dataclasses import dataclass, field
 from pathlib import Path
 
+from auditor.array.csv_file import csv_lines
 from auditor.array.scan_array import Chain, ScanArray, ScanCell
 from auditor.errors import TroubleList, fail, near_misses
 from auditor.notation import SourcePlace
@@ -25,7 +25,7 @@ _REMEDY = "write channel,length or channel,cell,delay,inverted"
 def read_chain_file(path: Path, channels: Collection[str]) -> ScanArray:
     """Return the chains in the file; every channel it names is one of ``channels``. Raises ``InputError``."""
     place = SourcePlace(str(path), 1)
-    lines = _lines(path)
+    lines = csv_lines(path, "chains", "--chains", _REMEDY)
     header = next(lines, (1, []))[1]
     reader = _Reader(str(path), channels)
     if header == ["channel", "length"]:
@@ -43,22 +43,6 @@ def read_chain_file(path: Path, channels: Collection[str]) -> ScanArray:
         tuple(Chain(name, length, tuple(reader.cells.get(name, ()))) for name, length in reader.lengths.items()),
         "file",
     )
-
-
-def _lines(path: Path) -> Iterator[tuple[int, list[str]]]:
-    """Yield (line, words) of every line that is not empty."""
-    place = SourcePlace(str(path))
-    try:
-        with path.open(newline="", encoding="utf-8-sig") as source:
-            reader = csv.reader(source, strict=True)
-            for words in reader:
-                if any(words):
-                    yield reader.line_num, [word.strip() for word in words]
-    except (OSError, ValueError) as error:  # ValueError: not UTF-8, or a NUL in the name
-        reason = getattr(error, "strerror", None) or "not UTF-8 text"
-        raise fail(f"the chains cannot be read: {reason}", "give --chains a CSV file in UTF-8", place) from None
-    except csv.Error as error:
-        raise fail(f"the chains are no CSV: {error}", _REMEDY, place) from None
 
 
 @dataclass(slots=True)
@@ -79,7 +63,7 @@ class _Reader:
         name = words["channel"]
         if name in self.lengths:
             self._wrong(line, f"channel {name} has a chain already", "give each channel one chain")
-        elif (length := _number(words["length"])) is None or not 1 <= length <= LONGEST_CHAIN:
+        elif (length := whole_number(words["length"])) is None or not 1 <= length <= LONGEST_CHAIN:
             remedy = f"give a whole number from 1 to {LONGEST_CHAIN}"
             self._wrong(line, f"the chain of {name} has the length {words['length']}", remedy)
         else:
@@ -91,7 +75,7 @@ class _Reader:
             return
         name, cell = words["channel"], words["cell"]
         cells = self.cells.setdefault(name, [])
-        delay = _number(words.get("delay", str(len(cells) + 1)))
+        delay = whole_number(words.get("delay", str(len(cells) + 1)))
         if not cell or cell in self.names:
             self._wrong(line, f"scan cell {cell} stands twice" if cell else "a scan cell has no name", "mend its name")
         elif delay is None or delay > LONGEST_CHAIN:
@@ -116,6 +100,6 @@ class _Reader:
         self.troubles.add(found, remedy, SourcePlace(self.file, line))
 
 
-def _number(word: str) -> int | None:
+def whole_number(word: str) -> int | None:
     """Return a whole number from 0 on, None for anything else."""
     return int(word) if word.isascii() and word.isdecimal() and len(word) < 20 else None

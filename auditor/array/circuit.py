@@ -140,6 +140,14 @@ class ConeFacts:
         return prod(1 - 2.0 ** (i - self.dimension) for i in range(size)) if size <= self.dimension else 0.0
 
 
+@dataclass(frozen=True, slots=True)
+class GivenCones:
+    """The cones that the reviewer gives; ``names`` of the scan cells in them, by number."""
+
+    cones: ConeFacts
+    names: tuple[str, ...]
+
+
 class FrozenNet(NamedTuple):
     """A net that the generator does not toggle although free scan cells would.
 

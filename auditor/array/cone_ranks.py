@@ -4,7 +4,7 @@ The cone of a sink is the set of loaded bits on which it depends. Their rows ove
 2^size combinations 2^rank occur over all states, and a sum of rows that is constant names combinations that never do.
 """
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass
 from itertools import combinations
 
@@ -23,18 +23,22 @@ _LANES = 1024
 def rank_cones(circuit: Circuit, loading: Loading, two_cycles: bool = False) -> ConeFacts:
     """Return the ranks of all cones. ``InternalError`` if simulated loads contradict a relation."""
     cells = (1 << len(circuit.cells)) - 1
+    supports = ((name, seen & cells, seen >> len(circuit.loaded)) for name, seen in sink_supports(circuit))
+    cones = ((name, inside, others.bit_count()) for name, inside, others in supports if inside)
+    return rank_sets(cones, loading, two_cycles)
+
+
+def rank_sets(seen: Iterable[tuple[str, Vector, int]], loading: Loading, two_cycles: bool) -> ConeFacts:
+    """Return the ranks of cones given as (name, scan cells, number of other sources); equal sets are ranked once."""
     numbers: dict[Vector, int] = {}
     cones: list[SinkCone] = []
     sets: list[CellSet] = []
     rank = _Ranks(loading, two_cycles)
-    for name, seen in sink_supports(circuit):
-        inside = seen & cells
-        if not inside:
-            continue
+    for name, inside, others in seen:
         if inside not in numbers:
             numbers[inside] = len(sets)
             sets.append(rank.of(tuple(sorted(matrix.ones(inside)))))
-        cones.append(SinkCone(name, numbers[inside], (seen >> len(circuit.loaded)).bit_count()))
+        cones.append(SinkCone(name, numbers[inside], others))
     _confirm(loading, sets)
     return ConeFacts(tuple(cones), tuple(sets), two_cycles, matrix.rank([row & ~1 for row in loading.steady]))
 

@@ -2,17 +2,18 @@
 
 from typing import Any, TypeAlias
 
-from auditor.array.circuit import CaptureFacts
+from auditor.array.circuit import CaptureFacts, ConeFacts, GivenCones
 from auditor.plan import Plan
 from auditor.report.wording import decimal
 
 Json: TypeAlias = dict[str, Any]
 
 
-def capture_part(capture: CaptureFacts | None, plan: Plan) -> Json:
+def capture_part(capture: CaptureFacts | None, given: GivenCones | None, plan: Plan) -> Json:
     """Return the entries of the report that speak of cones and nets; they are empty where nobody asked."""
+    cones_given = _cones(given.cones, "given") if given else []
     if capture is None:
-        return {"capture": None, "cones": [], "frozen_nets": [], "undecided_nets": []}
+        return {"capture": None, "cones": cones_given, "frozen_nets": [], "undecided_nets": []}
     circuit, cones, nets = capture.circuit, capture.cones, capture.nets
     return {
         "capture": {
@@ -26,16 +27,7 @@ def capture_part(capture: CaptureFacts | None, plan: Plan) -> Json:
             "examined_nets": nets.examined,
             "simulated_patterns": decimal(nets.patterns),
         },
-        "cones": [
-            {
-                "net": cone.name,
-                "size": cones.sets[cone.cells].size,
-                "rank": cones.sets[cone.cells].rank,
-                "combinations": decimal(1 << cones.sets[cone.cells].rank),
-                "outside_lock_up": decimal(cones.sets[cone.cells].occurring),
-            }
-            for cone in cones.cones
-        ],
+        "cones": [*_cones(cones, "circuit"), *cones_given],
         "frozen_nets": [
             {
                 "net": circuit.wire_name(net.net),
@@ -48,3 +40,17 @@ def capture_part(capture: CaptureFacts | None, plan: Plan) -> Json:
         ],
         "undecided_nets": [circuit.wire_name(net) for net in nets.undecided],
     }
+
+
+def _cones(facts: ConeFacts, known_from: str) -> list[Json]:
+    return [
+        {
+            "net": cone.name,
+            "known_from": known_from,
+            "size": facts.sets[cone.cells].size,
+            "rank": facts.sets[cone.cells].rank,
+            "combinations": decimal(1 << facts.sets[cone.cells].rank),
+            "outside_lock_up": decimal(facts.sets[cone.cells].occurring),
+        }
+        for cone in facts.cones
+    ]

@@ -28,6 +28,13 @@ def say_capture(page: Page, facts: AuditFacts) -> None:
     _say_nets(page, capture, len(facts.plan.seeds))
 
 
+def say_given_cones(page: Page, facts: AuditFacts) -> None:
+    """Add the cones that the reviewer gives, where there are any."""
+    if facts.given is not None:
+        page.heading("Given cones")
+        _say_cones(page, facts.given.cones)
+
+
 def _say_size(page: Page, circuit: Circuit) -> None:
     sizes = [plural(len(circuit.gates), "gate"), plural(len(circuit.cells), "scan cell")]
     page.entry("found", ", ".join([*sizes, plural(len(circuit.free_inputs), "free input")]))

@@ -4,7 +4,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Literal, NamedTuple, TypeAlias
 
-from auditor.array.circuit import CaptureFacts
+from auditor.array.circuit import CaptureFacts, GivenCones
 from auditor.array.scan_array import ArrayFacts
 from auditor.cells.library import CellLibrary
 from auditor.cone.cone import Cone
@@ -36,7 +36,7 @@ class ReplayFacts(NamedTuple):
 class AuditFacts:
     """One audit. ``phases``, ``replay`` and ``array`` are None where the machine was refused.
 
-    ``capture`` is None where nobody asked about the circuit under test as well.
+    ``capture`` is None where nobody asked about the circuit under test as well, ``given`` where no cones are given.
     """
 
     plan: Plan
@@ -54,6 +54,7 @@ class AuditFacts:
     environment: Mapping[str, str]
     array: ArrayFacts | None = None
     capture: CaptureFacts | None = None
+    given: GivenCones | None = None
 
 
 # The audits of one plan by the name of their mode, in the plan's order; a plan that names none has one, under "".

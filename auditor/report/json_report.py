@@ -98,7 +98,7 @@ def _found(facts: AuditFacts) -> Json:
         "channels": [_channel(view, facts) for view in channel_views(facts)],
         "cut_nets": [{**_channel(view, facts), "channel": view.row.cut_from} for view in cut_views(facts) if view.row],
         "flip_flops": [_flip_flop(load, facts) for load in facts.cone.loads],
-        **capture_part(facts.capture, facts.plan),
+        **capture_part(facts.capture, facts.given, facts.plan),
         **array_part(facts.array, facts.extraction.machine.size if facts.extraction.machine else 0),
         "findings": [finding_json(finding) for finding in facts.findings],
         "assumed": list(facts.assumed),

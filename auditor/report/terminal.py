@@ -6,7 +6,7 @@ from collections.abc import Sequence
 from rich.console import Console
 
 from auditor.report.array_tables import say_array
-from auditor.report.capture_tables import say_capture
+from auditor.report.capture_tables import say_capture, say_given_cones
 from auditor.report.digest import channel_views
 from auditor.report.facts import AuditFacts, Audits
 from auditor.report.modes import VERDICT_STYLE, finding_counts, say_modes
@@ -49,6 +49,7 @@ def _say_audit(page: Page, facts: AuditFacts) -> None:
     say_flip_flops(page, facts)
     say_array(page, facts)
     say_capture(page, facts)
+    say_given_cones(page, facts)
     _say_findings(page, facts.findings)
     _say_list(page, "Assumed, not checked", facts.assumed)
     _say_list(page, "Not decided", facts.undecided)

@@ -1,9 +1,9 @@
 """Rules on the circuit under test: cones whose input combinations do not all occur, nets that never toggle."""
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Callable, Iterator, Sequence
 from dataclasses import replace
 
-from auditor.array.circuit import CaptureFacts, CellSet, FrozenNet
+from auditor.array.circuit import CaptureFacts, CellSet, ConeFacts, FrozenNet
 from auditor.gf2.matrix import ones
 from auditor.risks.evidence import Evidence, decimal
 from auditor.risks.finding import Finding
@@ -14,20 +14,27 @@ _MOST_NAMED = 12
 
 def cone_short_of_rank(evidence: Evidence) -> Iterator[Finding]:
     """Report the cones that can never see some combination of their scan cells, once for each set of cells."""
-    capture = evidence.capture
-    if capture is None:
-        return
+    if capture := evidence.capture:
+        loaded = capture.circuit.loaded
+        yield from _short_cones(evidence, capture.cones, lambda cell: capture.circuit.wire_name(loaded[cell]))
+    if given := evidence.given:
+        yield from _short_cones(evidence, given.cones, lambda cell: given.names[cell])
+
+
+def _short_cones(evidence: Evidence, facts: ConeFacts, name: Callable[[int], str]) -> Iterator[Finding]:
+    """Report the cones short of rank; ``name`` gives the name of a scan cell by its number."""
     sinks: dict[int, list[str]] = {}
-    for cone in capture.cones.cones:
+    for cone in facts.cones:
         sinks.setdefault(cone.cells, []).append(cone.name)
     for number, names in sinks.items():
-        cells = capture.cones.sets[number]
+        cells = facts.sets[number]
         if cells.short:
-            yield _short_cone(evidence, capture, cells, names)
+            told = [name(bit.cell) + (" a cycle before" if bit.earlier else "") for bit in cells.relation]
+            yield _short_cone(evidence, cells, names, told, facts.random_share_of_full_rank(cells.size))
 
 
-def _short_cone(evidence: Evidence, capture: CaptureFacts, cells: CellSet, names: list[str]) -> Finding:
-    told = [_bit_name(capture, bit.cell) + (" a cycle before" if bit.earlier else "") for bit in cells.relation]
+def _short_cone(evidence: Evidence, cells: CellSet, names: list[str], told: list[str], full_rank: float) -> Finding:
+    """Return the finding on a set of scan cells; ``told`` are the bits of its relation."""
     sinks = names[0] if len(names) == 1 else f"{names[0]} and {len(names) - 1} more"
     share = 2.0 ** (cells.rank - cells.size)
     return finding(
@@ -41,7 +48,7 @@ def _short_cone(evidence: Evidence, capture: CaptureFacts, cells: CellSet, names
             "combinations": decimal(1 << cells.rank),
             "share_of_combinations": share,
             "never_seen": f"{_sum(told)} = {1 - cells.constant}",
-            "random_rows_of_full_rank": capture.cones.random_share_of_full_rank(cells.size),
+            "random_rows_of_full_rank": full_rank,
         },
         evidence.net_place(names[0]),
     )

@@ -3,7 +3,7 @@
 from collections.abc import Iterator
 from dataclasses import dataclass
 
-from auditor.array.circuit import CaptureFacts
+from auditor.array.circuit import CaptureFacts, GivenCones
 from auditor.array.scan_array import ArrayFacts, ScanArray
 from auditor.cone.cone import Cone
 from auditor.gf2.matrix import ones
@@ -15,7 +15,7 @@ from auditor.plan import Plan
 
 @dataclass(frozen=True, slots=True)
 class Evidence:
-    """All facts of one audit; ``phases``, ``array`` and ``capture`` are None where the machine was refused."""
+    """All facts of one audit; ``phases``, ``array``, ``capture`` and ``given`` are None where there is no machine."""
 
     plan: Plan
     cone: Cone
@@ -23,6 +23,7 @@ class Evidence:
     phases: PhaseTable | None
     array: ArrayFacts | None = None
     capture: CaptureFacts | None = None
+    given: GivenCones | None = None
 
     @property
     def machine(self) -> LinearMachine | None:

@@ -45,4 +45,4 @@ def test_the_circuit_is_told_alike_in_both_writers() -> None:
 def test_unasked_the_entries_are_empty() -> None:
     """Without a question the names are there and hold nothing."""
     plan = read_plan(SAMPLES / "plain_register.toml")
-    assert capture_part(None, plan) == {"capture": None, "cones": [], "frozen_nets": [], "undecided_nets": []}
+    assert capture_part(None, None, plan) == {"capture": None, "cones": [], "frozen_nets": [], "undecided_nets": []}
