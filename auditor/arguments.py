@@ -80,6 +80,7 @@ def audit_parser() -> argparse.ArgumentParser:
         metavar="NAME",
         help="trace the chains back from these nets; may be repeated",
     )
+    add("--trace", metavar="forward", help="trace the chains from the channels on")
     add(
         "--capture",
         action="append",
@@ -113,9 +114,12 @@ def read_arguments(words: Sequence[str]) -> Request:
     """Return what the words after ``auditor audit`` ask for. Raises ``InputError``."""
     troubles = TroubleList()
     given = _parse(audit_parser(), words, troubles)
-    told = [_option(name) for name in ("chain_length", "chains", "scan_outputs") if getattr(given, name)]
+    told = [_option(name) for name in ("chain_length", "chains", "scan_outputs", "trace") if getattr(given, name)]
     if len(told) > 1:
         troubles.add(f"the chains are told by {' and by '.join(told)}", "keep one of them", COMMAND_LINE)
+    if given.trace and given.trace != "forward":
+        remedy = "write --trace forward, or name the nets at which the chains end by --scan-outputs"
+        troubles.add(f"--trace {given.trace} is no way to trace the chains", remedy, COMMAND_LINE)
     if given.fail_at and given.fail_at not in FAIL_AT:
         remedy = near_misses(given.fail_at, FAIL_AT) or "write note, warning or error"
         troubles.add(f"--fail-at {given.fail_at} is no level", remedy, COMMAND_LINE)
@@ -131,6 +135,7 @@ def read_arguments(words: Sequence[str]) -> Request:
             chain_length=_read_number("--chain-length", given.chain_length, 1, troubles, LONGEST_CHAIN),
             chain_file=Path(given.chains) if given.chains else None,
             scan_outputs=tuple(given.scan_outputs),
+            trace_forward=bool(given.trace),
             relations=_read_number("--relations", given.relations, 3, troubles, 4),
             cone_file=Path(given.cones) if given.cones else None,
             limits=_read_limits(given.limit, troubles),

@@ -13,6 +13,7 @@ from typing import TypeVar
 from auditor.array.chains import scan_array
 from auditor.array.examine import examine_capture
 from auditor.array.find import find_array
+from auditor.array.forward import chain_ends
 from auditor.array.given_cones import rank_given_cones
 from auditor.array.scan_array import ArrayFacts, ScanArray
 from auditor.cache import kept_tables
@@ -20,6 +21,7 @@ from auditor.cells.library import CellLibrary
 from auditor.cells.read import read_cells
 from auditor.cone.cone import Cone
 from auditor.cone.extract import extract_cone
+from auditor.cone.wiring import connect
 from auditor.errors import InputError, Trouble, fail
 from auditor.gf2.calculus.table import TableSource
 from auditor.gf2.effort import Effort
@@ -187,12 +189,13 @@ def _facts(plan: Plan, library: CellLibrary, cone: Cone, inputs: tuple[InputFile
 
 
 def _chains(plan: Plan, library: CellLibrary, cone: Cone, tell: Progress) -> ScanArray | None:
-    """Return the scan chains, traced back from the scan outputs where the plan names any."""
-    if not plan.scan_outputs:
+    """Return the scan chains, traced back from the scan outputs, or from where the ways from the channels end."""
+    if not plan.scan_outputs and not plan.trace_forward:
         return scan_array(plan, cone)
     tell("chains")
+    outputs = plan.scan_outputs or chain_ends(connect(cone.netlist, library), cone)
     try:
-        behind = extract_cone(cone.netlist, library, plan.mode, plan.scan_outputs)
+        behind = extract_cone(cone.netlist, library, plan.mode, outputs)
     except InputError as error:
         raise InputError(replace(t, found=f"behind the scan outputs: {t.found}") for t in error.troubles) from None
     return scan_array(plan, cone, behind)

@@ -60,6 +60,7 @@ class Plan:
     ``defines``   macros of the netlist and of cell models → their texts; ``include`` folders of included files
     ``chain_length``  scan cells of every chain, or None where not stated
     ``chain_file``, ``scan_outputs``  what tells the chains in its place: a file, or the nets they end at
+    ``trace_forward``  the chains are traced from the channels on
     ``relations``  3 or 4: constant sums of up to so many scan cells are searched; None: of three where that is cheap
     ``cone_file``  cones that the reviewer gives, one line a scan cell
     ``seeds``      name → state, bit k for storage element k
@@ -88,6 +89,7 @@ class Plan:
     include: tuple[Path, ...] = ()
     chain_file: Path | None = None
     scan_outputs: tuple[str, ...] = ()
+    trace_forward: bool = False
     relations: int | None = None
     cone_file: Path | None = None
     seeds: Mapping[str, int] = field(default_factory=dict)
@@ -119,6 +121,7 @@ class Options:
     include: tuple[Path, ...] = ()
     chain_file: Path | None = None
     scan_outputs: tuple[str, ...] = ()
+    trace_forward: bool = False
     relations: int | None = None
     cone_file: Path | None = None
     capture: Mapping[str, int] | None = None
@@ -128,10 +131,11 @@ def merge(plan: Plan | None, options: Options) -> Plan:
     """Return the plan under the options: a given list replaces the plan's, mode, capture, limits, defines do so by key.
 
     A net that the options hold is held in every mode of the plan. Chains that the options tell, by whichever of the
-    three ways, replace the plan's.
+    four ways, replace the plan's.
     """
     stated = plan or Plan(netlists=())
-    chains = options if options.chain_length or options.chain_file or options.scan_outputs else stated
+    told = options.chain_length or options.chain_file or options.scan_outputs or options.trace_forward
+    chains = options if told else stated
     return replace(
         stated,
         netlists=options.netlists or stated.netlists,
@@ -144,6 +148,7 @@ def merge(plan: Plan | None, options: Options) -> Plan:
         chain_length=chains.chain_length,
         chain_file=chains.chain_file,
         scan_outputs=chains.scan_outputs,
+        trace_forward=chains.trace_forward,
         relations=stated.relations if options.relations is None else options.relations,
         cone_file=options.cone_file or stated.cone_file,
         capture=stated.capture if options.capture is None else {**(stated.capture or {}), **options.capture},

@@ -14,7 +14,7 @@ from auditor.plan import BEYOND, LEAST_LIMIT, LONGEST_CHAIN, LONGEST_TWIN_WINDOW
 KEYS: dict[str, tuple[str, ...]] = {
     "netlist": ("files", "top", "cells", "defines"),
     "channels": ("names", "reference"),
-    "chains": ("length", "file", "scan_outputs"),
+    "chains": ("length", "file", "scan_outputs", "trace"),
     "patterns": ("count", "shift_cycles", "capture_cycles", "generator_in_capture", "launch", "twin_window"),
     "array": ("relations", "cones"),
     "limits": tuple(LEAST_LIMIT),
@@ -49,6 +49,7 @@ def read_plan(path: Path) -> Plan:
         chain_length=reader.number("chains", "length", 1, LONGEST_CHAIN),
         chain_file=reader.chain_file(),
         scan_outputs=reader.texts("chains", "scan_outputs"),
+        trace_forward=reader.trace_forward(),
         relations=reader.number("array", "relations", 3, 4),
         cone_file=reader.path("array", "cones"),
         seeds=reader.seeds(),
@@ -215,6 +216,10 @@ class _Reader:
             place = self.place("chains", told[1])
             self.troubles.add(f"[chains] tells the chains by {' and by '.join(told)}", "keep one of them", place)
         return self.path("chains", "file")
+
+    def trace_forward(self) -> bool:
+        """Whether the chains are to be traced from the channels on."""
+        return "trace" in self._table("chains") and self.choice("chains", "trace", ("forward",)) == "forward"
 
     def seeds(self) -> dict[str, int]:
         """Return [seeds]: name → state, given in hexadecimal digits."""

@@ -54,6 +54,17 @@ def test_chains_are_traced_from_a_scan_output(tmp_path: Path) -> None:
     assert report(tmp_path)["asked"]["scan_outputs"] == ["so"]
 
 
+def test_chains_are_traced_from_the_channels_on(tmp_path: Path) -> None:
+    """The option and the plan's key find the chains that the trace back from the scan output finds."""
+    plan = tmp_path / "plan.toml"
+    plan.write_text('[chains]\ntrace = "forward"\n')
+    arrays = []
+    for words in (("--scan-outputs", "so"), ("--trace", "forward"), ("--plan", str(plan))):
+        assert audited(tmp_path, *words) == 1
+        arrays.append(report(tmp_path)["array"])
+    assert arrays[0] == arrays[1] == arrays[2]
+
+
 def test_a_length_and_a_file_give_the_same_chains(tmp_path: Path) -> None:
     """Lengths from the command line and from a file lead to the same figures."""
     (tmp_path / "chains.csv").write_text("channel,length\nc0,5\nc1,5\n")
@@ -72,6 +83,8 @@ def test_a_length_and_a_file_give_the_same_chains(tmp_path: Path) -> None:
         (("--scan-outputs", "sx"), "behind the scan outputs: channel sx does not exist in block"),
         (("--scan-outputs", "c0"), "no scan output leads back to a channel"),
         (("--relations", "5"), "--relations is 5"),
+        (("--trace", "backward"), "--trace backward is no way to trace the chains"),
+        (("--trace", "forward", "--chain-length", "5"), "the chains are told by --chain-length and by --trace"),
         (("--chains", "a.csv", "--chain-length", "5"), "the chains are told by --chain-length and by --chains"),
     ],
 )

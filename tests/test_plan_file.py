@@ -145,7 +145,7 @@ def test_capture_and_launch_are_read(tmp_path: Path) -> None:
 
 
 def test_chains_and_seeds_are_read(tmp_path: Path) -> None:
-    """Chains come from a length, a file or scan outputs; seeds are hexadecimal states; relations 3 or 4."""
+    """Chains come from a length, a file, scan outputs or a trace; seeds are hexadecimal states; relations 3 or 4."""
     (tmp_path / "plan.toml").write_text(
         '[chains]\nfile = "chains.csv"\n[array]\nrelations = 4\ncones = "cones.csv"\n'
         '[seeds]\nfirst = "1F"\nsecond = "000a"\n'
@@ -158,6 +158,13 @@ def test_chains_and_seeds_are_read(tmp_path: Path) -> None:
     assert plan.patterns == Patterns(5, 3, twin_window=2)
     (tmp_path / "plan.toml").write_text('[chains]\nscan_outputs = ["so", "misr_in"]\n')
     assert read_plan(tmp_path / "plan.toml").scan_outputs == ("so", "misr_in")
+    assert not read_plan(tmp_path / "plan.toml").trace_forward
+    (tmp_path / "plan.toml").write_text('[chains]\ntrace = "forward"\n')
+    assert read_plan(tmp_path / "plan.toml").trace_forward
+    assert troubles(tmp_path, '[chains]\ntrace = "back"\nlength = 5\n') == [
+        "plan.toml:2: [chains] tells the chains by length and by trace; keep one of them",
+        'plan.toml:2: trace in [chains] must be "forward"; write trace = "forward"',
+    ]
 
 
 def test_wrong_chains_and_seeds_are_told(tmp_path: Path) -> None:
