@@ -6,6 +6,7 @@ from typing import NamedTuple
 
 from auditor.cone.cone import Load
 from auditor.machine.machine import ObservedRow, Refusal
+from auditor.phases.separations import gap
 from auditor.phases.table import Phase, PhaseClass
 from auditor.report.facts import AuditFacts
 
@@ -95,15 +96,11 @@ def _near_pairs(group: PhaseClass, phases: Sequence[Phase], count: int) -> list[
     if not group.modulus or not group.turn:
         return []
     leads = [(phases[k].lead, k) for k in group.channels if phases[k].kind in {"exact", "from"}]
-    ring = sorted((lead % group.turn, lead, k) for lead, k in leads if lead is not None)
+    ring = [k for _, k in sorted((lead % group.turn, k) for lead, k in leads if lead is not None)]
     pairs = []
-    for at, (_, lead, i) in enumerate(ring):
+    for at, i in enumerate(ring):
         for step in range(1, min(count + 1, len(ring) - 1) + 1):
-            _, other, j = ring[(at + step) % len(ring)]
-            differ, ways = phases[i].inverted != phases[j].inverted, []
-            for distance in (other - lead, lead - other):
-                turns, cycles = divmod(distance % group.modulus, group.turn)
-                ways.append((cycles, differ != bool(turns)))
-            cycles, complement = min(ways)
+            j = ring[(at + step) % len(ring)]
+            cycles, complement = gap(group, phases[i], phases[j])
             pairs.append(Pair(cycles, min(i, j), max(i, j), complement))
     return pairs
